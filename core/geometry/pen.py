@@ -1,0 +1,395 @@
+"""What a round pen draws along lines and arcs: exact areas bounded by lines and arcs.
+
+Every stroke contributes the two curves at half its width; every node where strokes meet
+contributes the pen's own circle. The curves are cut where they cross, the pieces that lie inside
+another stroke are dropped, and the rest is joined into rings with the fluid on their left.
+
+Rounding is part of the same step. Rounding all inner corners with radius r is what remains when
+the pen is r wider on each side and the result is then shrunk by r (a morphological closing): a
+wide curve moves back by r, and a corner of the wide outline becomes an arc of radius r about it.
+This is exact, and arcs can never overlap one another.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+from functools import cached_property
+from math import atan2, ceil, cos, hypot, pi, sin, tan
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from core.errors import GeometryError
+from core.geometry.contour import LARGEST_SWEEP, Contour
+from core.geometry.crossings import cut_lengths
+
+if TYPE_CHECKING:
+    from collections.abc import Iterable, Sequence
+
+    from core.geometry.contour import Floats
+
+# Features below one nanometre are below the finest mask grid: ends closer than this are one.
+JOIN_UM = 1e-3
+_INSIDE_UM = 1e-9  # how deep inside a stroke a piece must lie to be dropped
+
+
+@dataclass(frozen=True, slots=True)
+class Wall:
+    """Where a piece of outline comes from.
+
+    Attributes
+    ----------
+    stroke : int
+        Index of the stroke; -1 for the rounding of a corner.
+    face : str
+        ``left`` or ``right`` of the stroke, ``cap`` (the pen's circle at a node), ``end`` (open
+        end) or ``round``.
+    """
+
+    stroke: int
+    face: str
+
+
+@dataclass(slots=True)
+class Curve:
+    """A straight line (radius 0) or an arc, walked with the fluid on its left.
+
+    A value like all others here, but left unfrozen: thousands are made on every slider move.
+    """
+
+    wall: Wall
+    start: tuple[float, float]
+    end: tuple[float, float]
+    centre: tuple[float, float] = (0.0, 0.0)
+    radius: float = 0.0
+    angle: float = 0.0
+    sweep: float = 0.0
+
+    @property
+    def length(self) -> float:
+        """Length along the curve [um]."""
+        if self.radius == 0.0:
+            return hypot(self.end[0] - self.start[0], self.end[1] - self.start[1])
+        return self.radius * abs(self.sweep)
+
+    def at(self, length: float) -> tuple[float, float]:
+        """Return the point at a length from the start."""
+        share = length / self.length
+        if self.radius == 0.0:
+            return (
+                self.start[0] + share * (self.end[0] - self.start[0]),
+                self.start[1] + share * (self.end[1] - self.start[1]),
+            )
+        turn = self.angle + share * self.sweep
+        return self.centre[0] + self.radius * cos(turn), self.centre[1] + self.radius * sin(turn)
+
+    def part(self, first: float, last: float) -> Curve:
+        """Return the piece between two lengths from the start."""
+        whole = self.length
+        start = self.start if first <= 0.0 else self.at(first)
+        end = self.end if last >= whole else self.at(last)
+        if self.radius == 0.0:
+            return Curve(self.wall, start, end)
+        angle = self.angle + self.sweep * first / whole
+        return Curve(self.wall, start, end, self.centre, self.radius, angle, self.sweep * (last - first) / whole)
+
+    def shrunk(self, r: float) -> Curve:
+        """Return the curve moved by r into the fluid (to its left)."""
+        if r == 0.0 or self.wall.face == "end":
+            return self
+        if self.radius == 0.0:
+            length = self.length
+            nx, ny = (self.start[1] - self.end[1]) / length * r, (self.end[0] - self.start[0]) / length * r
+            return Curve(
+                self.wall, (self.start[0] + nx, self.start[1] + ny), (self.end[0] + nx, self.end[1] + ny)
+            )
+        radius = self.radius - r if self.sweep > 0 else self.radius + r
+        return arc_curve(self.wall, self.centre, radius, self.angle, self.sweep)
+
+
+def arc_curve(wall: Wall, centre: tuple[float, float], radius: float, angle: float, sweep: float) -> Curve:
+    """Return an arc with its ends worked out."""
+    start = centre[0] + radius * cos(angle), centre[1] + radius * sin(angle)
+    end = centre[0] + radius * cos(angle + sweep), centre[1] + radius * sin(angle + sweep)
+    return Curve(wall, start, end, centre, radius, angle, sweep)
+
+
+@dataclass(frozen=True, slots=True)
+class PenLine:
+    """A straight or curved centre line with the half width drawn along it.
+
+    Attributes
+    ----------
+    start, end : tuple of float
+        Ends [um].
+    half_width : float
+        Half of the pen's width [um].
+    centre, radius, angle, sweep :
+        As in ``Curve``; radius 0 for a straight line.
+    is_start_open, is_end_open : bool
+        True where the end is cut square and open.
+    """
+
+    start: tuple[float, float]
+    end: tuple[float, float]
+    half_width: float
+    centre: tuple[float, float] = (0.0, 0.0)
+    radius: float = 0.0
+    angle: float = 0.0
+    sweep: float = 0.0
+    is_start_open: bool = False
+    is_end_open: bool = False
+
+    def end_headings(self) -> tuple[float, float]:
+        """Return the directions that lead into the line from its start and from its end."""
+        if self.radius == 0.0:
+            heading = atan2(self.end[1] - self.start[1], self.end[0] - self.start[0])
+            return heading, heading + pi
+        quarter = pi / 2 if self.sweep > 0 else -pi / 2
+        return self.angle + quarter, self.angle + self.sweep - quarter
+
+
+@dataclass(frozen=True)
+class Ring:
+    """A run of curves with the fluid on the left, closed as a rule."""
+
+    curves: tuple[Curve, ...]
+
+    @cached_property
+    def contour(self) -> Contour:
+        """Vertices and bulges, long arcs split."""
+        vertices: list[tuple[float, float]] = []
+        bulges: list[float] = []
+        for curve in self.curves:
+            vertices.append(curve.start)
+            if curve.radius == 0.0:
+                bulges.append(0.0)
+                continue
+            count = max(1, ceil(abs(curve.sweep) / LARGEST_SWEEP - 1e-9))
+            vertices += [curve.at(curve.length * i / count) for i in range(1, count)]
+            bulges += [tan(curve.sweep / count / 4.0)] * count
+        return Contour(np.array(vertices), np.array(bulges))
+
+    @cached_property
+    def strokes(self) -> set[int]:
+        """Indices of the strokes whose walls the ring touches."""
+        return {curve.wall.stroke for curve in self.curves if curve.wall.stroke >= 0}
+
+
+def drawn_rings(lines: Sequence[PenLine], *, rounding_um: float) -> list[Ring]:
+    """Return the rings around everything that a round pen draws.
+
+    Parameters
+    ----------
+    lines : sequence of PenLine
+        Centre lines; open ends are cut square, all others are round.
+    rounding_um : float
+        Radius given to every inner corner [um]; 0 leaves them sharp.
+
+    Returns
+    -------
+    list of Ring
+        Outer rings run counter-clockwise, holes clockwise.
+
+    Raises
+    ------
+    GeometryError
+        If walls touch in a point or run so close that the area cannot be told.
+    """
+    pen = _Pen(lines, rounding_um)
+    curves = pen.curves()
+    cuts = cut_lengths(curves, tolerance=JOIN_UM)
+    pieces = [
+        curve.part(first, last)
+        for curve, lengths in zip(curves, cuts, strict=True)
+        for first, last in zip(lengths[:-1], lengths[1:], strict=True)
+    ]
+    outside = ~pen.is_inside(np.array([piece.at(0.5 * piece.length) for piece in pieces]))
+    kept = [piece for piece, keep in zip(pieces, outside, strict=True) if keep]
+    return [_rounded(ring, rounding_um) for ring in _joined(kept)]
+
+
+class _Pen:
+    """The strokes of a pen that is ``extra`` wider on each side."""
+
+    def __init__(self, lines: Sequence[PenLine], extra: float) -> None:
+        self.lines = lines
+        self.extra = extra
+        self.nodes = self._nodes()
+
+    def _nodes(self) -> list[tuple[tuple[float, float], float, list[tuple[float, float, float]]]]:
+        """Return (point, pen radius, incident lines as (direction, half width, length))."""
+        places: dict[tuple[int, int], tuple[tuple[float, float], list[tuple[float, float, float]]]] = {}
+        for line in self.lines:
+            length = hypot(line.end[0] - line.start[0], line.end[1] - line.start[1])
+            into_start, into_end = line.end_headings()
+            ends = ((line.start, into_start, line.is_start_open), (line.end, into_end, line.is_end_open))
+            for point, heading, is_open in ends:
+                if not is_open:
+                    key = round(point[0] / JOIN_UM / 10), round(point[1] / JOIN_UM / 10)
+                    near = next((k for k in _neighbours(key) if k in places), key)
+                    places.setdefault(near, (point, []))[1].append((heading, line.half_width + self.extra, length))
+        return [
+            (point, half, incident)
+            for point, incident in places.values()
+            for half in sorted({half for _, half, _ in incident})
+        ]
+
+    def curves(self) -> list[Curve]:
+        """Return all walls, ends and caps before cutting."""
+        found: list[Curve] = []
+        for index, line in enumerate(self.lines):
+            found += self._faces(index, line)
+        for point, half, incident in self.nodes:
+            found += _caps(point, half, incident)
+        return found
+
+    def _faces(self, index: int, line: PenLine) -> Iterable[Curve]:
+        h = line.half_width + self.extra
+        left, right = Wall(index, "left"), Wall(index, "right")
+        if line.radius == 0.0:
+            length = hypot(line.end[0] - line.start[0], line.end[1] - line.start[1])
+            nx, ny = h * (line.start[1] - line.end[1]) / length, h * (line.end[0] - line.start[0]) / length
+            a_left, b_left = (line.start[0] + nx, line.start[1] + ny), (line.end[0] + nx, line.end[1] + ny)
+            a_right, b_right = (line.start[0] - nx, line.start[1] - ny), (line.end[0] - nx, line.end[1] - ny)
+            yield Curve(right, a_right, b_right)
+            yield Curve(left, b_left, a_left)
+            if line.is_start_open:
+                yield Curve(Wall(index, "end"), a_left, a_right)
+            if line.is_end_open:
+                yield Curve(Wall(index, "end"), b_right, b_left)
+            return
+        turn = 1.0 if line.sweep > 0 else -1.0
+        yield arc_curve(right, line.centre, line.radius + turn * h, line.angle, line.sweep)
+        yield arc_curve(left, line.centre, line.radius - turn * h, line.angle + line.sweep, -line.sweep)
+
+    def is_inside(self, points: Floats) -> Floats:
+        """Return whether each point lies well inside some stroke; shape (n,) of bool."""
+        inside = np.zeros(len(points), dtype=bool)
+        straight = [line for line in self.lines if line.radius == 0.0]
+        curved = [line for line in self.lines if line.radius != 0.0]
+        if straight:
+            inside |= self._in_straight(points, straight)
+        if curved:
+            inside |= self._in_curved(points, curved)
+        if self.nodes:
+            centres = np.array([point for point, _, _ in self.nodes])
+            halves = np.array([half for _, half, _ in self.nodes])
+            away = np.hypot(*(points[:, None] - centres[None]).transpose(2, 0, 1))
+            inside |= (away < halves - _INSIDE_UM).any(axis=1)
+        return inside
+
+    def _in_straight(self, points: Floats, lines: list[PenLine]) -> Floats:
+        start = np.array([line.start for line in lines])
+        d = np.array([line.end for line in lines]) - start
+        length = np.hypot(d[:, 0], d[:, 1])
+        d = d / length[:, None]
+        rel = points[:, None] - start[None]
+        along = rel[..., 0] * d[:, 0] + rel[..., 1] * d[:, 1]
+        across = np.abs(rel[..., 1] * d[:, 0] - rel[..., 0] * d[:, 1])
+        half = np.array([line.half_width for line in lines]) + self.extra
+        # an open end is a wall: lying on it is not inside
+        low = np.array([_INSIDE_UM if line.is_start_open else -_INSIDE_UM for line in lines])
+        high = length - np.array([_INSIDE_UM if line.is_end_open else -_INSIDE_UM for line in lines])
+        hit: Floats = ((across < half - _INSIDE_UM) & (along >= low) & (along <= high)).any(axis=1)
+        return hit
+
+    def _in_curved(self, points: Floats, lines: list[PenLine]) -> Floats:
+        rel = points[:, None] - np.array([line.centre for line in lines])[None]
+        away = np.hypot(rel[..., 0], rel[..., 1])
+        sweep = np.array([line.sweep for line in lines])
+        turn = (np.arctan2(rel[..., 1], rel[..., 0]) - np.array([line.angle for line in lines])) * np.sign(sweep)
+        turn = (turn + 1e-12) % (2.0 * pi)
+        half = np.array([line.half_width for line in lines]) + self.extra
+        radius = np.array([line.radius for line in lines])
+        hit: Floats = ((np.abs(away - radius) < half - _INSIDE_UM) & (turn <= np.abs(sweep) + 2e-12)).any(axis=1)
+        return hit
+
+
+def _neighbours(key: tuple[int, int]) -> Iterable[tuple[int, int]]:
+    return ((key[0] + i, key[1] + j) for i in (0, -1, 1) for j in (0, -1, 1))
+
+
+def _caps(point: tuple[float, float], half: float, incident: list[tuple[float, float, float]]) -> Iterable[Curve]:
+    """Yield the arcs of the pen's circle, cut where they touch the strokes' walls.
+
+    A stroke at least as wide and long enough covers the half of the circle on its own side.
+    """
+    # cut angles: where the walls of strokes of this very width touch the circle
+    marks = sorted(
+        {
+            round((heading + quarter) % (2 * pi), 12)
+            for heading, other, _ in incident
+            for quarter in (-pi / 2, pi / 2)
+            if abs(other - half) < 1e-9
+        }
+    )
+    cover = [(heading, length) for heading, other, length in incident if other >= half - 1e-9 and length >= half]
+    for first, last in zip(marks, [*marks[1:], marks[0] + 2 * pi], strict=True):
+        if (last - first) * half < 1e-9:
+            continue
+        middle = 0.5 * (first + last)
+        if any(abs((middle - heading + pi) % (2 * pi) - pi) < pi / 2 - 1e-9 for heading, _ in cover):
+            continue
+        yield arc_curve(Wall(-1, "cap"), point, half, first, last - first)
+
+
+def _joined(pieces: list[Curve]) -> list[Ring]:
+    """Return closed rings made of pieces that follow one another end to start."""
+    starts = np.array([piece.start for piece in pieces])
+    ends = np.array([piece.end for piece in pieces])
+    gaps = np.hypot(ends[:, 0, None] - starts[None, :, 0], ends[:, 1, None] - starts[None, :, 1])
+    following = np.argmin(gaps, axis=1)
+    if np.any(gaps[np.arange(len(pieces)), following] > 3.0 * JOIN_UM):
+        raise GeometryError("walls touch or run too close together to tell the area")
+    if len(set(following.tolist())) != len(pieces):
+        raise GeometryError("walls touch in a point")
+    rings: list[Ring] = []
+    left = set(range(len(pieces)))
+    while left:
+        walk = [min(left)]
+        left.remove(walk[0])
+        while (after := int(following[walk[-1]])) != walk[0]:
+            walk.append(after)
+            left.remove(after)
+        rings.append(Ring(_whole_walls([pieces[i] for i in walk])))
+    return rings
+
+
+def _whole_walls(pieces: list[Curve]) -> tuple[Curve, ...]:
+    """Return the same closed run with pieces of one wall made one again where nothing lies between."""
+    first = next((i for i, piece in enumerate(pieces) if not _goes_on(pieces[i - 1], piece)), 0)
+    whole: list[Curve] = []
+    for piece in pieces[first:] + pieces[:first]:
+        if whole and _goes_on(whole[-1], piece):
+            old = whole[-1]
+            whole[-1] = replace(old, end=piece.end, sweep=old.sweep + piece.sweep)
+        else:
+            whole.append(piece)
+    return tuple(whole)
+
+
+def _goes_on(piece: Curve, following: Curve) -> bool:
+    is_same_curve = (piece.radius, piece.centre) == (following.radius, following.centre)
+    return piece.wall == following.wall and is_same_curve and piece.end == following.start
+
+
+def _rounded(ring: Ring, r: float) -> Ring:
+    """Return the ring moved back by r, with an arc of radius r at every inner corner."""
+    if r == 0.0:
+        return ring
+    moved = [curve.shrunk(r) for curve in ring.curves]
+    result: list[Curve] = []
+    for index, curve in enumerate(moved):
+        previous, following = moved[index - 1], moved[(index + 1) % len(moved)]
+        if curve.wall.face == "end":
+            result.append(Curve(curve.wall, previous.end, following.start))
+            continue
+        result.append(curve)
+        gap = hypot(following.start[0] - curve.end[0], following.start[1] - curve.end[1])
+        if following.wall.face != "end" and gap > JOIN_UM:
+            corner = ring.curves[index].end
+            angle = atan2(curve.end[1] - corner[1], curve.end[0] - corner[0])
+            to = atan2(following.start[1] - corner[1], following.start[0] - corner[0])
+            result.append(arc_curve(Wall(-1, "round"), corner, r, angle, -((angle - to) % (2 * pi))))
+    return Ring(tuple(result))

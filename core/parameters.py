@@ -1,0 +1,126 @@
+"""The parameter set of one channel: what the sliders edit.
+
+Words follow the reverse flow: at the *fork* the loop's *leg* leaves the *bypass*, the *turn*
+bends back, an optional straight *return* meets the bypass at the *mouth*.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+from typing import TYPE_CHECKING
+
+from core.fields import Field, Value, problems_in, table_of, unknown_field
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping
+
+STAGE, CHAIN, DEPTH, MAKING = "Stage shape", "Chain", "Section", "Making it"
+
+
+def _length(name: str, label: str, group: str, default: float, bounds: tuple[float, float], step: float, text: str) -> Field:
+    return Field(
+        name=name, label=label, group=group, default=default, unit="um",
+        minimum=bounds[0], maximum=bounds[1], step=step, help=text,
+    )  # fmt: skip
+
+
+def _angle(name: str, label: str, default: float, bounds: tuple[float, float], text: str) -> Field:
+    return Field(
+        name=name, label=label, group=STAGE, default=default, unit="deg",
+        minimum=bounds[0], maximum=bounds[1], step=1.0, help=text,
+    )  # fmt: skip
+
+
+CHANNEL_FIELDS: dict[str, Field] = table_of(
+    _angle("loop_angle_deg", "Loop angle", 45.0, (10.0, 120.0),
+           "Angle between the bypass and the loop's leg where they part, seen in the reverse flow."),
+    _angle("run_bend_deg", "Run bend", 45.0, (0.0, 120.0),
+           "How far the bypass turns away from the incoming run at the fork. Equal to the loop angle: "
+           "the leg goes straight on and the bypass bends away. 0: the bypass goes straight on."),
+    _angle("loop_turn_deg", "Loop turn", 180.0, (60.0, 280.0),
+           "How far the loop's arc bends back towards the bypass."),
+    _length("loop_radius_um", "Loop radius", STAGE, 320.0, (5.0, 10000.0), 5.0,
+            "Radius of the loop's turn, on its centre line."),
+    _length("return_length_um", "Return length", STAGE, 0.0, (0.0, 10000.0), 10.0,
+            "Straight piece between the turn and the mouth."),
+    _length("loop_width_um", "Loop width", STAGE, 200.0, (5.0, 3000.0), 5.0, "Width of the loop path."),
+    Field(name="stages", label="Stages", group=CHAIN, default=4, minimum=0, maximum=100, step=1, whole=True,
+          help="Number of loops in series. 0 makes a plain straight channel to measure against."),
+    Field(name="sides", label="Sides", group=CHAIN, default="alternate", choices=("alternate", "same"),
+          help="Loops left and right in turn, or all on one side."),
+    _length("stage_gap_um", "Stage gap", CHAIN, 400.0, (0.0, 20000.0), 10.0,
+            "Centre-line distance from one mouth to the next fork."),
+    _length("lead_in_um", "Lead in", CHAIN, 1000.0, (10.0, 100000.0), 50.0,
+            "Straight from the open end where forward flow enters to the last mouth."),
+    _length("lead_out_um", "Lead out", CHAIN, 1000.0, (10.0, 100000.0), 50.0,
+            "Straight from the first fork to the open end where forward flow leaves."),
+    _length("channel_width_um", "Channel width", DEPTH, 200.0, (5.0, 3000.0), 5.0, "Width of the bypass and the leads."),
+    _length("depth_um", "Depth", DEPTH, 200.0, (1.0, 3000.0), 5.0, "Depth of the whole channel, out of the drawing."),
+    _length("nose_radius_um", "Nose radius", MAKING, 10.0, (0.0, 1000.0), 1.0,
+            "Rounding of the island's corners that the process will cause anyway. 0 is sharp."),
+    _length("corner_radius_um", "Corner radius", MAKING, 10.0, (0.0, 1000.0), 1.0,
+            "Rounding of all other inner corners. 0 is sharp."),
+)  # fmt: skip
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class ChannelParameters:
+    """One checked parameter set; lengths in um, angles in degrees.
+
+    Every field is described in ``CHANNEL_FIELDS``. Values that are fine one by one but do not
+    go together (an island that vanishes, say) are no error here: building the shape names them
+    as findings, so that a slider can pass through such a state.
+
+    Raises
+    ------
+    DesignValueError
+        If a value has the wrong kind, is not finite or lies out of bounds.
+    """
+
+    loop_angle_deg: float = 45.0
+    run_bend_deg: float = 45.0
+    loop_turn_deg: float = 180.0
+    loop_radius_um: float = 320.0
+    return_length_um: float = 0.0
+    loop_width_um: float = 200.0
+    stages: int = 4
+    sides: str = "alternate"
+    stage_gap_um: float = 400.0
+    lead_in_um: float = 1000.0
+    lead_out_um: float = 1000.0
+    channel_width_um: float = 200.0
+    depth_um: float = 200.0
+    nose_radius_um: float = 10.0
+    corner_radius_um: float = 10.0
+
+    def __post_init__(self) -> None:
+        """Check every field and keep it in its own type."""
+        for field in CHANNEL_FIELDS.values():
+            object.__setattr__(self, field.name, field.checked(getattr(self, field.name)))
+
+    def with_values(self, values: Mapping[str, object]) -> ChannelParameters:
+        """Return a copy with some fields replaced.
+
+        Parameters
+        ----------
+        values : mapping
+            Field names to new values (numbers, words or text holding them).
+
+        Raises
+        ------
+        DesignValueError
+            For the first unknown name or unusable value.
+        """
+        for name, value in values.items():
+            if name not in CHANNEL_FIELDS:
+                raise unknown_field(name, value, CHANNEL_FIELDS)
+        return replace(self, **dict(values))  # type: ignore[arg-type]  # checked in __post_init__
+
+    def as_dict(self) -> dict[str, Value]:
+        """Return all fields by name, in the order of the field table."""
+        return {name: getattr(self, name) for name in CHANNEL_FIELDS}
+
+
+def channel_problems(values: Mapping[str, object]) -> list[str]:
+    """Return every problem of values meant for a parameter set, each in one line."""
+    return [str(problem) for problem in problems_in(values, CHANNEL_FIELDS)]
