@@ -41,8 +41,12 @@ def early_findings(parameters: ChannelParameters) -> tuple[Finding, ...]:
     """
     if parameters.stages == 0:
         return ()
-    checks = (_bend, _mouth, _leg, _bypass, _turn)
-    return tuple(finding for check in checks if (finding := check(parameters)) is not None)[:1]
+    # in this order: each check may rely on those before it
+    for check in (_bend, _mouth, _leg, _bypass, _turn):
+        finding = check(parameters)
+        if finding is not None:
+            return (finding,)
+    return ()
 
 
 def _bend(p: ChannelParameters) -> Finding | None:
