@@ -98,7 +98,7 @@ class Field:
     def _checked_choice(self, value: object) -> str:
         if isinstance(value, str) and value in self.choices:
             return value
-        self._refuse(value, did_you_mean(str(value), self.choices))
+        return self._refuse(value, did_you_mean(str(value), self.choices))
 
     def _number(self, value: object) -> float:
         if isinstance(value, bool) or not isinstance(value, int | float | str):

@@ -17,7 +17,9 @@ if TYPE_CHECKING:
 STAGE, CHAIN, DEPTH, MAKING = "Stage shape", "Chain", "Section", "Making it"
 
 
-def _length(name: str, label: str, group: str, default: float, bounds: tuple[float, float], step: float, text: str) -> Field:
+def _length(
+    name: str, label: str, group: str, default: float, bounds: tuple[float, float], step: float, text: str
+) -> Field:
     return Field(
         name=name, label=label, group=group, default=default, unit="um",
         minimum=bounds[0], maximum=bounds[1], step=step, help=text,
@@ -54,7 +56,8 @@ CHANNEL_FIELDS: dict[str, Field] = table_of(
             "Straight from the open end where forward flow enters to the last mouth."),
     _length("lead_out_um", "Lead out", CHAIN, 1000.0, (10.0, 100000.0), 50.0,
             "Straight from the first fork to the open end where forward flow leaves."),
-    _length("channel_width_um", "Channel width", DEPTH, 200.0, (5.0, 3000.0), 5.0, "Width of the bypass and the leads."),
+    _length("channel_width_um", "Channel width", DEPTH, 200.0, (5.0, 3000.0), 5.0,
+            "Width of the bypass and the leads."),
     _length("depth_um", "Depth", DEPTH, 200.0, (1.0, 3000.0), 5.0, "Depth of the whole channel, out of the drawing."),
     _length("nose_radius_um", "Nose radius", MAKING, 10.0, (0.0, 1000.0), 1.0,
             "Rounding of the island's corners that the process will cause anyway. 0 is sharp."),

@@ -17,11 +17,10 @@ import numpy as np
 from core.errors import GeometryError
 from core.geometry.centreline import Centreline, Part, build_centreline
 from core.geometry.contour import Contour
-from core.geometry.pen import Curve, PenLine, Ring, Wall, drawn_rings
+from core.geometry.curves import Curve, Ring, Wall
+from core.geometry.pen import PenLine, drawn_rings
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable
-
     from core.geometry.contour import Floats
     from core.parameters import ChannelParameters
 
@@ -127,11 +126,12 @@ class Chain:
         wall = self.face(stage, Part.BYPASS, is_outer=is_outer)
         place = self.centreline.stages[stage]
         length = float(np.hypot(*(place.mouth_um - place.fork_um)))
-        return _longest(
-            (index, *(min(max(s, 0.0), length) for s in sorted(self._along(stage, p) for p in (c.start, c.end))))
-            for index, c in enumerate(ring.curves)
-            if c.wall == wall
-        )
+        spans = []
+        for index, curve in enumerate(ring.curves):
+            if curve.wall == wall:
+                low, high = sorted((self._along(stage, curve.start), self._along(stage, curve.end)))
+                spans.append((index, max(low, 0.0), min(high, length)))
+        return _longest(spans)
 
     def _along(self, stage: int, point: tuple[float, float]) -> float:
         place = self.centreline.stages[stage]
@@ -144,11 +144,13 @@ class Chain:
     def _turn_span(self, ring: Ring, stage: int, *, is_outer: bool) -> tuple[int, float, float]:
         """Return the longest free arc of the turn: curve index and range of the sweep from its start [rad]."""
         wall = self.face(stage, Part.TURN, is_outer=is_outer)
-        return _longest(
-            (index, *sorted((self._swept(stage, c.angle), self._swept(stage, c.angle) + self._sense(stage, c))))
-            for index, c in enumerate(ring.curves)
-            if c.wall == wall
-        )
+        spans = []
+        for index, curve in enumerate(ring.curves):
+            if curve.wall == wall:
+                start = self._swept(stage, curve.angle)
+                low, high = sorted((start, start + self._sense(stage, curve)))
+                spans.append((index, low, high))
+        return _longest(spans)
 
     @cached_property
     def _turns(self) -> dict[int, tuple[float, float]]:
@@ -169,7 +171,7 @@ class Chain:
         return index, abs(swept - self._swept(stage, curve.angle)) * curve.radius
 
 
-def _longest(spans: Iterable[tuple[int, float, float]]) -> tuple[int, float, float]:
+def _longest(spans: list[tuple[int, float, float]]) -> tuple[int, float, float]:
     best = max(spans, key=lambda span: span[2] - span[1], default=None)
     if best is None or best[2] - best[1] < SHORTEST_SPAN:
         raise GeometryError("a wall that should be free is covered")

@@ -10,11 +10,13 @@ import numpy as np
 
 from core.errors import GeometryError
 from core.findings import Finding, Severity
-from core.geometry.centreline import Part, stage_measures
+from core.geometry.centreline import Part
 from core.geometry.chain import Chain, draw_chain
+from core.geometry.measures import stage_measures
 
 if TYPE_CHECKING:
-    from core.geometry.pen import Ring
+    from core.geometry.contour import Floats
+    from core.geometry.curves import Ring
     from core.parameters import ChannelParameters
 
 # Loops that arrive more slantwise than this merge with the bypass over a great length.
@@ -23,7 +25,7 @@ LARGEST_MOUTH_DEG = 170.0
 
 
 def _error(code: str, field: str, message: str, **place: float | None) -> Finding:
-    return Finding(code=code, severity=Severity.ERROR, message=message, field=field, **place)  # type: ignore[arg-type]
+    return Finding(code=code, severity=Severity.ERROR, message=message, field=field, **place)
 
 
 def early_findings(parameters: ChannelParameters) -> tuple[Finding, ...]:
@@ -164,13 +166,13 @@ def _ends_cut(chain: Chain) -> bool:
 
 def _lead(chain: Chain) -> Finding:
     p = chain.parameters
-    long_enough = chain.centreline.stages and 2.0 * (p.channel_width_um + p.loop_width_um) or p.channel_width_um
+    enough = 2.0 * (p.channel_width_um + p.loop_width_um)
     name = "lead_out_um" if p.lead_out_um < p.lead_in_um else "lead_in_um"
     return _error(
         "lead_too_short",
         name,
         f"{name} is {getattr(p, name):g}: a loop reaches the open end of a lead; raise {name} "
-        f"(try {max(long_enough, 2 * getattr(p, name)):g})",
+        f"(try {max(enough, 2 * getattr(p, name)):g})",
         value_um=getattr(p, name),
     )
 
@@ -207,7 +209,7 @@ def _runs_into_next(chain: Chain, ring: Ring | None = None) -> Finding:
     )
 
 
-def _place(point: np.ndarray) -> dict[str, float]:  # type: ignore[type-arg]
+def _place(point: Floats) -> dict[str, float]:
     return {"x_um": float(point[0]), "y_um": float(point[1])}
 
 

@@ -19,6 +19,8 @@ if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     Floats = NDArray[np.float64]
+    Flags = NDArray[np.bool_]
+    Indices = NDArray[np.int_]
 
 # Arcs are split so that none sweeps more than a quarter turn: several drawing readers draw
 # arcs of more than half a turn wrongly.

@@ -9,11 +9,11 @@ import numpy as np
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-    from core.geometry.contour import Floats
-    from core.geometry.pen import Curve
+    from core.geometry.contour import Flags, Floats, Indices
+    from core.geometry.curves import Curve
 
 # a crossing: index of the first curve, of the second, length along each [um]
-Crossings = tuple["Floats", "Floats", "Floats", "Floats"]
+Crossings = tuple["Indices", "Indices", "Floats", "Floats"]
 
 
 def cut_lengths(curves: Sequence[Curve], *, tolerance: float) -> list[Floats]:
@@ -43,9 +43,7 @@ def cut_lengths(curves: Sequence[Curve], *, tolerance: float) -> list[Floats]:
     order = np.lexsort((where, owner))
     owner, where = owner[order], where[order]
     bounds = np.searchsorted(owner, np.arange(len(curves) + 1))
-    return [
-        _merged(where[bounds[i] : bounds[i + 1]], curve.length, tolerance) for i, curve in enumerate(curves)
-    ]
+    return [_merged(where[bounds[i] : bounds[i + 1]], curve.length, tolerance) for i, curve in enumerate(curves)]
 
 
 def _merged(lengths: Floats, whole: float, tolerance: float) -> Floats:
@@ -57,7 +55,7 @@ def _merged(lengths: Floats, whole: float, tolerance: float) -> Floats:
     return np.concatenate(([0.0], inner, [whole]))
 
 
-def _line_line(curves: Sequence[Curve], which: Floats) -> list[Crossings]:
+def _line_line(curves: Sequence[Curve], which: Indices) -> list[Crossings]:
     p, d, length = _lines(curves, which)
     i, j = np.triu_indices(len(which), k=1)
     cross = d[i, 0] * d[j, 1] - d[i, 1] * d[j, 0]
@@ -70,7 +68,7 @@ def _line_line(curves: Sequence[Curve], which: Floats) -> list[Crossings]:
     return [(which[i[hit]], which[j[hit]], s[hit], t[hit])]
 
 
-def _line_arc(curves: Sequence[Curve], lines: Floats, arcs: Floats) -> list[Crossings]:
+def _line_arc(curves: Sequence[Curve], lines: Indices, arcs: Indices) -> list[Crossings]:
     p, d, length = _lines(curves, lines)
     centre, radius, angle, sweep = _arcs(curves, arcs)
     rel = centre[None] - p[:, None]
@@ -88,7 +86,7 @@ def _line_arc(curves: Sequence[Curve], lines: Floats, arcs: Floats) -> list[Cros
     return found
 
 
-def _arc_arc(curves: Sequence[Curve], arcs: Floats) -> list[Crossings]:
+def _arc_arc(curves: Sequence[Curve], arcs: Indices) -> list[Crossings]:
     centre, radius, angle, sweep = _arcs(curves, arcs)
     i, j = np.triu_indices(len(arcs), k=1)
     rel = centre[j] - centre[i]
@@ -110,14 +108,14 @@ def _arc_arc(curves: Sequence[Curve], arcs: Floats) -> list[Crossings]:
     return found
 
 
-def _lines(curves: Sequence[Curve], which: Floats) -> tuple[Floats, Floats, Floats]:
+def _lines(curves: Sequence[Curve], which: Indices) -> tuple[Floats, Floats, Floats]:
     p = np.array([curves[i].start for i in which]).reshape(-1, 2)
     d = np.array([curves[i].end for i in which]).reshape(-1, 2) - p
     length = np.hypot(d[:, 0], d[:, 1])
     return p, d / np.where(length > 0.0, length, 1.0)[:, None], length
 
 
-def _arcs(curves: Sequence[Curve], which: Floats) -> tuple[Floats, Floats, Floats, Floats]:
+def _arcs(curves: Sequence[Curve], which: Indices) -> tuple[Floats, Floats, Floats, Floats]:
     data = np.array([(*curves[i].centre, curves[i].radius, curves[i].angle, curves[i].sweep) for i in which])
     data = data.reshape(-1, 5)
     return data[:, :2], data[:, 2], data[:, 3], data[:, 4]
@@ -131,6 +129,6 @@ def _arc_length(spoke: Floats, radius: Floats, angle: Floats, sweep: Floats) -> 
     return radius * turn
 
 
-def _within(length: Floats, whole: Floats) -> Floats:
-    hit: Floats = (length > -1e-6) & (length < whole + 1e-6)
+def _within(length: Floats, whole: Floats) -> Flags:
+    hit: Flags = (length > -1e-6) & (length < whole + 1e-6)
     return hit

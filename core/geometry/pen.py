@@ -13,105 +13,24 @@ This is exact, and arcs can never overlap one another.
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
-from functools import cached_property
-from math import atan2, ceil, cos, hypot, pi, sin, tan
+from itertools import pairwise
+from math import atan2, hypot, pi
 from typing import TYPE_CHECKING
 
 import numpy as np
 
 from core.errors import GeometryError
-from core.geometry.contour import LARGEST_SWEEP, Contour
 from core.geometry.crossings import cut_lengths
+from core.geometry.curves import Curve, Ring, Wall, arc_curve
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Sequence
 
-    from core.geometry.contour import Floats
+    from core.geometry.contour import Flags, Floats
 
 # Features below one nanometre are below the finest mask grid: ends closer than this are one.
 JOIN_UM = 1e-3
 _INSIDE_UM = 1e-9  # how deep inside a stroke a piece must lie to be dropped
-
-
-@dataclass(frozen=True, slots=True)
-class Wall:
-    """Where a piece of outline comes from.
-
-    Attributes
-    ----------
-    stroke : int
-        Index of the stroke; -1 for the rounding of a corner.
-    face : str
-        ``left`` or ``right`` of the stroke, ``cap`` (the pen's circle at a node), ``end`` (open
-        end) or ``round``.
-    """
-
-    stroke: int
-    face: str
-
-
-@dataclass(slots=True)
-class Curve:
-    """A straight line (radius 0) or an arc, walked with the fluid on its left.
-
-    A value like all others here, but left unfrozen: thousands are made on every slider move.
-    """
-
-    wall: Wall
-    start: tuple[float, float]
-    end: tuple[float, float]
-    centre: tuple[float, float] = (0.0, 0.0)
-    radius: float = 0.0
-    angle: float = 0.0
-    sweep: float = 0.0
-
-    @property
-    def length(self) -> float:
-        """Length along the curve [um]."""
-        if self.radius == 0.0:
-            return hypot(self.end[0] - self.start[0], self.end[1] - self.start[1])
-        return self.radius * abs(self.sweep)
-
-    def at(self, length: float) -> tuple[float, float]:
-        """Return the point at a length from the start."""
-        share = length / self.length
-        if self.radius == 0.0:
-            return (
-                self.start[0] + share * (self.end[0] - self.start[0]),
-                self.start[1] + share * (self.end[1] - self.start[1]),
-            )
-        turn = self.angle + share * self.sweep
-        return self.centre[0] + self.radius * cos(turn), self.centre[1] + self.radius * sin(turn)
-
-    def part(self, first: float, last: float) -> Curve:
-        """Return the piece between two lengths from the start."""
-        whole = self.length
-        start = self.start if first <= 0.0 else self.at(first)
-        end = self.end if last >= whole else self.at(last)
-        if self.radius == 0.0:
-            return Curve(self.wall, start, end)
-        angle = self.angle + self.sweep * first / whole
-        return Curve(self.wall, start, end, self.centre, self.radius, angle, self.sweep * (last - first) / whole)
-
-    def shrunk(self, r: float) -> Curve:
-        """Return the curve moved by r into the fluid (to its left)."""
-        if r == 0.0 or self.wall.face == "end":
-            return self
-        if self.radius == 0.0:
-            length = self.length
-            nx, ny = (self.start[1] - self.end[1]) / length * r, (self.end[0] - self.start[0]) / length * r
-            return Curve(
-                self.wall, (self.start[0] + nx, self.start[1] + ny), (self.end[0] + nx, self.end[1] + ny)
-            )
-        radius = self.radius - r if self.sweep > 0 else self.radius + r
-        return arc_curve(self.wall, self.centre, radius, self.angle, self.sweep)
-
-
-def arc_curve(wall: Wall, centre: tuple[float, float], radius: float, angle: float, sweep: float) -> Curve:
-    """Return an arc with its ends worked out."""
-    start = centre[0] + radius * cos(angle), centre[1] + radius * sin(angle)
-    end = centre[0] + radius * cos(angle + sweep), centre[1] + radius * sin(angle + sweep)
-    return Curve(wall, start, end, centre, radius, angle, sweep)
 
 
 @dataclass(frozen=True, slots=True)
@@ -149,33 +68,6 @@ class PenLine:
         return self.angle + quarter, self.angle + self.sweep - quarter
 
 
-@dataclass(frozen=True)
-class Ring:
-    """A run of curves with the fluid on the left, closed as a rule."""
-
-    curves: tuple[Curve, ...]
-
-    @cached_property
-    def contour(self) -> Contour:
-        """Vertices and bulges, long arcs split."""
-        vertices: list[tuple[float, float]] = []
-        bulges: list[float] = []
-        for curve in self.curves:
-            vertices.append(curve.start)
-            if curve.radius == 0.0:
-                bulges.append(0.0)
-                continue
-            count = max(1, ceil(abs(curve.sweep) / LARGEST_SWEEP - 1e-9))
-            vertices += [curve.at(curve.length * i / count) for i in range(1, count)]
-            bulges += [tan(curve.sweep / count / 4.0)] * count
-        return Contour(np.array(vertices), np.array(bulges))
-
-    @cached_property
-    def strokes(self) -> set[int]:
-        """Indices of the strokes whose walls the ring touches."""
-        return {curve.wall.stroke for curve in self.curves if curve.wall.stroke >= 0}
-
-
 def drawn_rings(lines: Sequence[PenLine], *, rounding_um: float) -> list[Ring]:
     """Return the rings around everything that a round pen draws.
 
@@ -202,7 +94,7 @@ def drawn_rings(lines: Sequence[PenLine], *, rounding_um: float) -> list[Ring]:
     pieces = [
         curve.part(first, last)
         for curve, lengths in zip(curves, cuts, strict=True)
-        for first, last in zip(lengths[:-1], lengths[1:], strict=True)
+        for first, last in pairwise(lengths)
     ]
     outside = ~pen.is_inside(np.array([piece.at(0.5 * piece.length) for piece in pieces]))
     kept = [piece for piece, keep in zip(pieces, outside, strict=True) if keep]
@@ -263,7 +155,7 @@ class _Pen:
         yield arc_curve(right, line.centre, line.radius + turn * h, line.angle, line.sweep)
         yield arc_curve(left, line.centre, line.radius - turn * h, line.angle + line.sweep, -line.sweep)
 
-    def is_inside(self, points: Floats) -> Floats:
+    def is_inside(self, points: Floats) -> Flags:
         """Return whether each point lies well inside some stroke; shape (n,) of bool."""
         inside = np.zeros(len(points), dtype=bool)
         straight = [line for line in self.lines if line.radius == 0.0]
@@ -279,7 +171,7 @@ class _Pen:
             inside |= (away < halves - _INSIDE_UM).any(axis=1)
         return inside
 
-    def _in_straight(self, points: Floats, lines: list[PenLine]) -> Floats:
+    def _in_straight(self, points: Floats, lines: list[PenLine]) -> Flags:
         start = np.array([line.start for line in lines])
         d = np.array([line.end for line in lines]) - start
         length = np.hypot(d[:, 0], d[:, 1])
@@ -291,10 +183,10 @@ class _Pen:
         # an open end is a wall: lying on it is not inside
         low = np.array([_INSIDE_UM if line.is_start_open else -_INSIDE_UM for line in lines])
         high = length - np.array([_INSIDE_UM if line.is_end_open else -_INSIDE_UM for line in lines])
-        hit: Floats = ((across < half - _INSIDE_UM) & (along >= low) & (along <= high)).any(axis=1)
+        hit: Flags = ((across < half - _INSIDE_UM) & (along >= low) & (along <= high)).any(axis=1)
         return hit
 
-    def _in_curved(self, points: Floats, lines: list[PenLine]) -> Floats:
+    def _in_curved(self, points: Floats, lines: list[PenLine]) -> Flags:
         rel = points[:, None] - np.array([line.centre for line in lines])[None]
         away = np.hypot(rel[..., 0], rel[..., 1])
         sweep = np.array([line.sweep for line in lines])
@@ -302,7 +194,7 @@ class _Pen:
         turn = (turn + 1e-12) % (2.0 * pi)
         half = np.array([line.half_width for line in lines]) + self.extra
         radius = np.array([line.radius for line in lines])
-        hit: Floats = ((np.abs(away - radius) < half - _INSIDE_UM) & (turn <= np.abs(sweep) + 2e-12)).any(axis=1)
+        hit: Flags = ((np.abs(away - radius) < half - _INSIDE_UM) & (turn <= np.abs(sweep) + 2e-12)).any(axis=1)
         return hit
 
 

@@ -19,7 +19,7 @@ from core.geometry.shape import period, repeat_vector
 if TYPE_CHECKING:
     from core.geometry.chain import Spot
     from core.geometry.contour import Floats
-    from core.geometry.pen import Ring
+    from core.geometry.curves import Ring
     from core.geometry.shape import ChannelShape
 
 _SAME_UM = 1e-4  # pieces that differ by less than a tenth of the finest mask grid are one shape

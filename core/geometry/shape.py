@@ -14,10 +14,11 @@ import numpy as np
 
 from core.errors import GeometryError
 from core.findings import Finding, Severity
-from core.geometry.centreline import Centreline, build_centreline, stage_measures
+from core.geometry.centreline import Centreline, build_centreline
 from core.geometry.chain import Chain, draw_chain, walk
 from core.geometry.collisions import collisions, early_findings
 from core.geometry.contour import Contour, Outline
+from core.geometry.measures import stage_measures
 
 if TYPE_CHECKING:
     from core.geometry.contour import Floats

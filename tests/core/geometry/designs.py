@@ -2,12 +2,16 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 import numpy as np
 import pyclipper
 from shapely import Polygon
 
-from core.geometry.contour import Outline
 from core.parameters import CHANNEL_FIELDS, ChannelParameters
+
+if TYPE_CHECKING:
+    from core.geometry.contour import Outline
 
 
 def anywhere(rng: np.random.Generator) -> ChannelParameters:
@@ -145,7 +149,9 @@ def independent_area_um2(p: ChannelParameters) -> float:
     strokes: list[list[list[int]]] = []
     for points, width, is_start_open, is_end_open in walked_centre_lines(p):
         is_flat = is_start_open or is_end_open
-        strokes += _fat_lines([points], width / 2, arc_step, pyclipper.ET_OPENBUTT if is_flat else pyclipper.ET_OPENROUND)
+        strokes += _fat_lines(
+            [points], width / 2, arc_step, pyclipper.ET_OPENBUTT if is_flat else pyclipper.ET_OPENROUND
+        )
         ends = ((points[0], is_start_open), (points[-1], is_end_open))
         for end, is_open in ends if is_flat else ():
             if not is_open:

@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+import itertools
+
 import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from core.geometry.centreline import Part, build_centreline, stage_measures
+from core.geometry.centreline import Part, build_centreline
+from core.geometry.measures import stage_measures
 from core.parameters import ChannelParameters
 
 
@@ -24,7 +27,7 @@ def test_strokes_follow_one_another_from_end_to_end() -> None:
     parameters = ChannelParameters(stages=5, return_length_um=100, loop_turn_deg=170)
     line = build_centreline(parameters)
     main = [s for s in line.strokes if s.part in (Part.LEAD_OUT, Part.BYPASS, Part.GAP, Part.LEAD_IN)]
-    for before, after in zip(main, main[1:], strict=False):
+    for before, after in itertools.pairwise(main):
         assert before.end_um == pytest.approx(after.start_um, abs=1e-9)
     for stage, place in enumerate(line.stages):
         loop = [s for s in line.strokes if s.stage == stage and s.part in (Part.LEG, Part.TURN, Part.RETURN)]

@@ -11,9 +11,7 @@ from shapely import Polygon
 from core.geometry.contour import Contour, Placement, arc_run
 
 FINITE = st.floats(-1e4, 1e4)
-PLACEMENTS = st.builds(
-    Placement, angle=st.floats(-10, 10), dx_um=FINITE, dy_um=FINITE, is_mirrored=st.booleans()
-)
+PLACEMENTS = st.builds(Placement, angle=st.floats(-10, 10), dx_um=FINITE, dy_um=FINITE, is_mirrored=st.booleans())
 
 
 def circle(radius: float = 5.0) -> Contour:
@@ -21,7 +19,7 @@ def circle(radius: float = 5.0) -> Contour:
 
 
 def slot() -> Contour:
-    """A rectangle 10 x 4 with a half circle at each end."""
+    """Return a rectangle 10 x 4 with a half circle at each end."""
     return Contour(
         np.array([[0.0, 0.0], [10.0, 0.0], [10.0, 4.0], [0.0, 4.0]]), np.array([0.0, np.tan(np.pi / 4), 0.0, 1.0])
     )

@@ -15,7 +15,7 @@ from tests.core.geometry.designs import polygon, sensible
 
 def placed_polygons(pieces: ChannelPieces, sagitta_um: float) -> list[Polygon]:
     return [
-        Polygon(pieces.pieces[p.piece].contour.chords(sagitta_um=sagitta_um) + [p.dx_um, p.dy_um])
+        Polygon(pieces.pieces[p.piece].contour.chords(sagitta_um=sagitta_um) + np.array([p.dx_um, p.dy_um]))
         for p in pieces.placed
     ]
 
@@ -26,7 +26,8 @@ def links(pieces: ChannelPieces) -> list[Polygon]:
         leaving, entry = pieces.pieces[before.piece].exit, pieces.pieces[after.piece].entry
         assert len(leaving) == len(entry) == 2
         for a, b in zip(leaving, entry, strict=True):
-            a, b = a + [before.dx_um, before.dy_um], b + [after.dx_um, after.dy_um]
+            a = a + np.array([before.dx_um, before.dy_um])
+            b = b + np.array([after.dx_um, after.dy_um])
             found.append(Polygon([a[0], a[1], b[1], b[0]]))
     return found
 

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 import time
 from collections import Counter
-from collections.abc import Callable
 from dataclasses import replace
+from typing import TYPE_CHECKING
 
 import numpy as np
 import pytest
@@ -16,6 +16,9 @@ from core.geometry.contour import LARGEST_SWEEP
 from core.geometry.shape import ChannelShape, build_shape, drawn_stages
 from core.parameters import CHANNEL_FIELDS, ChannelParameters
 from tests.core.geometry.designs import anywhere, independent_area_um2, polygon, round_numbers, sensible
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
 
 CODES = {
     "bend_exceeds_angle",
