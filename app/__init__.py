@@ -1,0 +1,1 @@
+"""What the user meets: the command line and the window. No arithmetic in here; ``core`` does it."""

@@ -1,0 +1,1 @@
+"""Pictures of the channel: the large drawing, the small ones, and the painters they share."""

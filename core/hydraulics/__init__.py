@@ -1,0 +1,1 @@
+"""Instant estimate: ducts, local losses and the chain of stages."""

@@ -1,0 +1,229 @@
+"""The document: undo as value swaps, one step for one drag, nothing lost, nothing half done.
+
+Truth: the rules said in the document's own words; no figures of the engine are checked here.
+"""
+
+from __future__ import annotations
+
+import pytest
+
+from app.document import Document
+from core.errors import DesignValueError, ProjectFileError
+from core.parameters import ChannelParameters
+from core.project import ChipProject, ParameterSet, read_project
+
+
+@pytest.fixture
+def document(qapp):
+    return Document(
+        ChipProject(
+            name="Bench chip",
+            sets=(
+                ParameterSet(name="Alpha", channel=ChannelParameters(stages=1)),
+                ParameterSet(name="Beta", channel=ChannelParameters(stages=2)),
+                ParameterSet(name="Gamma", channel=ChannelParameters(stages=3)),
+            ),
+        )
+    )
+
+
+def names(document):
+    return [each.name for each in document.project.sets]
+
+
+def test_push_undo_redo(document):
+    before = document.project
+    document.change_channel({"loop_radius_um": 340})
+    after = document.project
+    assert document.channel.loop_radius_um == 340.0
+    document.undo_stack.undo()
+    assert document.project is before
+    document.undo_stack.redo()
+    assert document.project is after
+
+
+def test_undo_text_is_plain_words(document):
+    document.change_channel({"loop_radius_um": 340})
+    assert document.undo_stack.undoText() == "Loop radius 320 to 340 µm"
+    document.change_operating({"fluid": "ethanol"})
+    assert document.undo_stack.undoText() == "Fluid water to ethanol"
+
+
+def test_modified_follows_save_and_undo(document, tmp_path):
+    path = tmp_path / "chip.sideloop"
+    assert not document.is_modified
+    document.change_channel({"stages": 5})
+    assert document.is_modified
+    document.save(path)
+    assert not document.is_modified
+    assert read_project(path) == document.project
+    document.undo_stack.undo()
+    assert document.is_modified, "the file holds the later design"
+    document.undo_stack.redo()
+    assert not document.is_modified
+
+
+def test_one_drag_is_one_step(document):
+    gesture = document.new_gesture()
+    for radius in (325, 330, 350, 360):
+        document.change_channel({"loop_radius_um": radius}, gesture=gesture)
+    assert document.undo_stack.count() == 1
+    assert document.undo_stack.undoText() == "Loop radius 320 to 360 µm"
+    document.undo_stack.undo()
+    assert document.channel.loop_radius_um == 320.0
+
+
+def test_two_drags_are_two_steps(document):
+    for radius in (330, 350):
+        document.change_channel({"loop_radius_um": radius}, gesture=document.new_gesture())
+    assert document.undo_stack.count() == 2
+
+
+def test_a_drag_back_to_the_start_leaves_no_step(document):
+    gesture = document.new_gesture()
+    for radius in (330, 320):
+        document.change_channel({"loop_radius_um": radius}, gesture=gesture)
+    assert document.undo_stack.count() == 0
+    assert not document.is_modified
+
+
+def test_a_drag_does_not_merge_over_a_save(document, tmp_path):
+    gesture = document.new_gesture()
+    document.change_channel({"loop_radius_um": 330}, gesture=gesture)
+    document.save(tmp_path / "chip.sideloop")
+    document.change_channel({"loop_radius_um": 340}, gesture=gesture)
+    assert document.is_modified
+    document.undo_stack.undo()
+    assert not document.is_modified
+
+
+def test_same_value_is_no_step(document):
+    document.change_channel({"loop_radius_um": 320.0})
+    assert document.undo_stack.count() == 0
+
+
+@pytest.mark.parametrize("value", ["wide", float("nan"), float("inf"), -1.0, 1e9, None, True])
+def test_bad_values_change_nothing(document, value):
+    before = document.project
+    with pytest.raises(DesignValueError) as refused:
+        document.change_channel({"loop_radius_um": value})
+    assert refused.value.field == "loop_radius_um"
+    assert document.project is before
+    assert document.undo_stack.count() == 0
+
+
+def test_a_fluid_outside_its_temperatures_changes_nothing(document):
+    document.change_operating({"temperature_c": 90})
+    before = document.project
+    with pytest.raises(DesignValueError) as refused:
+        document.change_operating({"fluid": "ethanol"})  # boils at 78 degC
+    assert refused.value.field == "temperature_c"
+    assert document.project is before
+
+
+def test_many_changes_are_worked_out_once(document, qtbot):
+    document.settle()
+    told = []
+    document.channel_changed.connect(told.append)
+    with qtbot.waitSignal(document.channel_changed):
+        for radius in range(321, 341):
+            document.change_channel({"loop_radius_um": radius})
+    assert [shape.parameters.loop_radius_um for shape in told] == [340.0]
+
+
+def test_reading_the_shape_never_waits(document):
+    document.change_channel({"loop_radius_um": 333})
+    assert document.shape.parameters.loop_radius_um == 333.0
+    assert document.assessment.score is not None
+
+
+def test_last_good_shape_is_kept_while_a_finding_blocks(document):
+    document.select_set(1)
+    good = document.shape
+    document.change_channel({"loop_radius_um": 5.0})  # the loop is narrower than its own channel
+    assert not document.shape.is_usable
+    assert document.shape.findings
+    assert document.last_good_shape is good
+    assert document.assessment.score is None
+    assert document.assessment.obstacle
+    document.select_set(0)
+    assert document.last_good_shape is document.shape
+
+
+def test_sets_are_added_copied_renamed_moved_removed(document):
+    document.select_set(1)
+    document.copy_set()
+    assert names(document) == ["Alpha", "Beta", "Beta 2", "Gamma"]
+    assert document.current_set.name == "Beta 2"
+    assert document.channel.stages == 2
+    document.rename_set(2, "Delta")
+    document.move_set(2, 0)
+    assert names(document) == ["Delta", "Alpha", "Beta", "Gamma"]
+    assert document.current_set.name == "Delta", "the set in hand stays in hand"
+    document.remove_set(0)
+    assert document.current_set.name == "Alpha"
+    document.add_set()
+    assert document.channel == ChannelParameters()
+    for _ in range(document.undo_stack.count()):
+        document.undo_stack.undo()
+    assert names(document) == ["Alpha", "Beta", "Gamma"]
+    assert document.current_set.name == "Beta"
+
+
+def test_names_taken_and_last_set_are_refused(document):
+    before = document.project
+    with pytest.raises(DesignValueError, match="another name"):
+        document.rename_set(0, "beta")
+    assert document.project is before
+    document.remove_set(0)
+    document.remove_set(0)
+    with pytest.raises(DesignValueError, match="at least one"):
+        document.remove_set(0)
+    assert names(document) == ["Gamma"]
+
+
+def test_undo_takes_the_changed_set_in_hand(document):
+    document.change_channel({"stages": 7})
+    document.select_set(2)
+    document.undo_stack.undo()
+    assert document.index == 0
+
+
+def test_selecting_is_no_step(document):
+    document.select_set(2)
+    assert document.channel.stages == 3
+    assert document.undo_stack.count() == 0
+    document.select_set(99)
+    assert document.index == 2
+
+
+def test_loading_forgets_old_steps(document, tmp_path, qtbot):
+    document.change_channel({"stages": 7})
+    other = ChipProject(name="Other", sets=(ParameterSet(name="One"),))
+    with qtbot.waitSignals([document.path_changed, document.project_changed]):
+        document.load(other, path=tmp_path / "other.sideloop")
+    assert not document.is_modified
+    assert not document.undo_stack.canUndo()
+    assert document.project is other
+
+
+def test_a_recovered_project_counts_as_modified(document):
+    document.load(ChipProject(name="Other", sets=(ParameterSet(name="One"),)), path=None, is_modified=True)
+    assert document.is_modified
+
+
+def test_a_failed_save_changes_nothing(document, tmp_path):
+    document.change_channel({"stages": 7})
+    with pytest.raises(ProjectFileError):
+        document.save(tmp_path / "no such folder" / "chip.sideloop")
+    assert document.is_modified
+    assert document.path is None
+
+
+def test_details_are_one_step(document):
+    document.change_details(name="Other chip", lab="Fernhollow Bench Fluidics", author="", notes="For trial.")
+    assert document.project.lab == "Fernhollow Bench Fluidics"
+    document.undo_stack.undo()
+    assert document.project.name == "Bench chip"
+    with pytest.raises(DesignValueError):
+        document.change_details(name="  ")

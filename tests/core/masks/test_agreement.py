@@ -1,0 +1,144 @@
+"""Files against the design, as four independent readers see them.
+
+Tolerances: a GDSII file against its nm-rounded source 1e-9 relative; the rounded source against
+the ideal shape 1 nm and half a nanometre times the perimeter; a DXF file keeps full numbers.
+"""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+import numpy as np
+import pytest
+import shapely
+
+from core.geometry.pieces import cut_pieces
+from core.masks.arcs import with_outermost_points
+from core.masks.drawing import arranged
+from core.masks.gdsii_cells import gdsii_cells, link_length_um
+from core.masks.mask_set import write_mask_set
+from core.masks.options import MaskOptions
+from tests.core.masks.samples import (
+    SETS,
+    holes_in,
+    ideal_area,
+    random_shapes,
+    seen_by_dxfgrabber,
+    seen_by_gdal,
+    seen_by_klamath,
+    seen_by_python_gdsii,
+    shape_of,
+)
+
+if TYPE_CHECKING:
+    from collections.abc import Iterator
+    from pathlib import Path
+
+    from core.geometry.shape import ChannelShape
+
+TOLERANCE_UM = 0.02
+DXF_KINDS = [("R2000", "pieces"), ("R2000", "loops"), ("R12", "pieces"), ("R12", "loops")]
+
+
+def written(
+    folder: Path, shape: ChannelShape, *, dxf_version: str = "R2000", islands: str = "pieces"
+) -> dict[str, Path]:
+    options = MaskOptions(dxf_version=dxf_version, islands=islands, has_preview=False)
+    report = write_mask_set([("Test", shape)], folder=folder, chip_name="Bench 7", options=options)
+    return {file.name[-3:]: folder / file.name for file in report.files}
+
+
+def check_gdsii(path: Path, shape: ChannelShape) -> None:
+    fine = ideal_area(shape.outline, TOLERANCE_UM / 20.0)
+    for reader in (seen_by_klamath, seen_by_python_gdsii):
+        seen = reader(path, path.stem)
+        area = seen.area
+        assert holes_in(area) == shape.parameters.stages
+        assert sum(shapely.Polygon(ring).area for ring in seen.channel) == pytest.approx(area.area, rel=1e-9)
+        assert area.bounds == pytest.approx(shape.outline.bounds_um, abs=2e-3)
+        assert area.area == pytest.approx(shape.outline.area_um2, abs=(TOLERANCE_UM + 1.5e-3) * fine.length)
+        assert area.symmetric_difference(fine).area <= (TOLERANCE_UM + 0.5e-3) * fine.length
+
+
+def check_dxf(path: Path, shape: ChannelShape) -> None:
+    outline = shape.outline
+    for reader in (seen_by_gdal, seen_by_dxfgrabber):
+        seen = reader(path)
+        area = seen.area
+        assert holes_in(area) == shape.parameters.stages
+        # chords of 0.1 degree lose less than 1e-6 of the radius; 0.1 deg is measured at 1.2e-8 of the area
+        reach = max(map(abs, outline.bounds_um))
+        assert area.bounds == pytest.approx(outline.bounds_um, abs=1e-6 * reach)
+        assert area.area == pytest.approx(outline.area_um2, rel=2e-6)
+        if seen.area_um2 is not None:
+            assert seen.area_um2 == pytest.approx(outline.area_um2, rel=1e-11)
+
+
+@pytest.mark.parametrize("name", SETS)
+def test_two_readers_see_the_design_in_gdsii(tmp_path: Path, name: str) -> None:
+    check_gdsii(written(tmp_path, shape_of(name))["gds"], shape_of(name))
+
+
+@pytest.mark.parametrize(
+    ("name", "dxf_version", "islands"),
+    [*((name, *DXF_KINDS[0]) for name in SETS), *(("Long turn, blunt", *kind) for kind in DXF_KINDS[1:])],
+)
+def test_two_readers_see_the_design_in_dxf(tmp_path: Path, name: str, dxf_version: str, islands: str) -> None:
+    check_dxf(written(tmp_path, shape_of(name), dxf_version=dxf_version, islands=islands)["dxf"], shape_of(name))
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("part", range(8))
+def test_two_hundred_random_designs(tmp_path: Path, part: int) -> None:
+    for number, shape in enumerate(random_shapes(25, seed=1000 + part)):
+        files = written(tmp_path, shape, dxf_version=DXF_KINDS[number % 4][0], islands=DXF_KINDS[number % 4][1])
+        check_gdsii(files["gds"], shape)
+        check_dxf(files["dxf"], shape)
+
+
+def pieces_nm(shape: ChannelShape) -> Iterator[tuple[str, np.ndarray, np.ndarray]]:
+    """Yield every placed piece: its name, its exact chords in its cell, and the cell's exact place [nm].
+
+    The origin of a cell is free within the grid: it is set so that the first place is a whole number.
+    """
+    parts = cut_pieces(shape, link_um=link_length_um(shape.parameters))
+    rests: dict[int, np.ndarray] = {}
+    for placed in parts.placed:
+        piece, place = parts.pieces[placed.piece], np.array([placed.dx_um, placed.dy_um]) * 1000.0
+        rest = rests.setdefault(placed.piece, place - np.rint(place))
+        yield (
+            piece.name,
+            with_outermost_points(piece.contour).chords(sagitta_um=TOLERANCE_UM) * 1000.0 + rest,
+            place - rest,
+        )
+
+
+@pytest.mark.parametrize("name", SETS)
+def test_file_is_the_rounded_source_to_1e_9(tmp_path: Path, name: str) -> None:
+    # the source is built here: chords first, then the grid, then whole shifts
+    shape = shape_of(name)
+    path = written(tmp_path, shape)["gds"]
+    source = [shapely.Polygon(np.rint(chords) + np.rint(place)) for _, chords, place in pieces_nm(shape)]
+    total = sum(piece.area for piece in source)
+    cuts = [chord for piece in cut_pieces(shape, link_um=0.0).pieces for chord in piece.exit]
+    widest = max((np.hypot(*(chord[1] - chord[0])) for chord in cuts), default=0.0) * 1000.0
+    for reader in (seen_by_klamath, seen_by_python_gdsii):
+        seen = shapely.transform(reader(path, path.stem).area, lambda points: np.rint(points * 1000.0))
+        assert sum(seen.intersection(piece).area for piece in source) == pytest.approx(total, rel=1e-9)
+        # what the file holds beyond the pieces are the links: two to a stage, about 1 um long at most
+        assert -1e-9 * total <= seen.area - total <= 2 * shape.parameters.stages * 2000.0 * widest + 1e-9 * total
+
+
+@pytest.mark.parametrize("name", SETS)
+def test_rounded_pieces_are_within_the_grid_of_the_ideal(name: str) -> None:
+    # a cell is rounded once: half the diagonal of a square nanometre; a copy whose place is no
+    # whole number of nanometres is moved by as much again
+    drawing = arranged([("Test", shape_of(name))], chip_name="Bench 7", options=MaskOptions())[0]
+    cells = {cell.name: cell for cell in gdsii_cells(drawing, chord_tolerance_um=TOLERANCE_UM)}
+    for piece, chords, place in pieces_nm(shape_of(name)):
+        rounded = shapely.union_all([shapely.Polygon(ring) for ring in cells[f"TEST_{piece}"].rings_nm])
+        in_cell = shapely.Polygon(chords)
+        assert in_cell.exterior.hausdorff_distance(rounded.exterior) <= np.sqrt(0.5)
+        assert in_cell.symmetric_difference(rounded).area <= 0.5 * in_cell.length
+        on_mask = shapely.Polygon(chords + (place - np.rint(place)))
+        assert on_mask.exterior.hausdorff_distance(rounded.exterior) <= np.sqrt(2.0)

@@ -1,0 +1,71 @@
+"""The picture of a mask, read by a parser of its own: areas from its lines and arcs."""
+
+from __future__ import annotations
+
+import re
+from math import asin, hypot, sin
+from xml.etree import ElementTree
+
+import pytest
+
+from core.masks.drawing import arranged
+from core.masks.options import MaskOptions
+from core.masks.preview import preview_svg, scale_bar_um
+from tests.core.masks.samples import SETS, drawing_of, shape_of
+
+SVG = "{http://www.w3.org/2000/svg}"
+NUMBER = r"(-?[\d.]+)"
+STEP = re.compile(rf"M{NUMBER} {NUMBER}|L{NUMBER} {NUMBER}|A{NUMBER} {NUMBER} 0 0 ([01]) {NUMBER} {NUMBER}|Z")
+
+
+def ring_areas(path: str) -> list[float]:
+    """Return the signed area of each ring; y points down, so that a ring that turns left is negative."""
+    areas: list[float] = []
+    x = y = 0.0
+    for step in STEP.finditer(path):
+        if step[0] == "Z":
+            continue
+        if step[0][0] == "M":
+            areas.append(0.0)
+            x, y = float(step[1]), float(step[2])
+            continue
+        nx, ny = (float(step[3]), float(step[4])) if step[0][0] == "L" else (float(step[8]), float(step[9]))
+        areas[-1] += 0.5 * (x * ny - nx * y)
+        if step[0][0] == "A":
+            radius = float(step[5])
+            turn = 2.0 * asin(min(1.0, hypot(nx - x, ny - y) / (2.0 * radius)))
+            areas[-1] += (1.0 if step[7] == "1" else -1.0) * 0.5 * radius**2 * (turn - sin(turn))
+        x, y = nx, ny
+    return areas
+
+
+@pytest.mark.parametrize("name", SETS)
+def test_the_picture_is_the_outline(name: str) -> None:
+    drawing = drawing_of(name)
+    root = ElementTree.fromstring(preview_svg(drawing))
+    (path,) = root.findall(f"{SVG}path")
+    assert path.get("fill-rule") == "evenodd"
+    areas = ring_areas(path.get("d"))
+    assert len(areas) == 1 + drawing.island_count
+    assert -sum(areas) == pytest.approx(drawing.area_um2, rel=1e-4)  # written to a nanometre
+    left, top, width, height = map(float, root.get("viewBox").split())
+    x0, y0, x1, y1 = drawing.bounds_um
+    assert left < x0 < x1 < left + width
+    assert top < -y1 < -y0 < top + height
+
+
+def test_each_channel_is_drawn_and_the_bar_is_labelled() -> None:
+    shapes = [(name, shape_of(name)) for name in SETS]
+    (drawing,) = arranged(shapes, chip_name="Bench 7", options=MaskOptions(one_file_per_set=False))
+    root = ElementTree.fromstring(preview_svg(drawing))
+    assert len(root.findall(f"{SVG}path")) == len(SETS)
+    bar = root.findall(f"{SVG}rect")[1]
+    assert float(bar.get("width")) == 2000.0
+    assert root.find(f"{SVG}text").text == "2 mm"
+
+
+@pytest.mark.parametrize(
+    ("width", "bar"), [(25.0, 5.0), (24.9, 2.0), (10_000.0, 2000.0), (26_000.0, 5000.0), (5.0, 1.0)]
+)
+def test_the_bar_is_round(width: float, bar: float) -> None:
+    assert scale_bar_um(width) == pytest.approx(bar)
