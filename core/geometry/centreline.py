@@ -23,6 +23,10 @@ if TYPE_CHECKING:
     from core.parameters import ChannelParameters
 
 
+# Straights below one nanometre are no straights: no mask can hold them.
+SHORTEST_UM = 1e-3
+
+
 class Part(StrEnum):
     """Which part of the chain a centre line belongs to."""
 
@@ -222,7 +226,7 @@ class _Walker:
         self.places: list[StagePlace] = []
 
     def straight(self, stage: int, part: Part, length: float) -> None:
-        if length <= 0.0:
+        if length < SHORTEST_UM:
             return
         end = self.position + length * _unit(self.heading)
         self.strokes.append(
@@ -266,7 +270,7 @@ class _Walker:
             (Part.RETURN, turn_end, mouth, 0.0),
         )
         for part, start, end, bulge in runs:
-            if part is Part.TURN or hypot(*(end - start)) > 1e-9 * p.loop_radius_um:
+            if part is Part.TURN or hypot(*(end - start)) >= SHORTEST_UM:
                 self.strokes.append(
                     Stroke(
                         stage=stage,

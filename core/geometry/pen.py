@@ -88,7 +88,8 @@ def drawn_rings(lines: Sequence[PenLine], *, rounding_um: float) -> list[Ring]:
     GeometryError
         If walls touch in a point or run so close that the area cannot be told.
     """
-    pen = _Pen(lines, rounding_um)
+    r = rounding_um if rounding_um >= JOIN_UM else 0.0
+    pen = _Pen(lines, r)
     curves = pen.curves()
     cuts = cut_lengths(curves, tolerance=JOIN_UM)
     pieces = [
@@ -96,9 +97,12 @@ def drawn_rings(lines: Sequence[PenLine], *, rounding_um: float) -> list[Ring]:
         for curve, lengths in zip(curves, cuts, strict=True)
         for first, last in pairwise(lengths)
     ]
-    outside = ~pen.is_inside(np.array([piece.at(0.5 * piece.length) for piece in pieces]))
-    kept = [piece for piece, keep in zip(pieces, outside, strict=True) if keep]
-    return [_rounded(ring, rounding_um) for ring in _joined(kept)]
+    # two samples, because a piece may just touch a wall in one point
+    inside = np.zeros(len(pieces), dtype=bool)
+    for share in (0.38, 0.61):
+        inside |= pen.is_inside(np.array([piece.at(share * piece.length) for piece in pieces]))
+    kept = [piece for piece, drop in zip(pieces, inside, strict=True) if not drop]
+    return [_rounded(ring, r) for ring in _joined(kept)]
 
 
 class _Pen:
@@ -124,7 +128,7 @@ class _Pen:
         return [
             (point, half, incident)
             for point, incident in places.values()
-            for half in sorted({half for _, half, _ in incident})
+            for half in _distinct(half for _, half, _ in incident)
         ]
 
     def curves(self) -> list[Curve]:
@@ -198,6 +202,15 @@ class _Pen:
         return hit
 
 
+def _distinct(halves: Iterable[float]) -> list[float]:
+    """Return half widths in order, without those that a mask could not tell from the one before."""
+    found: list[float] = []
+    for half in sorted(halves):
+        if not found or half - found[-1] >= JOIN_UM:
+            found.append(half)
+    return found
+
+
 def _neighbours(key: tuple[int, int]) -> Iterable[tuple[int, int]]:
     return ((key[0] + i, key[1] + j) for i in (0, -1, 1) for j in (0, -1, 1))
 
@@ -213,10 +226,10 @@ def _caps(point: tuple[float, float], half: float, incident: list[tuple[float, f
             round((heading + quarter) % (2 * pi), 12)
             for heading, other, _ in incident
             for quarter in (-pi / 2, pi / 2)
-            if abs(other - half) < 1e-9
+            if abs(other - half) < JOIN_UM
         }
     )
-    cover = [(heading, length) for heading, other, length in incident if other >= half - 1e-9 and length >= half]
+    cover = [(heading, length) for heading, other, length in incident if other > half - JOIN_UM and length >= half]
     for first, last in zip(marks, [*marks[1:], marks[0] + 2 * pi], strict=True):
         if (last - first) * half < 1e-9:
             continue

@@ -14,7 +14,7 @@ import numpy as np
 
 from core.errors import GeometryError
 from core.findings import Finding, Severity
-from core.geometry.centreline import Centreline, build_centreline
+from core.geometry.centreline import Centreline, StagePlace, build_centreline
 from core.geometry.chain import Chain, draw_chain, walk
 from core.geometry.collisions import collisions, early_findings
 from core.geometry.contour import Contour, Outline
@@ -55,6 +55,8 @@ class ChannelShape:
     def centreline(self) -> Centreline:
         """Centre lines of all stages; for an impossible loop those of a plain channel."""
         p = self.parameters
+        if self.chain is not None and p.stages > self.chain.parameters.stages:
+            return long_centreline(self.chain, p.stages)
         return build_centreline(p if stage_measures(p).is_possible else replace(p, stages=0))
 
 
@@ -147,6 +149,46 @@ def long_outline(chain: Chain, stages: int) -> Outline:
         for stage in range(stages)
     ]
     return Outline(ring, tuple(placed))
+
+
+def long_centreline(chain: Chain, stages: int) -> Centreline:
+    """Return the centre lines of a chain of any length from those of a short one.
+
+    Parameters
+    ----------
+    chain : Chain
+        A chain of ``drawn_stages`` stages.
+    stages : int
+        Number of stages wanted.
+
+    Returns
+    -------
+    Centreline
+        As ``build_centreline`` would walk it.
+    """
+    line, step, drawn = chain.centreline, period(chain.parameters), chain.parameters.stages
+    shift = repeat_vector(chain)
+    by_stage = {n: [s for s in line.strokes if s.stage == n] for n in range(-1, drawn)}
+    strokes, places = list(by_stage[-1]), []
+    for stage in range(stages):
+        periods = (stages - drawn) // step if stage == stages - 1 else max(stage - 1, 0) // step
+        source, by = stage - periods * step, periods * shift
+        strokes += [replace(s, stage=stage, start_um=s.start_um + by, end_um=s.end_um + by) for s in by_stage[source]]
+        places.append(_place_shifted(line.stages[source], by))
+    inlet = replace(line.forward_inlet, point_um=line.forward_inlet.point_um + (stages - drawn) // step * shift)
+    return replace(line, strokes=tuple(strokes), stages=tuple(places), forward_inlet=inlet)
+
+
+def _place_shifted(place: StagePlace, by: Floats) -> StagePlace:
+    old = place.placement
+    return replace(
+        place,
+        placement=replace(old, dx_um=old.dx_um + float(by[0]), dy_um=old.dy_um + float(by[1])),
+        fork_um=place.fork_um + by,
+        mouth_um=place.mouth_um + by,
+        bypass_section_um=place.bypass_section_um + by,
+        loop_section_um=place.loop_section_um + by,
+    )
 
 
 def sides_of_cut(chain: Chain, stage: int) -> tuple[tuple[int, float], tuple[int, float]]:

@@ -12,6 +12,7 @@ import pytest
 import shapely
 
 from core.findings import Severity
+from core.geometry.centreline import build_centreline
 from core.geometry.contour import LARGEST_SWEEP
 from core.geometry.shape import ChannelShape, build_shape, drawn_stages
 from core.parameters import CHANNEL_FIELDS, ChannelParameters
@@ -113,6 +114,35 @@ def test_repeating_the_middle_equals_drawing_all(sides: str, stages: int) -> Non
     outline = build_shape(parameters).outline
     assert outline is not None
     assert outline.area_um2 == pytest.approx(independent_area_um2(parameters), rel=1e-6)
+
+
+@pytest.mark.parametrize("sides", ["alternate", "same"])
+@pytest.mark.parametrize("stages", [5, 6, 7, 12])
+def test_long_centre_line_is_the_walked_one(sides: str, stages: int) -> None:
+    parameters = ChannelParameters(stages=stages, sides=sides, stage_gap_um=900)
+    repeated, walked = build_shape(parameters).centreline, build_centreline(parameters)
+    assert [(s.stage, s.part, s.bulge) for s in repeated.strokes] == [
+        (s.stage, s.part, pytest.approx(s.bulge)) for s in walked.strokes
+    ]
+    for a, b in zip(repeated.strokes, walked.strokes, strict=True):
+        assert np.array([a.start_um, a.end_um]) == pytest.approx(np.array([b.start_um, b.end_um]), abs=1e-6)
+    for a, b in zip(repeated.stages, walked.stages, strict=True):
+        assert a.loop_section_um == pytest.approx(b.loop_section_um, abs=1e-6)
+    assert repeated.forward_inlet.point_um == pytest.approx(walked.forward_inlet.point_um, abs=1e-6)
+
+
+@pytest.mark.parametrize(
+    "changes",
+    [
+        {"stage_gap_um": 2.2e-16, "loop_angle_deg": 25, "run_bend_deg": 25},
+        {"return_length_um": 1e-12},
+        {"loop_angle_deg": 90, "run_bend_deg": 0, "loop_width_um": 200 - 1e-9},
+        {"loop_angle_deg": 89.9999, "run_bend_deg": 0},
+        {"corner_radius_um": 1e-17, "nose_radius_um": 1e-9},
+    ],
+)
+def test_lengths_below_any_grid_do_no_harm(changes: dict[str, float]) -> None:
+    assert check(ChannelParameters().with_values(changes)) == "good"
 
 
 def test_rounding_only_adds_fluid() -> None:
