@@ -18,7 +18,7 @@ if TYPE_CHECKING:
     from core.geometry.shape import ChannelShape
     from core.masks.options import MaskOptions
 
-LONGEST_CHANNEL_NAME = 20  # leaves room for "_STEP_A" within a cell name
+LONGEST_CHANNEL_NAME = 19  # leaves room for "__STEP_A" within a cell name
 LONGEST_CHIP_NAME = 24
 LARGEST_COORDINATE_UM = 2e6  # 2 m either way: what mask writers take, and nearly what 32-bit nanometres reach
 

@@ -24,6 +24,7 @@ if TYPE_CHECKING:
     from core.masks.grid import Whole
     from core.parameters import ChannelParameters
 
+PIECE_MARK = "__"  # no safe name of a channel has two underscores in a row
 LONGEST_LINK_UM = 1.0
 LINK_SAGITTA_UM = 5e-4  # half the grid: across a turn a link is as good as curved
 
@@ -92,7 +93,7 @@ def _channel_cells(channel: PlacedChannel, sagitta_um: float) -> list[GdsiiCell]
                 f"GDSII cannot hold '{channel.title}': piece {piece.name} {error}; "
                 "raise nose_radius_um or corner_radius_um, or write DXF alone"
             ) from error
-        cells.append(GdsiiCell(name=f"{channel.name}_{piece.name}", rings_nm=rings))
+        cells.append(GdsiiCell(name=f"{channel.name}{PIECE_MARK}{piece.name}", rings_nm=rings))
     places = [on_grid_nm(np.array([p.dx_um, p.dy_um]) - rests[p.piece]) for p in parts.placed]
     references = tuple(
         (cells[placed.piece].name, int(place[0]), int(place[1]))

@@ -177,7 +177,8 @@ def _proof(path: Path, agreement: Agreement, drawing: MaskDrawing, allowed: _All
     channels, islands = agreement.channel_count, agreement.island_count
     sentences = (
         f"Read back: {channels} channel{'s' * (channels != 1)} with {islands} island{'s' * (islands != 1)}, as drawn.",
-        f"Area {agreement.area_um2 * 1e-6:.9g} mm2; the drawing has {drawing.area_um2 * 1e-6:.9g} mm2.",
+        f"Area {agreement.area_um2 * 1e-6:.9g} mm2; the drawing with its true arcs has "
+        f"{drawing.area_um2 * 1e-6:.9g} mm2.",
         f"Every corner lies within {agreement.corner_error_um * NM_PER_UM:.2f} nm of the drawn lines and arcs, "
         f"the bounds within {_bounds_error_um(agreement, drawing) * NM_PER_UM:.2f} nm.",
         _RULES_KEPT,

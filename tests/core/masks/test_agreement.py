@@ -6,6 +6,7 @@ the ideal shape 1 nm and half a nanometre times the perimeter; a DXF file keeps 
 
 from __future__ import annotations
 
+from pathlib import Path
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -13,11 +14,13 @@ import pytest
 import shapely
 
 from core.geometry.pieces import cut_pieces
+from core.geometry.shape import build_shape
 from core.masks.arcs import with_outermost_points
 from core.masks.drawing import arranged
 from core.masks.gdsii_cells import gdsii_cells, link_length_um
 from core.masks.mask_set import write_mask_set
 from core.masks.options import MaskOptions
+from core.project.files import read_project
 from tests.core.masks.samples import (
     SETS,
     holes_in,
@@ -32,10 +35,10 @@ from tests.core.masks.samples import (
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
-    from pathlib import Path
 
     from core.geometry.shape import ChannelShape
 
+SAMPLES = Path(__file__).parents[3] / "sample_designs"
 TOLERANCE_UM = 0.02
 DXF_KINDS = [("R2000", "pieces"), ("R2000", "loops"), ("R12", "pieces"), ("R12", "loops")]
 
@@ -88,6 +91,21 @@ def test_two_readers_see_the_design_in_dxf(tmp_path: Path, name: str, dxf_versio
 
 
 @pytest.mark.slow
+@pytest.mark.parametrize("dxf_kind", DXF_KINDS)
+@pytest.mark.parametrize("sample", sorted(SAMPLES.glob("*.sideloop")), ids=lambda path: path.stem)
+def test_every_sample_design(tmp_path: Path, sample: Path, dxf_kind: tuple[str, str]) -> None:
+    for number, parameter_set in enumerate(read_project(sample).sets):
+        shape = build_shape(parameter_set.channel)
+        files = written(tmp_path / str(number), shape, dxf_version=dxf_kind[0], islands=dxf_kind[1])
+        check_gdsii(files["gds"], shape)
+        check_dxf(files["dxf"], shape)
+
+
+def test_there_are_samples() -> None:
+    assert len(list(SAMPLES.glob("*.sideloop"))) >= 4
+
+
+@pytest.mark.slow
 @pytest.mark.parametrize("part", range(8))
 def test_two_hundred_random_designs(tmp_path: Path, part: int) -> None:
     for number, shape in enumerate(random_shapes(25, seed=1000 + part)):
@@ -136,7 +154,7 @@ def test_rounded_pieces_are_within_the_grid_of_the_ideal(name: str) -> None:
     drawing = arranged([("Test", shape_of(name))], chip_name="Bench 7", options=MaskOptions())[0]
     cells = {cell.name: cell for cell in gdsii_cells(drawing, chord_tolerance_um=TOLERANCE_UM)}
     for piece, chords, place in pieces_nm(shape_of(name)):
-        rounded = shapely.union_all([shapely.Polygon(ring) for ring in cells[f"TEST_{piece}"].rings_nm])
+        rounded = shapely.union_all([shapely.Polygon(ring) for ring in cells[f"TEST__{piece}"].rings_nm])
         in_cell = shapely.Polygon(chords)
         assert in_cell.exterior.hausdorff_distance(rounded.exterior) <= np.sqrt(0.5)
         assert in_cell.symmetric_difference(rounded).area <= 0.5 * in_cell.length

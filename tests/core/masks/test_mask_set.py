@@ -57,6 +57,16 @@ def test_all_sets_on_one_mask(tmp_path: Path) -> None:
         assert all(500.0 - 0.05 <= gap <= 501.0 for gap in gaps)
 
 
+def test_names_of_channels_and_pieces_never_meet(tmp_path: Path) -> None:
+    shape = shape_of("One loop")
+    names = ["A", "A start", "A__START", "Bench 7", "x" * 40, "X" * 41]
+    options = MaskOptions(one_file_per_set=False, formats=("GDSII",))
+    report = write_mask_set([(name, shape) for name in names], folder=tmp_path, chip_name="Bench 7", options=options)
+    cells = read_gdsii(tmp_path / report.files[0].name).cells
+    assert len(cells) == 3 * len(names) + 1
+    assert report.files[0].island_count == len(names)
+
+
 @pytest.mark.parametrize(
     "options",
     [
