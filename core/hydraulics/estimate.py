@@ -45,6 +45,8 @@ class Score:
         How the numbers were got.
     error_band_percent, rectification_band_percent : float
         Error to be expected of the pressures and of the rectification [%].
+    diodicity_band : float
+        Error to be expected of the diodicity, up or down [-].
     valid : bool
         Whether design and flow lie inside the range the estimate was compared in.
     notes : tuple of str
@@ -62,6 +64,7 @@ class Score:
     method: str
     error_band_percent: float
     rectification_band_percent: float
+    diodicity_band: float
     valid: bool
     notes: tuple[str, ...]
 
@@ -90,6 +93,8 @@ class Estimate:
         Part of the flow in the loop, mean over the stages; 0 without stages [-].
     error_band_percent, rectification_band_percent : array
         Error to be expected of the pressures and of the rectification [%].
+    diodicity_band : array
+        Error to be expected of the diodicity, up or down [-].
     valid : array of bool
         Whether design and flow lie inside the range the estimate was compared in.
     notes : tuple of str
@@ -113,6 +118,7 @@ class Estimate:
     loop_share_reverse: Floats
     error_band_percent: Floats
     rectification_band_percent: Floats
+    diodicity_band: Floats
     valid: NDArray[np.bool_]
     notes: tuple[str, ...]
     parameters: ChannelParameters
@@ -153,6 +159,7 @@ class Estimate:
             method=self.method,
             error_band_percent=float(self.error_band_percent[index]),
             rectification_band_percent=float(self.rectification_band_percent[index]),
+            diodicity_band=float(self.diodicity_band[index]),
             valid=bool(self.valid[index]),
             notes=(*own, *self.notes),
         )
@@ -217,6 +224,7 @@ def estimate(parameters: ChannelParameters, *, fluid: FluidState, flows_ul_min: 
         loop_share_reverse=chain.share_reverse,
         error_band_percent=trust.pressure_percent,
         rectification_band_percent=trust.rectification_percent,
+        diodicity_band=trust.rectification,
         valid=trust.valid,
         notes=design_notes(parameters, fluid=fluid),
         parameters=parameters,

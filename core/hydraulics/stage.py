@@ -30,7 +30,9 @@ if TYPE_CHECKING:
 
     Floats = NDArray[np.float64]
 
-SHORTEST = 0.1  # a branch never counts for less than this many widths, whatever its corners save
+SHORTEST = 1.0  # a branch never counts for less than this many widths, whatever its corners save ...
+LEAST = 0.1  # ... nor a whole stage for less than these; shapes that can be drawn stay above both
+WIDEST_STEP = 2.0  # ratio of widths beyond which junction formulas are not stretched any further
 
 # Heads are cubic in the loop share: four samples give their coefficients exactly.
 _SAMPLES = np.array([0.0, 1.0 / 3.0, 2.0 / 3.0, 1.0])
@@ -74,7 +76,7 @@ class Stage:
     @property
     def stokes(self) -> float:
         """Resistance of the whole stage in Stokes flow."""
-        return max(self.loop * self.stokes_share + self.common, SHORTEST)
+        return max(self.loop * self.stokes_share + self.common, LEAST)
 
 
 def stage_of(parameters: ChannelParameters) -> Stage:
@@ -93,6 +95,7 @@ def stage_of(parameters: ChannelParameters) -> Stage:
     measures = stage_measures(parameters)
     w = parameters.channel_width_um
     narrowing = parameters.loop_width_um / w
+    speeding = min(max(narrowing, 1.0 / WIDEST_STEP), WIDEST_STEP)
     saved_bypass, saved_loop, common = _corner_lengths(measures, narrowing)
     width, loop_width, depth = (1e-6 * v for v in (w, parameters.loop_width_um, parameters.depth_um))
     per_length = resistance_pa_s_m3(
@@ -108,8 +111,8 @@ def stage_of(parameters: ChannelParameters) -> Stage:
         depth_ratio=parameters.depth_um / w,
         turn=loop_unit * measures.turn_length_um / w,
         common=common,
-        **_losses(measures, narrowing),
-        **_drives(measures, narrowing),
+        **_losses(measures, speeding),
+        **_drives(measures, speeding),
     )
 
 

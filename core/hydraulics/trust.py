@@ -47,10 +47,12 @@ class Range:
 
 DESIGN_RANGES: dict[str, Range] = {
     "depth": Range(label="depth over channel width", low=0.1, high=2.0),
-    "loop_width": Range(label="loop width over channel width", low=0.6, high=1.5),
-    "loop_radius": Range(label="loop radius over channel width", low=1.2, high=4.0),
+    "loop_width": Range(label="loop width over channel width", low=0.7, high=1.4),
+    "loop_radius": Range(label="loop radius over channel width", low=1.2, high=3.5),
     "loop_angle": Range(label="loop angle", low=25.0, high=90.0, unit=" deg"),
     "loop_turn": Range(label="loop turn", low=150.0, high=210.0, unit=" deg"),
+    # a bypass that hardly bends lets forward and reverse flow part in ways the estimate misses
+    "run_bend": Range(label="run bend over loop angle", low=0.4, high=1.0),
     # closer stages rectify less than estimated: their streams meet before they have formed
     "stage_gap": Range(label="stage gap over channel width", low=0.9, high=np.inf),
 }
@@ -59,10 +61,10 @@ STEADY_UP_TO_RE = 200.0
 DUCT_LAMINAR_UP_TO_RE = 2000.0
 
 DUCT_PERCENT = 1.0  # straight channel of true size; a judgement, no source
-PRESSURE_PERCENT = 4.0  # above the 90th percentile against flow solves
-RECTIFICATION_PERCENT = 40.0  # likewise, for what can be told from zero ...
-RECTIFICATION_FLOOR = 0.003  # ... plus this much of Di, which flow solves found with either sign
-INERTIA_RE = 20.0  # above it the floor counts in full; below it falls as Re^3, like Di - 1 itself
+PRESSURE_PERCENT = 4.0  # more than nine in ten flow solves lie inside
+RECTIFICATION_PERCENT = 40.0  # together with the floor: nine in ten lie inside ...
+RECTIFICATION_FLOOR = 0.006  # ... plus this much of Di, which flow solves found with either sign
+INERTIA_RE = 30.0  # above it the floor counts in full; below it falls as Re^2
 WIDEST_PERCENT = 1000.0
 OUTSIDE_FACTOR = 2.5  # no comparison there: a judgement, no source
 
@@ -80,12 +82,15 @@ class Trust:
     ----------
     pressure_percent, rectification_percent : array
         Error to be expected [%].
+    rectification : array
+        Error of Di to be expected [-].
     valid : array of bool
         Whether design and flow lie in the compared range.
     """
 
     pressure_percent: Floats
     rectification_percent: Floats
+    rectification: Floats
     valid: NDArray[np.bool_]
 
 
@@ -113,16 +118,19 @@ def trust_of(parameters: ChannelParameters, *, fluid: FluidState, reynolds: Floa
         return Trust(
             pressure_percent=percent,
             rectification_percent=np.zeros_like(reynolds),
+            rectification=np.zeros_like(reynolds),
             valid=reynolds <= DUCT_LAMINAR_UP_TO_RE,
         )
     inside = not _outside(parameters) and stage_measures(parameters).is_possible
     # beyond the compared flows the bands widen in proportion
     factor = np.maximum(1.0, reynolds / HIGHEST_COMPARED_RE) * (1.0 if inside else OUTSIDE_FACTOR)
-    floor = RECTIFICATION_FLOOR * np.minimum(1.0, reynolds / INERTIA_RE) ** 3
-    blur = RECTIFICATION_PERCENT + 100.0 * floor / np.maximum(np.abs(rectification), np.finfo(float).tiny)
+    size = np.abs(rectification)
+    floor = RECTIFICATION_FLOOR * np.minimum(1.0, reynolds / INERTIA_RE) ** 2
+    band = factor * (RECTIFICATION_PERCENT / 100.0 * size + floor)
     return Trust(
         pressure_percent=PRESSURE_PERCENT * factor + fluid.error_percent,
-        rectification_percent=np.minimum(blur * factor, WIDEST_PERCENT),
+        rectification_percent=np.minimum(100.0 * band / np.maximum(size, np.finfo(float).tiny), WIDEST_PERCENT),
+        rectification=band,
         valid=inside & (reynolds <= STEADY_UP_TO_RE),
     )
 
@@ -227,6 +235,7 @@ def _outside(parameters: ChannelParameters) -> list[str]:
         "loop_radius": parameters.loop_radius_um / width,
         "loop_angle": parameters.loop_angle_deg,
         "loop_turn": parameters.loop_turn_deg,
+        "run_bend": parameters.run_bend_deg / parameters.loop_angle_deg,
         "stage_gap": parameters.stage_gap_um / width if parameters.stages > 1 else 1.0,
     }
     return [

@@ -46,6 +46,7 @@ def test_unsteady_flow_is_told():
         ({"loop_radius_um": 2000.0}, "loop radius over channel width"),
         ({"loop_angle_deg": 15.0, "run_bend_deg": 15.0}, "loop angle"),
         ({"loop_turn_deg": 100.0}, "loop turn"),
+        ({"run_bend_deg": 5.0}, "run bend over loop angle"),
         ({"stage_gap_um": 20.0}, "stage gap over channel width"),
     ],
 )
@@ -98,6 +99,7 @@ def test_band_of_tiny_rectification_is_wide():
     result = estimate(ChannelParameters(), fluid=WATER, flows_ul_min=[100.0, 1200.0])
     assert result.rectification_band_percent[0] > 100.0
     assert result.rectification_band_percent[1] < 60.0
+    assert result.diodicity_band == pytest.approx(result.rectification_band_percent / 100.0 * result.rectification)
 
 
 def test_control_channel_has_the_duct_band():
