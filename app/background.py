@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import logging
 from enum import StrEnum
 from threading import Event
 from typing import TYPE_CHECKING, Any
@@ -12,6 +13,8 @@ from core.errors import CoreError
 
 if TYPE_CHECKING:
     from collections.abc import Callable
+
+_LOG = logging.getLogger("sideloop")
 
 
 class Ending(StrEnum):
@@ -70,6 +73,8 @@ class BackgroundJob(QThread):
         self._outcome: tuple[Ending, object] = (Ending.CANCELLED, None)
         # QThread's own signal comes even if the thread dies, so that a waiting window never hangs.
         self.finished.connect(self._on_finished)
+        if parent is not None:  # a thread must never outlive its object
+            parent.destroyed.connect(self._on_parent_destroyed)
 
     def run(self) -> None:
         """Do the work (called by the thread itself)."""
@@ -78,11 +83,17 @@ class BackgroundJob(QThread):
         except Cancelled:
             self._outcome = (Ending.CANCELLED, None)
         except Exception as error:  # told to the user by whoever started the work
+            if not isinstance(error, CoreError | OSError):
+                _LOG.exception("unexpected failure in background work")
             self._outcome = (Ending.FAILED, error)
 
     def cancel(self) -> None:
         """Ask the work to stop at its next report."""
         self._reporter.ask_to_stop()
+
+    def _on_parent_destroyed(self) -> None:
+        self.cancel()
+        self.wait()
 
     def _on_finished(self) -> None:
         self.ended.emit(*self._outcome)

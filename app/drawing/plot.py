@@ -221,9 +221,11 @@ class Plot(pg.GraphicsLayoutWidget):  # type: ignore[misc]
         pen.setDashPattern(_COMPARISON_DASHES[number % len(_COMPARISON_DASHES)])
         self.compared.append(self._added(pg.PlotCurveItem(x, y, pen=pen, antialias=True)))
         if text:
-            label = pg.TextItem(text, color=palette.ink, anchor=(0.5, 0.5), fill=pg.mkBrush(palette.panel))
+            # above and below in turn, and three places along the curve, so that names keep apart
+            anchor = (1.0, 1.3) if number % 2 == 0 else (1.0, -0.3)
+            label = pg.TextItem(text, color=palette.ink, anchor=anchor, fill=pg.mkBrush(palette.panel))
             label.setFont(font("small"))
-            index = int((0.88 - 0.11 * (number % 7)) * (len(x) - 1))
+            index = int((0.98 - 0.26 * (number % 3)) * (len(x) - 1))
             label.setPos(float(x[index]), float(y[index]))
             self.compared.append(self._added(label))
 

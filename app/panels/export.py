@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 import json
+import time
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import Qt, QTimer
+from PySide6.QtCore import Qt, QTimer, Signal
 from PySide6.QtWidgets import (
     QDialog,
     QHBoxLayout,
@@ -22,9 +23,11 @@ from app.background import BackgroundJob, Ending, Reporter, sentence_of
 from app.look import SPACING, font, set_role
 from app.panels.export_choices import ExportChoices
 from app.panels.export_pages import proof_page, summary_page
+from app.progress_line import time_left_text
+from app.shown_values import screen_words
 from core.errors import CoreError
 from core.masks.mask_set import mask_summary, write_mask_set
-from core.masks.report import MaskSetReport
+from core.masks.report import MaskSetReport, MaskSummary
 
 if TYPE_CHECKING:
     from PySide6.QtWidgets import QWidget
@@ -52,7 +55,14 @@ class ExportDialog(QDialog):
         Remembers the choices.
     ask : Ask
         Asks for the folder.
+
+    Signals
+    -------
+    summary_shown()
+        What would be written, or why it cannot be, is on the screen.
     """
+
+    summary_shown = Signal()
 
     def __init__(self, parent: QWidget, *, document: Document, settings: Settings, ask: Ask) -> None:
         super().__init__(parent)
@@ -61,6 +71,9 @@ class ExportDialog(QDialog):
         self._project = document.project
         self._settings = settings
         self._job: BackgroundJob | None = None
+        self._summary_job: BackgroundJob | None = None
+        self._is_summary_stale = False
+        self._began_s = 0.0
         self.report: MaskSetReport | None = None
         self.choices = ExportChoices(
             self._project.sets, in_hand=document.index, folder=_first_folder(document), ask=ask
@@ -69,7 +82,7 @@ class ExportDialog(QDialog):
         self._summarise = QTimer(self, singleShot=True, interval=0)
         self._summarise.timeout.connect(self.show_summary)
         self._build()
-        self.choices.changed.connect(self._summarise.start)
+        self.choices.changed.connect(self._on_choices_changed)
         self.show_summary()
 
     def _build(self) -> None:
@@ -109,21 +122,48 @@ class ExportDialog(QDialog):
     # --- before ---------------------------------------------------------------------------
 
     def show_summary(self) -> None:
-        """Show what the choices would write, or why they cannot be used."""
-        if self._job is not None:
+        """Show what the choices would write, or why they cannot be used.
+
+        Cutting and counting many channels takes a while, so it is done in the background; choices
+        made meanwhile are looked at next.
+        """
+        if self._job is not None or self._summary_job is not None:
             return
+        self.write_button.setEnabled(False)
         self.heading.setText("What will be written")
         try:
-            named, options = self._named_shapes(), self.choices.options()
-            summary = mask_summary(named, options, chip_name=self._project.name)
+            named, options, chip_name = self._named_shapes(), self.choices.options(), self._project.name
         except CoreError as error:
-            self.page.setHtml("")
-            self._say(str(error), "error")
-            self.write_button.setEnabled(False)
+            self._show_obstacle(error)
             return
-        self.page.setHtml(summary_page(summary, folder=self.choices.folder))
-        self._say("", "")
-        self.write_button.setEnabled(True)
+        self._say("Looking at what will be written\N{HORIZONTAL ELLIPSIS}", "soft")
+        self._is_summary_stale = False
+        self._summary_job = BackgroundJob(lambda _report: mask_summary(named, options, chip_name=chip_name), self)
+        self._summary_job.ended.connect(self._on_summary_job_ended)
+        self._summary_job.start()
+
+    def _on_choices_changed(self) -> None:
+        self._is_summary_stale = True
+        self.write_button.setEnabled(False)
+        self._summarise.start()
+
+    def _on_summary_job_ended(self, _ending: Ending, outcome: object) -> None:
+        _clear_away(self._summary_job)
+        self._summary_job = None
+        if self._is_summary_stale:
+            self._summarise.start()
+        elif isinstance(outcome, MaskSummary):
+            self.page.setHtml(summary_page(outcome, folder=self.choices.folder))
+            self._say("", "")
+            self.write_button.setEnabled(True)
+            self.summary_shown.emit()
+        else:
+            self._show_obstacle(outcome)
+
+    def _show_obstacle(self, error: object) -> None:
+        self.page.setHtml("")
+        self._say(screen_words(sentence_of(error)), "error")
+        self.summary_shown.emit()
 
     def _named_shapes(self) -> list[tuple[str, ChannelShape]]:
         return [(each.name, shape_of(each.channel)) for each in self.choices.chosen_sets()]
@@ -144,6 +184,7 @@ class ExportDialog(QDialog):
         )
         self._job.progressed.connect(self._on_job_progressed)
         self._job.ended.connect(self._on_job_ended)
+        self._began_s = time.monotonic()
         self._show_busy(True)
         self._job.start()
 
@@ -157,13 +198,12 @@ class ExportDialog(QDialog):
     def _on_job_progressed(self, step: int, total: int, text: str) -> None:
         self.progress.setRange(0, total)
         self.progress.setValue(step)
-        self._say(text, "soft")
+        left = time_left_text(step, total, elapsed_s=time.monotonic() - self._began_s)
+        self._say(f"{text}; {left}" if left else text, "soft")
 
     def _on_job_ended(self, ending: Ending, outcome: object) -> None:
-        job, self._job = self._job, None
-        assert job is not None
-        job.wait()
-        job.deleteLater()
+        _clear_away(self._job)
+        self._job = None
         self._show_busy(False)
         if isinstance(outcome, MaskSetReport):
             self.report = outcome
@@ -178,24 +218,34 @@ class ExportDialog(QDialog):
 
     def reject(self) -> None:
         """Close; while files are being written, ask the work to stop instead."""
-        if self._job is None:
-            super().reject()
-        else:
+        if self._job is not None:
             self._job.cancel()
-            self._say("Stopping\N{HORIZONTAL ELLIPSIS}", "soft")
+            self._say("Stopping\N{HORIZONTAL ELLIPSIS} files that are already being put in place stay.", "soft")
+            return
+        self._summarise.stop()
+        if self._summary_job is not None:
+            self._summary_job.ended.disconnect(self._on_summary_job_ended)
+            self._summary_job.wait()
+        super().reject()
+
+
+def _clear_away(job: BackgroundJob | None) -> None:
+    """Clear away work that has ended; its thread may still be on the way out."""
+    if job is not None:
+        job.wait()
+        job.deleteLater()
 
 
 def _written(
     report: Reporter, sets: list[ParameterSet], *, folder: Path, chip_name: str, options: MaskOptions
 ) -> MaskSetReport:
-    steps = len(sets) + 1
+    steps = len(sets)
     named = []
     for step, each in enumerate(sets):
         report(step, steps, f"Drawing {each.name}")
         named.append((each.name, shape_of(each.channel)))
-    # From here on it is all or nothing: the files are put in place together, or none is.
-    report(len(sets), steps, "Writing, reading back and comparing")
-    return write_mask_set(named, folder=folder, chip_name=chip_name, options=options)
+    # All or nothing: the files are put in place together at the end, or none is.
+    return write_mask_set(named, folder=folder, chip_name=chip_name, options=options, report=report)
 
 
 def _first_folder(document: Document) -> Path:

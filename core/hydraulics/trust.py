@@ -209,12 +209,12 @@ def flow_notes(
         )
     if fluid.is_gas and pressure_pa > GAS_PRESSURE_PA:
         notes.append(
-            f"{pressure_pa / 1e3:.3g} kPa: gas expands noticeably along the channel above "
+            f"{_plain(pressure_pa / 1e3)} kPa: gas expands noticeably along the channel above "
             f"{GAS_PRESSURE_PA / 1e3:g} kPa; lower the flow or read the numbers as a guide."
         )
     if pressure_pa > SOFT_WALL_PA:
         notes.append(
-            f"{pressure_pa / 1e3:.3g} kPa: rigid walls are assumed; a soft chip bulges above about "
+            f"{_plain(pressure_pa / 1e3)} kPa: rigid walls are assumed; a soft chip bulges above about "
             f"{SOFT_WALL_PA / 1e3:g} kPa and drops less; use a stiff material or lower the flow."
         )
     return tuple(notes)
@@ -244,3 +244,8 @@ def _outside(parameters: ChannelParameters) -> list[str]:
         for name, span in DESIGN_RANGES.items()
         if not span.low <= values[name] <= span.high
     ]
+
+
+def _plain(value: float) -> str:
+    """Return a number with three figures and never with a power of ten."""
+    return f"{value:.3g}" if value < 1000.0 else f"{value:.0f}"

@@ -20,7 +20,7 @@ from core.masks.report import MaskFile, MaskSetReport, MaskSummary, PlannedFile
 
 if TYPE_CHECKING:
     import os
-    from collections.abc import Sequence
+    from collections.abc import Callable, Sequence
 
     from core.geometry.shape import ChannelShape
 
@@ -36,6 +36,7 @@ def write_mask_set(
     folder: str | os.PathLike[str],
     chip_name: str,
     options: MaskOptions | None = None,
+    report: Callable[[int, int, str], None] | None = None,
 ) -> MaskSetReport:
     """Write the mask files of a chip, with a note and a preview; all of them or none.
 
@@ -52,6 +53,9 @@ def write_mask_set(
         Name of the chip as the user typed it.
     options : MaskOptions, optional
         Formats and the rest; the defaults write DXF R2000 and GDSII, one of each per set.
+    report : callable, optional
+        Called before each mask with step, number of steps and what is being done. Whatever it
+        raises ends the work and leaves no file.
 
     Returns
     -------
@@ -68,7 +72,11 @@ def write_mask_set(
     folder = Path(folder)
     drawings = arranged(named_shapes, chip_name=chip_name, options=options)
     with told_plainly(folder), workshop(folder) as new:
-        files = [file for drawing in drawings for file in _written(new, drawing, options)]
+        files: list[MaskFile] = []
+        for step, drawing in enumerate(drawings):
+            if report is not None:
+                report(step, len(drawings), f"Writing, reading back and comparing {drawing.stem}")
+            files += _written(new, drawing, options)
         note = note_text(drawings, files, chip_name=chip_name, options=options)
         files.append(_kept(new / _note_name(chip_name), "text", note.encode()))
         put_in_place(new, folder, [file.name for file in files])

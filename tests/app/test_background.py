@@ -5,6 +5,8 @@ from __future__ import annotations
 import threading
 
 import pytest
+import shiboken6
+from PySide6.QtWidgets import QWidget
 
 from app.background import BackgroundJob, Ending, sentence_of
 from core.errors import ExportError
@@ -52,6 +54,26 @@ def test_cancelled_at_the_next_report(qapp, qtbot):
         go_on.set()
     job.wait()
     assert ended.args == [Ending.CANCELLED, None]
+
+
+def test_a_job_ends_before_its_parent_is_gone(qapp, qtbot):
+    reached, ended = threading.Event(), threading.Event()
+
+    def work(report):
+        reached.set()
+        while True:
+            try:
+                report(0, 1, "busy")
+            except BaseException:
+                ended.set()
+                raise
+
+    parent = QWidget()
+    job = BackgroundJob(work, parent)
+    job.start()
+    assert reached.wait(5)
+    shiboken6.delete(parent)
+    assert ended.is_set()
 
 
 def test_failures_are_told_in_one_sentence():

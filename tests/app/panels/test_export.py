@@ -36,12 +36,20 @@ def dialog(qtbot, parent, document, settings, folder):
     dialog.choices.folder_entry.setText(str(folder))
     with qtbot.waitExposed(dialog):
         dialog.open()
-    dialog.show_summary()
+    summarised(qtbot, dialog)
     return dialog
 
 
+def summarised(qtbot, dialog):
+    """Wait until the choices as they stand have been looked at."""
+    with qtbot.waitSignal(dialog.summary_shown, timeout=30_000):
+        pass
+
+
 def written(qtbot, dialog):
-    """Press Write and wait for the end."""
+    """Press Write, once it can be pressed, and wait for the end."""
+    if not dialog.write_button.isEnabled():
+        summarised(qtbot, dialog)
     qtbot.mouseClick(dialog.write_button, Qt.MouseButton.LeftButton)
     with qtbot.waitSignal(dialog._job.ended, timeout=30_000):
         pass
@@ -91,15 +99,15 @@ def test_formats_and_one_mask_for_all(dialog, qtbot, folder):
 @pytest.mark.parametrize(
     ("spoil", "words"),
     [
-        (lambda c: c.number_entries["chord_tolerance_um"].setText("coarse"), "chord_tolerance_um"),
+        (lambda c: c.number_entries["chord_tolerance_um"].setText("coarse"), "chord_tolerance_um is 'coarse'"),
         (lambda c: c.number_entries["clearance_um"].setText("1"), "at least 10"),
         (lambda c: [box.setChecked(False) for box in c.format_boxes.values()], "at least one"),
         (lambda c: [c.set_list.item(i).setCheckState(Qt.CheckState.Unchecked) for i in range(2)], "No set is ticked"),
     ],
 )
-def test_choices_that_cannot_be_are_told_before(dialog, spoil, words):
+def test_choices_that_cannot_be_are_told_before(dialog, qtbot, spoil, words):
     spoil(dialog.choices)
-    dialog.show_summary()
+    summarised(qtbot, dialog)
     assert words in dialog.message.text()
     assert not dialog.write_button.isEnabled()
 
@@ -108,7 +116,6 @@ def test_an_unwritable_folder_is_told_and_leaves_nothing(dialog, qtbot, tmp_path
     blocked = tmp_path / "file"
     blocked.write_text("in the way")
     dialog.choices.folder_entry.setText(str(blocked / "masks"))
-    dialog.show_summary()
     written(qtbot, dialog)
     assert dialog.report is None
     assert "cannot be written" in dialog.message.text()
@@ -152,6 +159,7 @@ def test_choices_are_remembered(dialog, qtbot, document, settings):
     dialog.choices.number_entries["chord_tolerance_um"].setText("0.05")
     written(qtbot, dialog)
     again = ExportDialog(dialog.parentWidget(), document=document, settings=settings, ask=ReadyAnswers())
+    again.reject()
     assert again.choices.combined_box.isChecked()
     assert again.choices.options().chord_tolerance_um == 0.05
 
@@ -159,6 +167,7 @@ def test_choices_are_remembered(dialog, qtbot, document, settings):
 def test_nonsense_in_the_settings_is_passed_over(dialog, document, settings):
     settings.set_choices("masks", '{"formats": ["PAPER"], "colour": 3}')
     again = ExportDialog(dialog.parentWidget(), document=document, settings=settings, ask=ReadyAnswers())
+    again.reject()
     assert len(again.choices.options().formats) == 2
 
 
@@ -166,3 +175,20 @@ def test_the_folder_is_asked_for(dialog, qtbot, tmp_path):
     dialog.choices._ask.path = tmp_path / "elsewhere"
     qtbot.mouseClick(dialog.choices.folder_button, Qt.MouseButton.LeftButton)
     assert dialog.choices.folder == tmp_path / "elsewhere"
+
+
+def test_closing_while_the_summary_is_made(qtbot, parent, document, settings):
+    dialog = ExportDialog(parent, document=document, settings=settings, ask=ReadyAnswers())
+    dialog.open()
+    assert dialog._summary_job is not None
+    dialog.reject()
+    assert not parent.findChildren(ExportDialog) or not dialog.isVisible()
+
+
+def test_choices_made_meanwhile_are_looked_at_next(dialog, qtbot):
+    dialog.show_summary()
+    dialog.choices.combined_box.setChecked(True)
+    assert not dialog.write_button.isEnabled()
+    summarised(qtbot, dialog)
+    assert dialog.write_button.isEnabled()
+    assert "BETA" not in dialog.page.toPlainText(), "one mask for all carries the name of the chip"

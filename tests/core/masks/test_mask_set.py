@@ -190,3 +190,23 @@ def test_every_sample_set_has_its_own_safe_name(tmp_path: Path) -> None:
     stems = {file.name.rpartition(".")[0] for file in summary.files[:-1]}
     assert len(stems) == len(SETS)
     assert all(len(stem) <= 27 for stem in stems)
+
+
+class Stopped(Exception):
+    pass
+
+
+def test_progress_is_told_and_a_stop_leaves_nothing(tmp_path: Path) -> None:
+    steps: list[tuple[int, int]] = []
+
+    def report(step: int, total: int, text: str) -> None:
+        steps.append((step, total))
+        assert text
+        if step == 1:
+            raise Stopped
+
+    shape = build_shape(ChannelParameters(stages=2))
+    with pytest.raises(Stopped):
+        write_mask_set([("one", shape), ("two", shape)], folder=tmp_path / "out", chip_name="Chip", report=report)
+    assert steps == [(0, 2), (1, 2)]
+    assert list(tmp_path.iterdir()) == []
