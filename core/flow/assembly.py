@@ -8,8 +8,10 @@ number on channel width and the pressure in units of ``viscosity * speed / width
 
 so that creeping flow is plainly R = 0. The term with div u vanishes in the exact solution; it keeps
 the convection from making or losing kinetic energy where triangles let a little volume leak
-(R. Temam, Bull. Soc. Math. France 96, 1968, 115), which would bend a small difference of directions. Every plane integral is computed once for all triangles and
-scattered with a fixed sparse operator; blocks are then sums of (table entry) x (scalar matrix).
+(R. Temam, Bull. Soc. Math. France 96, 1968, 115), which would bend a small difference of directions.
+
+Every plane integral is computed once for all triangles and scattered with a fixed sparse operator;
+blocks are then sums of (table entry) x (scalar matrix).
 """
 
 from __future__ import annotations
@@ -115,7 +117,9 @@ class Assembler:
             for d in (0, 1)
         ]
         self._lumped = np.bincount(corner_dofs.ravel(), np.einsum("eq,aq->ea", w, hat).ravel(), self.layout.corners)
-        self._hat_shape = self._mixed(np.einsum("eq,aq,bq->eab", w, hat, self._shape, optimize=True).reshape(len(w), 18))
+        self._hat_shape = self._mixed(
+            np.einsum("eq,aq,bq->eab", w, hat, self._shape, optimize=True).reshape(len(w), 18)
+        )
 
     def _lay_out(self) -> None:
         """Fix where every stored value of the whole matrix stands: velocity blocks, then pressure."""

@@ -66,7 +66,7 @@ def extend_settled(*, pressure_pa: float, bypass_drops_pa: Sequence[float], stag
     """
     solved = len(bypass_drops_pa) + 1
     if solved < 4 or stages < solved:
-        raise SolveError(f"stages is {stages}, solved are {solved}; allowed: 4 or more solved, and not more than stages")
+        raise SolveError(f"stages is {stages}, solved are {solved}; solve 4 or more, and not more than stages")
     inner = list(bypass_drops_pa[:-1])
     increment = inner[-1]
     change = abs(inner[-1] - inner[-2])

@@ -3,39 +3,36 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
 
 from core.errors import SolveError
 from core.findings import Severity
-from core.flow.chain import (
-    SETTLED_SHARE,
-    Ladder,
-    Lengthened,
-    Meter,
-    lengthened,
-    unsettled_share,
-    work_of_flows,
-)
+from core.flow.chains import ExtendedDrop, extend_settled
 from core.flow.channel_result import ChannelFlow, FlowPoint
+from core.flow.curve import solve_curve
 from core.flow.domain import FlowDomain
-from core.flow.quality import quality_named
-from core.flow.solve import MEMORY_LIMIT_MB
+from core.flow.quality import first_levels, quality_named
+from core.flow.solve import MEMORY_LIMIT_MB, solve
 from core.fluids import ATMOSPHERE_PA
-from core.geometry.shape import build_shape, period
+from core.geometry.chain import period
+from core.geometry.shape import build_shape
 from core.units import M3_S_PER_UL_MIN
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Iterator, Sequence
+    from collections.abc import Callable, Sequence
 
     from core.flow.result import DirectionResult, FlowField, FlowResult
     from core.fluids import FluidState
     from core.geometry.shape import ChannelShape
     from core.parameters import ChannelParameters
 
-MOST_STAGES = 9  # solved in full at most; longer chains are lengthened
+MOST_STAGES = 9  # solved in full at most; longer chains are extended
 _FULL_STAGES = 6  # up to here it does not pay to look for a shorter chain
-_FIRST_STAGES = 5  # shortest chain that is lengthened
+_FIRST_STAGES = 5  # shortest chain that is extended
 _SAGITTA_SHARE = 5e-4  # of the channel width; far below what any mesh of the solve resolves
+_STEPS = 1000  # of a whole solve, as told to the caller
 _GAS_SHARE = 0.05  # pressure drop against the atmosphere beyond which a gas is not incompressible
 
 
@@ -84,10 +81,10 @@ def solve_channel(
     quality: str = "normal",
     report: Callable[[int, int, str], None] | None = None,
     should_stop: Callable[[], bool] | None = None,
-    on_point: Callable[[FlowPoint], None] | None = None,
     most_stages: int = MOST_STAGES,
     solved_stages: int | None = None,
     memory_limit_mb: float = MEMORY_LIMIT_MB,
+    check_steady: bool = False,
 ) -> ChannelFlow:
     """Solve the steady flow through a channel, forward and reverse, at one flow or several.
 
@@ -102,17 +99,17 @@ def solve_channel(
     quality : str
         'coarse', 'normal' or 'fine'.
     report : callable, optional
-        Called as ``report(step, total, text)``; the steps are equal shares of the work.
+        Called as ``report(step, total, text)``; steps are shares of the work.
     should_stop : callable, optional
         Asked often; the solve ends with FlowStopped when it answers True.
-    on_point : callable, optional
-        Called with each point as soon as it is known; the fastest flow comes first.
     most_stages : int
-        Longest chain that is solved in full, at least 5; a longer one is lengthened from a shorter.
+        Longest chain that is solved in full, at least 5; a longer one is extended from a shorter.
     solved_stages : int or None
         Stages to solve in full if already known, from an earlier solve of the same channel.
     memory_limit_mb : float
         Most memory to use [MB].
+    check_steady : bool
+        Whether to look for growing disturbances, where there is one flow; costs some seconds.
 
     Returns
     -------
@@ -136,35 +133,29 @@ def solve_channel(
     job = _Job(
         shape=shape,
         fluid=fluid,
-        quality=quality,
         report=report,
         should_stop=should_stop,
         memory_limit_mb=memory_limit_mb,
+        check_steady=check_steady,
     )
     if solved_stages is None:
         solved_stages = job.settled_stages(max(flows), max(most_stages, _FIRST_STAGES))
-    found: dict[float, FlowPoint] = {}
-    for point in job.points(sorted(set(flows), reverse=True), solved_stages):
-        found[point.flow_ul_min] = point
-        if on_point is not None:
-            on_point(point)
+    points = job.points(flows, solved_stages, quality)
     if report is not None:
-        report(1, 1, "done")
-    return ChannelFlow(
-        parameters=parameters, fluid=fluid, points=tuple(found[flow] for flow in flows), solved_stages=solved_stages
-    )
+        report(_STEPS, _STEPS, "done")
+    return ChannelFlow(parameters=parameters, fluid=fluid, points=points, solved_stages=solved_stages)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class _Job:
-    """One call of ``solve_channel``."""
+    """What all solves of one call share."""
 
     shape: ChannelShape
     fluid: FluidState
-    quality: str
     report: Callable[[int, int, str], None] | None
     should_stop: Callable[[], bool] | None
     memory_limit_mb: float
+    check_steady: bool
 
     def settled_stages(self, flow_ul_min: float, most_stages: int) -> int:
         """Return how many stages must be solved so that the rest follows, found with coarse solves."""
@@ -173,81 +164,86 @@ class _Job:
             return p.stages
         stages = _FIRST_STAGES + (p.stages - _FIRST_STAGES) % period(p)  # so that its ends look like the whole's
         while stages + 2 <= min(most_stages, p.stages):
-            ladder = self._ladder(stages, "coarse", 1, f"looking for settled drops, {stages} stages: ")
-            result = ladder.result(flow_ul_min * M3_S_PER_UL_MIN)
-            if result.diodicity is None:  # it will fail with more stages as well
-                return stages
-            if max(unsettled_share(result.forward), unsettled_share(result.reverse)) <= SETTLED_SHARE:
+            (result,) = self._results([flow_ul_min], stages, "coarse", f"looking for settled drops, {stages} stages: ")
+            ends = [
+                extend_settled(pressure_pa=each.pressure_pa, bypass_drops_pa=each.bypass_drops_pa, stages=p.stages)
+                for each in (result.forward, result.reverse)
+                if each.pressure_pa is not None
+            ]
+            if len(ends) < 2 or all(end.settled for end in ends):  # what fails here fails with more stages as well
                 return stages
             stages += 2
         return stages
 
-    def points(self, falling_flows_ul_min: Sequence[float], solved_stages: int) -> Iterator[FlowPoint]:
-        """Yield the flows from the fastest down, each started from the one before."""
-        ladder = self._ladder(solved_stages, self.quality, len(falling_flows_ul_min), "")
-        for flow in falling_flows_ul_min:
-            result = ladder.result(flow * M3_S_PER_UL_MIN)
-            yield self._point(flow, result, solved_stages)
+    def points(self, flows_ul_min: list[float], stages: int, quality: str) -> tuple[FlowPoint, ...]:
+        """Return what is found at each flow with so many stages solved in full."""
+        results = self._results(flows_ul_min, stages, quality, "")
+        return tuple(self._point(flow, each, stages) for flow, each in zip(flows_ul_min, results, strict=True))
 
-    def _ladder(self, stages: int, quality: str, flows: int, prefix: str) -> Ladder:
+    def _results(self, flows_ul_min: list[float], stages: int, quality: str, prefix: str) -> list[FlowResult]:
         domain = channel_domain(build_shape(replace(self.shape.parameters, stages=stages)))
-        wanted = quality_named(quality)
-        work = work_of_flows(wanted, domain.depth_to_width, stages=stages, flows=flows)
-        meter = Meter(work, self.report, self.should_stop)
-        meter.prefix = prefix
-        return Ladder(
-            domain,
-            density_kg_m3=self.fluid.density_kg_m3,
-            viscosity_pa_s=self.fluid.viscosity_pa_s,
-            quality=wanted,
-            meter=meter,
-            memory_limit_mb=self.memory_limit_mb,
-        )
+        works = [
+            level.modes**1.5 / level.size**2 for level in first_levels(quality_named(quality), domain.depth_to_width)
+        ]
+        liquid: dict[str, Any] = {
+            "density_kg_m3": self.fluid.density_kg_m3,
+            "viscosity_pa_s": self.fluid.viscosity_pa_s,
+        }
+        control: dict[str, Any] = {
+            "quality": quality,
+            "report": None if self.report is None else _weighted(self.report, works, len(set(flows_ul_min)), prefix),
+            "should_stop": self.should_stop,
+            "memory_limit_mb": self.memory_limit_mb,
+        }
+        flows = [flow * M3_S_PER_UL_MIN for flow in flows_ul_min]
+        if len(flows) == 1:
+            is_checked = self.check_steady and not prefix
+            return [solve(domain, flow_m3_s=flows[0], check_steady=is_checked, **liquid, **control)]
+        return solve_curve(domain, flows_m3_s=flows, **liquid, **control)
 
     def _point(self, flow_ul_min: float, result: FlowResult, solved_stages: int) -> FlowPoint:
         p = self.shape.parameters
-        whole = {
-            name: lengthened(direction, stages=p.stages, is_forward=name == "forward")
-            if direction.pressure_pa is not None and p.stages > solved_stages
-            else None
-            for name, direction in (("forward", result.forward), ("reverse", result.reverse))
-        }
-        forward, reverse = whole["forward"], whole["reverse"]
+        is_extended = p.stages > solved_stages
+        forward, reverse = (
+            _extended(each, p.stages) if is_extended and each.pressure_pa is not None else None
+            for each in (result.forward, result.reverse)
+        )
         drops = (_pressure(result.forward, forward), _pressure(result.reverse, reverse))
         notes, is_good = self._trust(result, drops, solved_stages)
         error_percent, diodicity_band = self._bands(result, forward, reverse)
-        shift = None
-        if p.stages > solved_stages:
-            short = build_shape(replace(p, stages=solved_stages)).centreline
-            shift = self.shape.centreline.forward_inlet.point_um - short.forward_inlet.point_um
         return FlowPoint(
             flow_ul_min=flow_ul_min,
-            reynolds=result.reynolds,
+            reynolds=float(result.reynolds),
             forward_pressure_pa=drops[0],
             reverse_pressure_pa=drops[1],
-            loop_shares_forward=forward.loop_shares if forward else result.forward.loop_shares,
-            loop_shares_reverse=reverse.loop_shares if reverse else result.reverse.loop_shares,
+            loop_shares_forward=_all_shares(result.forward.loop_shares, p.stages, settled_at=1),
+            loop_shares_reverse=_all_shares(result.reverse.loop_shares, p.stages, settled_at=solved_stages - 2),
             stage_drops_forward_pa=result.forward.bypass_drops_pa,
             stage_drops_reverse_pa=result.reverse.bypass_drops_pa,
             reached_reynolds_forward=float(result.forward.reached_reynolds),
             reached_reynolds_reverse=float(result.reverse.reached_reynolds),
             error_band_percent=error_percent,
             diodicity_band=diodicity_band,
-            valid=result.valid and is_good,
+            valid=bool(result.valid and is_good),
             notes=notes,
-            quality=self.quality,
+            quality=result.quality,
             modes=int(result.modes),
             unknowns=int(result.unknowns),
             solved_stages=solved_stages,
             seconds=result.seconds,
-            forward_field=_placed(result.forward, forward, shift),
-            reverse_field=_placed(result.reverse, reverse, None),
+            forward_field=_placed(result.forward, forward, self._forward_shift_um(solved_stages)),
+            reverse_field=_placed(result.reverse, reverse, np.zeros(2)),
         )
 
+    def _forward_shift_um(self, solved_stages: int) -> np.ndarray:
+        """Return from the inlet of the chain that was solved to that of the whole [um]."""
+        short = build_shape(replace(self.shape.parameters, stages=solved_stages)).centreline
+        return self.shape.centreline.forward_inlet.point_um - short.forward_inlet.point_um
+
     def _bands(
-        self, result: FlowResult, forward: Lengthened | None, reverse: Lengthened | None
+        self, result: FlowResult, forward: ExtendedDrop | None, reverse: ExtendedDrop | None
     ) -> tuple[float | None, float | None]:
-        """Return the error of the drops [%] and of the diodicity, with what lengthening and fluid add."""
+        """Return the error of the drops [%] and of the diodicity, with what extension and fluid add."""
         if result.error_band_percent is None or result.diodicity_band is None or result.diodicity is None:
             return None, None
         percent, diodicity_band = result.error_band_percent, result.diodicity_band
@@ -257,18 +253,17 @@ class _Job:
             growth = abs(diodicity - 1.0) / max(abs(result.diodicity - 1.0), 1e-9)
             percent += 100.0 * max(shares)
             diodicity_band = diodicity_band * max(growth, 1.0) + diodicity * sum(shares)
-        return percent + self.fluid.error_percent, diodicity_band
+        return float(percent + self.fluid.error_percent), float(diodicity_band)
 
     def _trust(
         self, result: FlowResult, drops: tuple[float | None, float | None], solved_stages: int
     ) -> tuple[tuple[str, ...], bool]:
         """Return the notes, and whether nothing beside the solve itself speaks against the answer."""
         notes, is_good = [*result.notes], True
-        if self.shape.parameters.stages > solved_stages:
-            more = self.shape.parameters.stages - solved_stages
+        if (more := self.shape.parameters.stages - solved_stages) > 0:
             notes.append(
                 f"{solved_stages} stages were solved; each of the other {more} is counted with the drop per stage "
-                "that had settled, with its error in the band"
+                "that had settled, and the error of doing so is in the band"
             )
         highest = max((drop for drop in drops if drop is not None), default=0.0)
         if self.fluid.is_gas and highest > _GAS_SHARE * ATMOSPHERE_PA:
@@ -290,16 +285,79 @@ def _checked_flows(flows_ul_min: Sequence[float]) -> list[float]:
     return flows
 
 
-def _pressure(direction: DirectionResult, whole: Lengthened | None) -> float | None:
+def _weighted(
+    report: Callable[[int, int, str], None], works: list[float], flows: int, prefix: str
+) -> Callable[[int, int, str], None]:
+    """Return a report in shares of the work: a level has one step for its mesh and two for each flow."""
+    per_level = 1 + 2 * flows
+
+    def tell(step: int, _total: int, text: str) -> None:
+        level, part = divmod(max(step - 1, 0), per_level)
+        further = [works[-1]] * max(level + 1 - len(works), 0)  # levels that the tolerance asked for
+        known = [*works, *further]
+        done = sum(known[:level]) + known[level] * part / per_level
+        report(round(_STEPS * done / sum(known)), _STEPS, prefix + text)
+
+    return tell
+
+
+def _extended(direction: DirectionResult, stages: int) -> ExtendedDrop:
+    assert direction.pressure_pa is not None
+    return extend_settled(pressure_pa=direction.pressure_pa, bypass_drops_pa=direction.bypass_drops_pa, stages=stages)
+
+
+def _all_shares(shares: tuple[float, ...], stages: int, *, settled_at: int) -> tuple[float, ...]:
+    """Return the loop shares of all stages, those not solved like the one that had settled."""
+    more = stages - len(shares)
+    return (*shares[:settled_at], *shares[settled_at : settled_at + 1] * more, *shares[settled_at:]) if more else shares
+
+
+def _pressure(direction: DirectionResult, whole: ExtendedDrop | None) -> float | None:
     return whole.pressure_pa if whole is not None else direction.pressure_pa
 
 
-def _placed(direction: DirectionResult, whole: Lengthened | None, shift_um: object) -> FlowField | None:
+def _placed(direction: DirectionResult, whole: ExtendedDrop | None, shift_um: np.ndarray) -> FlowField | None:
     """Return the field where its stages lie in the whole channel, with the pressure there."""
-    field = direction.field
-    if field is None or direction.pressure_pa is None or whole is None:
-        return field if direction.pressure_pa is not None else None
-    pressure = field.pressure_modes_pa.copy()
-    pressure[0] += whole.added_pa
-    points = field.points_um if shift_um is None else field.points_um + shift_um
-    return replace(field, points_um=points, pressure_modes_pa=pressure)
+    if direction.field is None or direction.pressure_pa is None:
+        return None
+    if whole is None:
+        return direction.field
+    pressure = direction.field.pressure_modes_pa.copy()
+    pressure[0] += whole.pressure_pa - direction.pressure_pa
+    return replace(direction.field, points_um=direction.field.points_um + shift_um, pressure_modes_pa=pressure)
+
+
+def streamline_seeds_um(shape: ChannelShape, *, is_forward: bool, lines: int = 11, per_path: int = 2) -> np.ndarray:
+    """Return places through which streamlines show a flow well, shape (s, 2) [um].
+
+    Parameters
+    ----------
+    shape : ChannelShape
+        Whose flow is drawn.
+    is_forward : bool
+        Whether the flow enters at the far end of the lead in.
+    lines : int
+        Streamlines that start where the flow enters.
+    per_path : int
+        Streamlines through the middle of each loop and each bypass.
+    """
+    end = shape.centreline.forward_inlet if is_forward else shape.centreline.forward_outlet
+    inward = -np.array([np.cos(end.outward_heading_rad), np.sin(end.outward_heading_rad)])
+    seeds = [_along(end.section_um, lines) + 0.1 * end.width_um * inward]
+    for place in shape.centreline.stages:
+        seeds += [_along(place.loop_section_um, per_path), _along(place.bypass_section_um, per_path)]
+    return np.concatenate(seeds)
+
+
+def _along(chord_um: np.ndarray, count: int) -> np.ndarray:
+    """Return places along a chord, the outer ones half a space from its ends."""
+    share = (np.arange(count)[:, None] + 0.5) / count
+    return chord_um[0] + share * (chord_um[1] - chord_um[0])
+
+
+def curve_flows_ul_min(top_ul_min: float, *, through_ul_min: float, count: int = 8) -> tuple[float, ...]:
+    """Return flows for a curve from near zero to a top, rising, one of them a given flow [uL/min]."""
+    even = top_ul_min * np.arange(1, count + 1) / count
+    nearest = int(np.argmin(np.abs(even - through_ul_min)))
+    even[nearest] = through_ul_min
+    return tuple(sorted(set(even.tolist())))

@@ -70,7 +70,13 @@ def solve_curve(
         from core.flow.side_by_side import solve_in_processes
 
         return solve_in_processes(
-            domain, flows_m3_s, liquid, processes, memory_limit_mb=memory_limit_mb, report=report, should_stop=should_stop
+            domain,
+            flows_m3_s,
+            liquid,
+            processes,
+            memory_limit_mb=memory_limit_mb,
+            report=report,
+            should_stop=should_stop,
         )
     began = time.perf_counter()
     wanted = quality_named(quality)
@@ -90,7 +96,7 @@ def _climb_all(
     domain: FlowDomain, reynolds: list[float], quality: Quality, progress: Progress, memory_limit_mb: float
 ) -> list[Climb]:
     """Return a ladder for every flow; further levels only for the flows that need them."""
-    climbs = [Climb() for _ in reynolds]
+    climbs = [Climb(quality) for _ in reynolds]
     for level in first_levels(quality, domain.depth_to_width):
         _add_level(domain, level, climbs, reynolds, quality, progress, memory_limit_mb)
     while True:
@@ -106,7 +112,13 @@ def _climb_all(
             return climbs
         try:
             _add_level(
-                domain, level, [climbs[i] for i in poor], [reynolds[i] for i in poor], quality, progress, memory_limit_mb
+                domain,
+                level,
+                [climbs[i] for i in poor],
+                [reynolds[i] for i in poor],
+                quality,
+                progress,
+                memory_limit_mb,
             )
         except SolveError as error:
             if type(error) is not SolveError:

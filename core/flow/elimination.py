@@ -85,7 +85,9 @@ class Elimination:
                 options={"SymmetricMode": True, "Equil": False},
             )
         except (RuntimeError, MemoryError) as error:
-            raise SolveError(f"the flow equations could not be factorised ({error}); choose quality 'coarse' or fewer stages") from error
+            raise SolveError(
+                f"the equations could not be factorised ({error}); choose quality 'coarse' or fewer stages"
+            ) from error
         return Factor(lu, self._order)
 
 

@@ -81,7 +81,7 @@ class Answer:
     def drop(self, direction: str) -> float:
         """Return a pressure drop in units of the solve."""
         branch = self.branches[direction]
-        return self.problems[direction].pressure_drop(branch.state, branch.reynolds)
+        return float(self.problems[direction].pressure_drop(branch.state, branch.reynolds))
 
     @property
     def complete(self) -> bool:
@@ -100,6 +100,7 @@ class Climb:
 
     Attributes
     ----------
+    quality : Quality
     last : Answer or None
     by_modes, by_size : Band or None
         None as long as nothing is known.
@@ -107,6 +108,7 @@ class Climb:
         Largest need of a level so far.
     """
 
+    quality: Quality
     last: Answer | None = None
     by_modes: Band | None = None
     by_size: Band | None = None
@@ -117,7 +119,8 @@ class Climb:
         """Error of the last answer, or None if no two answers can be compared."""
         if self.last is None or not self.last.complete or (self.by_modes is None and self.by_size is None):
             return None
-        return (self.by_modes or Band()) + (self.by_size or Band()) + least_band(self.last.diodicity)
+        least = least_band(self.quality, self.last.diodicity, self.last.branches["forward"].reynolds)
+        return (self.by_modes or Band()) + (self.by_size or Band()) + least
 
     def add(self, answer: Answer) -> None:
         """Take the next answer and compare it with the one before."""
@@ -133,7 +136,9 @@ class Climb:
             self.by_size = band
 
 
-def climb(domain: FlowDomain, reynolds: float, quality: Quality, progress: Progress, *, memory_limit_mb: float) -> Climb:
+def climb(
+    domain: FlowDomain, reynolds: float, quality: Quality, progress: Progress, *, memory_limit_mb: float
+) -> Climb:
     """Solve levels until the tolerance is met, the ladder ends, or a flow cannot be reached twice.
 
     Parameters
@@ -157,14 +162,16 @@ def climb(domain: FlowDomain, reynolds: float, quality: Quality, progress: Progr
     FlowStopped
         If the caller stopped.
     """
-    state, misses = Climb(), 0
+    state, misses = Climb(quality), 0
     for level in first_levels(quality, domain.depth_to_width):
         state.add(solve_level(domain, level, state.last, reynolds, quality, progress, memory_limit_mb))
         misses = 0 if state.last.complete else misses + 1
         if misses == 2:
             return state
     while state.band is not None and not good_enough(quality, state.band, state.last.diodicity):
-        level = next_level(quality, state.last.level, domain.depth_to_width, state.by_modes or Band(), state.by_size or Band())
+        level = next_level(
+            quality, state.last.level, domain.depth_to_width, state.by_modes or Band(), state.by_size or Band()
+        )
         if level is None or _too_large(state.last, level, memory_limit_mb):
             break
         answer = solve_level(domain, level, state.last, reynolds, quality, progress, memory_limit_mb)
@@ -199,13 +206,14 @@ def solve_level(
 def prepared(domain: FlowDomain, level: Level, progress: Progress, memory_limit_mb: float) -> Answer:
     """Return a level with its mesh and equations, not yet solved."""
     from core.flow.assembly import Assembler
-    from core.flow.mesh import MeshPlan, channel_mesh
+    from core.flow.mesh import channel_mesh, plan_for_depth
     from core.flow.modes import depth_tensors
     from core.flow.problem import both_directions
 
     check_size(domain, level, memory_limit_mb)
     progress.tick(f"meshing, triangles of {level.size:.2g} widths")
-    assembler = Assembler(channel_mesh(domain, MeshPlan(level.size)), depth_tensors(level.modes, domain.depth_to_width))
+    mesh = channel_mesh(domain, plan_for_depth(level.size, domain.depth_to_width))
+    assembler = Assembler(mesh, depth_tensors(level.modes, domain.depth_to_width))
     problems = both_directions(assembler)
     memory = needed_memory_mb(max(p.fill for p in problems.values()), assembler.layout.size)
     check_memory(memory, domain.stages, memory_limit_mb)
@@ -229,6 +237,7 @@ def _solve_direction(
     if branch is None:
         branch = creeping_branch(problem)
     answer.reached[direction] = follow(problem, branch, reynolds, tolerance=tolerance, pause=pause)
+    branch.factor = None  # large, and of no use to the next level
     answer.branches[direction] = branch
 
 

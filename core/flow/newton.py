@@ -17,6 +17,7 @@ if TYPE_CHECKING:
 _TOLERANCE = 1e-9  # size of the last correction against the size of the state
 _KEEP_FACTOR = 0.3  # corrections must shrink at least this much for a factor to be used again
 _MOST_FACTORS = 6  # for one Reynolds number
+_MOST_IN_ALL = 50  # for one flow
 _FIRST_STEP = 25.0
 _SMALLEST_STEP = 0.5
 
@@ -98,8 +99,10 @@ def follow(
     bool
         Whether ``target`` was reached.
     """
-    step = _FIRST_STEP
+    step, spent = _FIRST_STEP, branch.factorisations
     while branch.reynolds != target:
+        if branch.factorisations - spent > _MOST_IN_ALL:
+            return False
         away = target - branch.reynolds
         if abs(away) > 1.3 * step:
             away = np.copysign(step, away)

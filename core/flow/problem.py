@@ -112,7 +112,7 @@ class FlowProblem:
         at the inlet itself and equals it where the flow is developed.
         """
         reaction = self.full_residual(state, reynolds) @ self.inflow
-        return float(reaction) / -self.flow_through(self.inflow, self.inlet)
+        return float(reaction / -self.flow_through(self.inflow, self.inlet))
 
     def mean_pressure(self, state: np.ndarray, boundary: str) -> float:
         """Return the pressure averaged over an open end and the depth."""

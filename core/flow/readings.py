@@ -40,7 +40,7 @@ def direction_result(
     DirectionResult
         Without numbers that belong to another flow where it was not reached.
     """
-    top = unit.on_hydraulic_diameter(branch.reynolds)
+    top = float(unit.on_hydraulic_diameter(branch.reynolds))
     if not reached:
         return DirectionResult(pressure_pa=None, reached_reynolds=top, factorisations=branch.factorisations)
     sampler = Sampler(problem.assembler.mesh)

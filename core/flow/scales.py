@@ -71,11 +71,11 @@ def scales(domain: FlowDomain, *, flow_m3_s: float, density_kg_m3: float, viscos
     for name, value in (("flow_m3_s", flow_m3_s), ("density_kg_m3", density_kg_m3), ("viscosity_pa_s", viscosity_pa_s)):
         if not 0 < value < float("inf"):
             raise SolveError(f"{name} is {value}; it must be positive and finite")
-    width = domain.channel_width_um * 1e-6
+    width = float(domain.channel_width_um) * 1e-6
     return Scales(
-        speed_m_s=flow_m3_s / (width * domain.depth_um * 1e-6),
+        speed_m_s=float(flow_m3_s) / (width * float(domain.depth_um) * 1e-6),
         width_m=width,
         density_kg_m3=density_kg_m3,
         viscosity_pa_s=viscosity_pa_s,
-        depth_to_width=domain.depth_to_width,
+        depth_to_width=float(domain.depth_to_width),
     )

@@ -82,7 +82,7 @@ def solve_in_processes(
 def _gather(links: list[Connection], report: Callable | None, should_stop: Callable | None) -> dict[float, FlowResult]:
     """Take messages from all children until each has delivered."""
     solved: dict[float, FlowResult] = {}
-    steps, open_links = {link: (0, 1) for link in links}, list(links)
+    steps, open_links = dict.fromkeys(links, (0, 1)), list(links)
     while open_links:
         if should_stop is not None and should_stop():
             raise FlowStopped("the flow solve was stopped")
@@ -90,7 +90,7 @@ def _gather(links: list[Connection], report: Callable | None, should_stop: Calla
             try:
                 kind, content = link.recv()
             except EOFError as error:
-                raise SolveError("a process of the flow curve ended without an answer; memory may have run out") from error
+                raise SolveError("a process of the flow curve died; memory may have run out") from error
             if kind == "error":
                 raise SolveError(content)
             if kind == "done":

@@ -80,7 +80,14 @@ def solve(
     progress = Progress(3 * len(wanted.steps) + 1, report, should_stop)
     ladder = climb(domain, unit.width_reynolds, wanted, progress, memory_limit_mb=memory_limit_mb)
     result = as_result(
-        domain, unit, ladder, flow_m3_s=flow_m3_s, quality=wanted, began=began, check_steady=check_steady, progress=progress
+        domain,
+        unit,
+        ladder,
+        flow_m3_s=flow_m3_s,
+        quality=wanted,
+        began=began,
+        check_steady=check_steady,
+        progress=progress,
     )
     progress.tick("done")
     return result
@@ -103,7 +110,9 @@ def as_result(
     if check_steady:
         steady, remark = _steadiness(ladder, progress)
         notes.append(remark)
-    results = {d: direction_result(domain, unit, last.problems[d], last.branches[d], last.reached[d]) for d in DIRECTIONS}
+    results = {
+        d: direction_result(domain, unit, last.problems[d], last.branches[d], last.reached[d]) for d in DIRECTIONS
+    }
     assembler = last.problems["forward"].assembler
     return FlowResult(
         flow_m3_s=flow_m3_s,
@@ -113,8 +122,8 @@ def as_result(
         error_band_percent=band.pressure_percent if band else None,
         diodicity_band=band.diodicity if band else None,
         modes=last.level.modes,
-        unknowns=assembler.layout.size,
-        triangles=assembler.mesh.t.shape[1],
+        unknowns=int(assembler.layout.size),
+        triangles=int(assembler.mesh.t.shape[1]),
         seconds=time.perf_counter() - began,
         memory_mb=ladder.memory_mb,
         quality=quality.name,
@@ -130,7 +139,8 @@ def _notes(ladder: Climb, unit: Scales, quality: Quality) -> list[str]:
         if not last.reached[direction]:
             top = unit.on_hydraulic_diameter(last.branches[direction].reynolds)
             notes.append(
-                f"no steady {direction} flow was found at Reynolds number {unit.reynolds:.4g}; the highest reached is {top:.4g}"
+                f"no steady {direction} flow was found at Reynolds number {unit.reynolds:.4g}; "
+                f"the highest reached is {top:.4g}"
             )
     if last.complete and band is None:
         notes.append("no error band: the coarser answer that it is taken from was not found")
@@ -153,5 +163,8 @@ def _steadiness(ladder: Climb, progress: Progress) -> tuple[bool, str]:
     worst = max(rates, key=rates.__getitem__)
     measure = "per channel width travelled at mean speed (leading eigenvalue of the linearised flow)"
     if rates[worst] > 0:
-        return False, f"the {worst} flow would not stay steady: a small disturbance grows by {rates[worst]:.3g} {measure}"
+        return (
+            False,
+            f"the {worst} flow would not stay steady: a small disturbance grows by {rates[worst]:.3g} {measure}",
+        )
     return True, f"steady: the most persistent disturbance decays by {-rates[worst]:.3g} {measure}"

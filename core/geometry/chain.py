@@ -185,6 +185,18 @@ def _middle_of(spans: list[tuple[int, float, float]]) -> float:
     return 0.5 * (low + high)
 
 
+def period(parameters: ChannelParameters) -> int:
+    """Return after how many stages the chain repeats."""
+    return 2 if parameters.sides == "alternate" else 1
+
+
+def drawn_stages(parameters: ChannelParameters) -> int:
+    """Return how many stages must be drawn to know every neighbourhood of a longer chain."""
+    step = period(parameters)
+    least = 2 + step
+    return min(parameters.stages, least + (parameters.stages - least) % step)
+
+
 def draw_chain(parameters: ChannelParameters) -> Chain:
     """Return a chain drawn exactly, with islands and other corners rounded by their own radii.
 

@@ -12,9 +12,9 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from core.errors import GeometryError
-from core.geometry.chain import Chain, walk
+from core.geometry.chain import Chain, period, walk
 from core.geometry.contour import Contour
-from core.geometry.shape import period, repeat_vector
+from core.geometry.shape import repeat_vector
 
 if TYPE_CHECKING:
     from core.geometry.chain import Spot

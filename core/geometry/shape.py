@@ -15,10 +15,11 @@ import numpy as np
 from core.errors import GeometryError
 from core.findings import Finding, Severity
 from core.geometry.centreline import Centreline, StagePlace, build_centreline
-from core.geometry.chain import Chain, draw_chain, walk
-from core.geometry.collisions import collisions, early_findings
+from core.geometry.chain import Chain, draw_chain, drawn_stages, period, walk
+from core.geometry.collisions import collision_in
 from core.geometry.contour import Contour, Outline
 from core.geometry.measures import stage_measures
+from core.geometry.shape_findings import collision_finding, early_finding
 
 if TYPE_CHECKING:
     from core.geometry.contour import Floats
@@ -73,17 +74,18 @@ def build_shape(parameters: ChannelParameters) -> ChannelShape:
     ChannelShape
         With an outline, or with findings that name the field to change; never an exception.
     """
-    findings = early_findings(parameters)
-    if findings:
-        return ChannelShape(parameters, None, findings)
+    early = early_finding(parameters)
+    if early is not None:
+        return ChannelShape(parameters, None, (early,))
     short = replace(parameters, stages=drawn_stages(parameters))
     try:
         chain = draw_chain(short)
-        findings = collisions(chain)
-        outline = None if findings else long_outline(chain, parameters.stages)
+        collision = collision_in(chain)
+        if collision is not None:
+            return ChannelShape(parameters, None, (collision_finding(chain, collision),), chain)
+        return ChannelShape(parameters, long_outline(chain, parameters.stages), (), chain)
     except GeometryError as error:
         return ChannelShape(parameters, None, (_unclear(error),))
-    return ChannelShape(parameters, outline, findings, chain)
 
 
 def _unclear(error: GeometryError) -> Finding:
@@ -93,18 +95,6 @@ def _unclear(error: GeometryError) -> Finding:
         message=f"{error}; raise stage_gap_um, or change loop_radius_um a little",
         field="stage_gap_um",
     )
-
-
-def period(parameters: ChannelParameters) -> int:
-    """Return after how many stages the chain repeats."""
-    return 2 if parameters.sides == "alternate" else 1
-
-
-def drawn_stages(parameters: ChannelParameters) -> int:
-    """Return how many stages must be drawn to know every neighbourhood of a longer chain."""
-    step = period(parameters)
-    least = 2 + step
-    return min(parameters.stages, least + (parameters.stages - least) % step)
 
 
 def repeat_vector(chain: Chain) -> Floats:

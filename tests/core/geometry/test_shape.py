@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 import time
 from collections import Counter
 from dataclasses import replace
@@ -11,10 +12,11 @@ import numpy as np
 import pytest
 import shapely
 
-from core.findings import Severity
+from core.findings import Finding, Severity
 from core.geometry.centreline import build_centreline
+from core.geometry.chain import drawn_stages
 from core.geometry.contour import LARGEST_SWEEP
-from core.geometry.shape import ChannelShape, build_shape, drawn_stages
+from core.geometry.shape import ChannelShape, build_shape
 from core.parameters import CHANNEL_FIELDS, ChannelParameters
 from tests.core.geometry.designs import anywhere, independent_area_um2, polygon, round_numbers, sensible
 
@@ -191,10 +193,25 @@ def test_what_cannot_be_drawn_is_named(changes: dict[str, float], code: str, fie
     assert [(f.code, f.field) for f in shape.findings] == [(code, field)]
 
 
-def test_the_value_a_finding_proposes_cures_it() -> None:
-    shape = build_shape(ChannelParameters(loop_turn_deg=80))
-    needed = int(shape.findings[0].message.split("at least ")[1].split(",")[0])
-    assert build_shape(ChannelParameters(loop_turn_deg=80, return_length_um=needed)).findings != shape.findings
+def proposed(finding: Finding) -> float | None:
+    found = re.search(r"(?:\(to|at least|at most|above) ([\d.e+]+)", finding.message)
+    return float(found.group(1)) if found else None
+
+
+@pytest.mark.parametrize("maker", [sensible, round_numbers])
+def test_the_value_a_finding_proposes_cures_it(maker: Callable[[np.random.Generator], ChannelParameters]) -> None:
+    rng = np.random.default_rng(4)
+    tried = 0
+    for _ in range(120):
+        parameters = maker(rng)
+        shape = build_shape(parameters)
+        value = proposed(shape.findings[0]) if shape.findings else None
+        if value is None or value > CHANNEL_FIELDS[shape.findings[0].field].maximum:
+            continue
+        tried += 1
+        cured = build_shape(parameters.with_values({shape.findings[0].field: value}))
+        assert [f.code for f in cured.findings] != [shape.findings[0].code], shape.findings[0].message
+    assert tried > 15
 
 
 def population(maker: Callable[[np.random.Generator], ChannelParameters], seed: int, count: int) -> Counter[str]:

@@ -60,10 +60,17 @@ def chain(
         top = loops[-1][len(loops[-1]) // 2]
         centre = fork + 2 * r / math.tan(a) * _unit(heading + side * a) + r * _unit(heading + side * (a - math.pi / 2))
         outward = (top - centre) / r
-        sections.append((
-            np.array([middle - width_um / 2 * _unit(heading + math.pi / 2), middle + width_um / 2 * _unit(heading + math.pi / 2)]),
-            np.array([top - loop_width_um / 2 * outward, top + loop_width_um / 2 * outward]),
-        ))
+        sections.append(
+            (
+                np.array(
+                    [
+                        middle - width_um / 2 * _unit(heading + math.pi / 2),
+                        middle + width_um / 2 * _unit(heading + math.pi / 2),
+                    ]
+                ),
+                np.array([top - loop_width_um / 2 * outward, top + loop_width_um / 2 * outward]),
+            )
+        )
         spine.append(fork)
         mouth = fork + run * _unit(heading)
         spine.append(mouth)
