@@ -29,6 +29,9 @@ _LARGEST_PIECE = pi / 4
 def ring_paths(contours: Sequence[Contour]) -> list[QPainterPath]:
     """Return closed rings, each as a path of lines and arcs.
 
+    Rings that share their bulges are one ring in several places (the islands of a long chain), and
+    are drawn once.
+
     Parameters
     ----------
     contours : sequence of Contour
@@ -39,6 +42,19 @@ def ring_paths(contours: Sequence[Contour]) -> list[QPainterPath]:
     list of QPainterPath
         In micrometres, in the same order.
     """
+    distinct: dict[int, Contour] = {}
+    for ring in contours:
+        distinct.setdefault(id(ring.bulges), ring)
+    drawn = dict(zip(distinct, _drawn(list(distinct.values())), strict=True))
+    paths = []
+    for ring in contours:
+        dx, dy = (ring.vertices_um[0] - distinct[id(ring.bulges)].vertices_um[0]).tolist()
+        path = drawn[id(ring.bulges)]
+        paths.append(path.translated(dx, dy) if dx or dy else path)
+    return paths
+
+
+def _drawn(contours: Sequence[Contour]) -> list[QPainterPath]:
     # all rings in one go: each ends with its first vertex again, whose edge leads to the next ring
     chain = Contour.joined(
         (np.concatenate((ring.vertices_um, ring.vertices_um[:1])), np.append(ring.bulges, 0.0)) for ring in contours
