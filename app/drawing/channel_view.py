@@ -38,6 +38,7 @@ from app.drawing.zoom_area import ZoomArea
 if TYPE_CHECKING:
     from PySide6.QtGui import QHelpEvent, QKeyEvent, QPaintEvent
 
+    from app.drawing.flow_overlay import FlowOverlay
     from app.look import Palette
     from core.findings import Finding
     from core.geometry.shape import ChannelShape
@@ -100,6 +101,17 @@ class ChannelView(ZoomArea):
         """
         self._picture.shares = None if forward is None or reverse is None else (forward, reverse)
         self.update()
+
+    def use_overlay(self, overlay: FlowOverlay) -> None:
+        """Lay a solved flow over the channel from now on, as far as the overlay shows one."""
+        self._picture.overlay = overlay
+        overlay.changed.connect(self.update)
+
+    def paint_kept(self, painter: QPainter) -> None:
+        """Paint what is seen now into a picture that is kept, sharp and without the frame of the focus."""
+        self._picture.is_kept = True
+        self._picture.paint(painter, QRectF(self.rect()), self.camera)
+        self._picture.is_kept = False
 
     def set_length_unit(self, unit: str) -> None:
         """Write lengths in ``um`` or ``mm``."""

@@ -6,8 +6,9 @@ zooms and pans, so they are made once per shape.
 
 from __future__ import annotations
 
-from math import ceil, cos, pi, sin, tan
-from typing import TYPE_CHECKING
+from dataclasses import dataclass
+from math import pi
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from PySide6.QtCore import QPointF
@@ -16,7 +17,9 @@ from PySide6.QtGui import QPainterPath
 from core.geometry.contour import Contour, arc_data
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable, Sequence
+    from collections.abc import Iterable, Iterator, Sequence
+
+    from numpy.typing import NDArray
 
     from core.geometry.centreline import Stroke
     from core.geometry.contour import Outline
@@ -61,21 +64,18 @@ def _drawn(contours: Sequence[Contour]) -> list[QPainterPath]:
     )
     is_jump = np.zeros(len(chain.bulges), dtype=bool)
     is_jump[np.cumsum([len(ring.bulges) + 1 for ring in contours]) - 1] = True
-    centre, radius, start, sweep = arc_data(chain)
-    ends = np.roll(chain.vertices_um, -1, axis=0)
+    steps = _steps(chain)
     path = QPainterPath(QPointF(*chain.vertices_um[0].tolist()))
     paths = []
-    for is_last, bulge, end, middle, size, angle, turn in zip(
-        *(column.tolist() for column in (is_jump, chain.bulges, ends, centre, radius, start, sweep)), strict=True
-    ):
+    for is_last, is_straight, *points in _told(is_jump[steps.edge], *steps.columns):
         if is_last:
             path.closeSubpath()
             paths.append(path)
-            path = QPainterPath(QPointF(*end))
-        elif bulge == 0.0:
-            path.lineTo(*end)
+            path = QPainterPath(QPointF(*points[-2:]))
+        elif is_straight:
+            path.lineTo(*points[-2:])
         else:
-            _add_arc(path, middle, size, angle, turn)
+            path.cubicTo(*points)
     return paths
 
 
@@ -95,31 +95,73 @@ def outline_path(outline: Outline) -> QPainterPath:
 def strokes_path(strokes: Iterable[Stroke]) -> QPainterPath:
     """Return centre lines as one open path, in micrometres."""
     path = QPainterPath()
-    for stroke in strokes:
-        begin = QPointF(*stroke.start_um.tolist())
-        if path.currentPosition() != begin or path.elementCount() == 0:
-            path.moveTo(begin)
-        if stroke.bulge == 0.0:
-            path.lineTo(*stroke.end_um.tolist())
+    listed = list(strokes)
+    if not listed:
+        return path
+    # each stroke is an edge, followed by the straight one that leads to the next stroke
+    vertices = np.array([point for stroke in listed for point in (stroke.start_um, stroke.end_um)])
+    bulges = np.array([bulge for stroke in listed for bulge in (stroke.bulge, 0.0)])
+    steps = _steps(Contour(vertices, bulges))
+    current, end = -1, None
+    for edge, is_straight, *points in _told(steps.edge, *steps.columns):
+        if edge % 2:
+            continue
+        if edge != current and vertices[edge].tolist() != end:
+            path.moveTo(*vertices[edge].tolist())
+        if is_straight:
+            path.lineTo(*points[-2:])
         else:
-            centre, radius, start, sweep = stroke.arc()
-            _add_arc(path, centre.tolist(), radius, start, sweep)
+            path.cubicTo(*points)
+        current, end = edge, points[-2:]
     return path
 
 
-def _add_arc(path: QPainterPath, centre: Sequence[float], radius: float, start: float, sweep: float) -> None:
-    """Add an arc from the path's end, as cubic curves that touch the circle at both ends [um, rad]."""
-    x, y = centre
-    count = max(1, ceil(abs(sweep) / _LARGEST_PIECE - 1e-9))
-    piece = sweep / count
-    reach = 4.0 / 3.0 * tan(piece / 4.0)
-    across, up = radius * cos(start), radius * sin(start)
-    for i in range(1, count + 1):
-        angle = start + i * piece
-        next_across, next_up = radius * cos(angle), radius * sin(angle)
-        path.cubicTo(
-            x + across - reach * up, y + up + reach * across,
-            x + next_across + reach * next_up, y + next_up - reach * next_across,
-            x + next_across, y + next_up,
-        )  # fmt: skip
-        across, up = next_across, next_up
+def _told(*columns: NDArray[Any]) -> Iterator[tuple[Any, ...]]:
+    """Yield the entries of several arrays side by side, as plain numbers."""
+    return zip(*(column.tolist() for column in columns), strict=True)
+
+
+@dataclass(frozen=True, slots=True)
+class _Steps:
+    """What a painter path is told, one entry a line or cubic curve.
+
+    Attributes
+    ----------
+    edge : array of int, shape (n,)
+        Which edge of the contour it belongs to.
+    columns : tuple of array
+        Whether it is straight; then x and y of both control points and of the end [um].
+    """
+
+    edge: NDArray[np.int_]
+    columns: tuple[NDArray[np.bool_], *tuple[NDArray[np.float64], ...]]
+
+
+def _steps(chain: Contour) -> _Steps:
+    """Return all edges as lines and as cubic curves that touch their circle at both ends."""
+    centre, radius, start, sweep = arc_data(chain)
+    count = np.maximum(1, np.ceil(np.abs(sweep) / _LARGEST_PIECE - 1e-9)).astype(int)
+    edge = np.repeat(np.arange(len(count)), count)
+    number = np.arange(len(edge)) - np.repeat(np.cumsum(count) - count, count)
+    piece = sweep[edge] / count[edge]
+    first = start[edge] + number * piece
+    is_straight = chain.bulges[edge] == 0.0
+    size = np.where(is_straight, 0.0, radius[edge])
+    reach = 4.0 / 3.0 * np.tan(piece / 4.0)
+    x, y = centre[edge].T
+    across, up = size * np.cos(first), size * np.sin(first)
+    next_across, next_up = size * np.cos(first + piece), size * np.sin(first + piece)
+    ends = np.roll(chain.vertices_um, -1, axis=0)[edge]
+    is_end = is_straight | (number == count[edge] - 1)
+    return _Steps(
+        edge,
+        (
+            is_straight,
+            x + across - reach * up,
+            y + up + reach * across,
+            x + next_across + reach * next_up,
+            y + next_up - reach * next_across,
+            np.where(is_end, ends[:, 0], x + next_across),
+            np.where(is_end, ends[:, 1], y + next_up),
+        ),
+    )

@@ -19,6 +19,7 @@ from core.parameters import CHANNEL_FIELDS
 
 if TYPE_CHECKING:
     from app.drawing.camera import Camera
+    from app.drawing.flow_overlay import FlowOverlay
     from app.drawing.labels import Line
     from core.findings import Finding
     from core.geometry.shape import ChannelShape
@@ -44,6 +45,10 @@ class Picture:
         Loop shares forward and reverse, 0 to 1, to be written beside loop and bypass.
     has_centrelines, has_dimensions : bool
         What else is drawn.
+    overlay : FlowOverlay or None
+        The solved flow, over the channel.
+    is_kept : bool
+        True for a picture that is saved: everything is painted sharp at once.
     """
 
     def __init__(self) -> None:
@@ -53,6 +58,8 @@ class Picture:
         self.shares: tuple[float, float] | None = None
         self.has_centrelines = False
         self.has_dimensions = True
+        self.overlay: FlowOverlay | None = None
+        self.is_kept = False
         self._unit = "um"
         self._shape: ChannelShape | None = None
         self._last_good: ChannelShape | None = None
@@ -139,7 +146,7 @@ class Picture:
             painter.setPen(QColor(self.palette.ink_soft))
             painter.drawText(area, Qt.AlignmentFlag.AlignCenter, "No channel to draw")
             return
-        self._paint_channel(painter, camera, self._shape)
+        self._paint_channel(painter, area, camera, self._shape)
         self._paint_signs(painter, area, camera, self._shape)
 
     def _centrelines(self) -> QPainterPath:
@@ -148,9 +155,11 @@ class Picture:
             self._centre_path = strokes_path(self._shape.centreline.strokes)
         return self._centre_path
 
-    def _paint_channel(self, painter: QPainter, camera: Camera, shape: ChannelShape) -> None:
+    def _paint_channel(self, painter: QPainter, area: QRectF, camera: Camera, shape: ChannelShape) -> None:
         if shape.is_usable:
             layers.draw_channel(painter, self._path, self._rings, camera, self.palette)
+            if self.overlay is not None:
+                self.overlay.paint(painter, area, camera, self.palette, at_once=self.is_kept)
         else:
             layers.draw_last_good(painter, self._path, camera, self.palette)
         if self.has_centrelines or not shape.is_usable:
@@ -165,6 +174,8 @@ class Picture:
         taken.append(banner)
         self._paint_scale(painter, area, camera, shape, taken)
         if shape.is_usable:
+            if self.overlay is not None and self.overlay.is_shown:
+                taken.append(self.overlay.paint_legend(painter, area, self.palette))
             self._paint_directions(painter, area, camera, shape, taken)
             inner = area.adjusted(_INSET_PX, _INSET_PX, -_INSET_PX, -_INSET_PX)
             self._paint_stage_signs(painter, inner, camera, shape, taken)

@@ -11,6 +11,7 @@ import time
 
 import numpy as np
 import pytest
+from PySide6.QtCore import QEvent, QObject
 from PySide6.QtWidgets import QApplication
 from shapely import LineString, unary_union
 
@@ -23,6 +24,18 @@ pytestmark = [pytest.mark.benchmark, pytest.mark.gui, pytest.mark.qt_log_ignore(
 
 ROUNDS = 15
 LONG = ChannelParameters(stages=100, run_bend_deg=30.0)
+
+
+class PaintWatch(QObject):
+    """Counts how often the drawing was painted."""
+
+    def __init__(self):
+        super().__init__()
+        self.painted = 0
+
+    def eventFilter(self, watched, event):
+        self.painted += event.type() == QEvent.Type.Paint
+        return False
 
 
 def rebuilt_area_um2(parameters: ChannelParameters) -> float:
@@ -43,12 +56,14 @@ def test_full_update_against_rebuild(window, capsys):
     slider = window.parts.sliders.editors["loop_radius_um"].slider
     start = slider.value()
     slider.setSliderDown(True)
+    watch = PaintWatch()
+    window.parts.drawing.installEventFilter(watch)
     ours = []
     for move in range(ROUNDS):
         begun = time.perf_counter()
         slider.setSliderPosition(start + move % 10 + 1)
-        QApplication.processEvents()
-        window.parts.drawing.repaint()
+        while watch.painted <= move:
+            QApplication.processEvents()
         ours.append(time.perf_counter() - begun)
         area = rebuilt_area_um2(window.document.shape.parameters)
         outline = window.document.shape.outline
@@ -56,6 +71,7 @@ def test_full_update_against_rebuild(window, capsys):
         assert len(outline.islands) == 100
         assert area == pytest.approx(outline.area_um2, rel=2e-3)
     slider.setSliderDown(False)
+    window.parts.drawing.removeEventFilter(watch)
     rebuilt = rebuilt_area_um2.seconds
     with capsys.disabled():
         print(
