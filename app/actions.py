@@ -90,6 +90,14 @@ ACTIONS: tuple[ActionWords, ...] = (
         ("compare", "Compare side &by side", "F7", "part switch"),
     ),
     *_words(
+        "S&olve",
+        ("solve", "Solve the flow &here", "F5"),
+        ("solve_curve", "Solve along the &curve", "Shift+F5"),
+        ("stop_solve", "&Stop the flow solve", "Ctrl+."),
+        ("save_picture", "Save the &picture\N{HORIZONTAL ELLIPSIS}", "Ctrl+P", "part"),
+        ("save_numbers", "Save the &numbers\N{HORIZONTAL ELLIPSIS}", "Ctrl+Shift+P"),
+    ),
+    *_words(
         "&View",
         ("fit", "&Fit the drawing", "Ctrl+0"),
         ("zoom_in", "Zoom &in", "Ctrl++ Ctrl+="),

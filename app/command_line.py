@@ -28,6 +28,7 @@ from app.verbs import (
     open_verb,
     open_window,
     score_verb,
+    solve_verb,
 )
 from core.errors import CoreError, did_you_mean, shown
 
@@ -152,6 +153,11 @@ VERBS: dict[str, Verb] = {
         options=("FILE", "--set", "--with", "--flow-ul-min", "--json"),
         run=score_verb,
     ),
+    "solve": Verb(
+        summary="flow solve in both directions: pressures, diodicity, loop shares",
+        options=("FILE", "--set", "--with", "--flow-ul-min", "--quality", "--json"),
+        run=solve_verb,
+    ),
     "check": Verb(
         summary="findings: what is wrong with the design, or doubtful",
         options=("FILE", "--set", "--with", "--json"),
@@ -173,6 +179,7 @@ _OPTIONS: dict[str, dict[str, object]] = {
         "help": "use another value for a field, as named in the file; repeatable, the last one counts",
     },
     "--flow-ul-min": {"metavar": "Q[,Q...]", "help": "flow or flows [uL/min] (default: the project's)"},
+    "--quality": {"metavar": "Q", "default": "normal", "help": "coarse, normal (default) or fine"},
     "--out": {"metavar": "DIR", "type": Path, "required": True, "help": "folder for the mask files"},
     "--force": {"action": "store_true", "help": "write although there are error findings"},
     "--json": {"action": "store_true", "help": "machine-readable answer"},

@@ -10,10 +10,10 @@ from itertools import count
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QObject, QTimer, Signal
-from PySide6.QtGui import QUndoStack
 
 from app.assessment import Assessment, assessment_of, curve_top_ul_min, fluid_of, shape_of
-from app.undo import ChangeProjectCommand, Held
+from app.solving.store import SolvedStore
+from app.undo import Held, Step, UndoStack
 from app.wording import changes_text
 from core.operating import OPERATING_FIELDS
 from core.parameters import CHANNEL_FIELDS
@@ -58,11 +58,13 @@ class Document(QObject):
 
     def __init__(self, project: ChipProject | None = None, parent: QObject | None = None) -> None:
         super().__init__(parent)
+        self.solved = SolvedStore(self)
+        self.solved.changed.connect(self._tell_modified)
         self._held = Held(project=project or new_project(), index=0)
         self._path: Path | None = None
         self._gestures = count(1)
-        self.undo_stack = QUndoStack(self)
-        self.undo_stack.cleanChanged.connect(self._on_undo_stack_clean_changed)
+        self.undo_stack = UndoStack(self.hold, self)
+        self.undo_stack.clean_changed.connect(self._tell_modified)
         self._shape: ChannelShape | None = None
         self._assessment: Assessment | None = None
         self._last_good: tuple[int, ChannelShape] | None = None
@@ -105,7 +107,12 @@ class Document(QObject):
     @property
     def is_modified(self) -> bool:
         """Whether there is something to save."""
-        return not self.undo_stack.isClean()
+        return not self.undo_stack.is_clean or self.solved.is_unsaved
+
+    @property
+    def kept_project(self) -> ChipProject:
+        """The project as it goes into a file: with the results of its flow solves."""
+        return replace(self.project, solved=self.solved.kept_with(self.project))
 
     @property
     def shape(self) -> ChannelShape:
@@ -168,10 +175,11 @@ class Document(QObject):
         """
         self.undo_stack.clear()
         self._last_good = None
-        self.hold(Held(project=project, index=0))
+        self.solved.load(project.solved)
+        self.hold(Held(project=replace(project, solved=()) if project.solved else project, index=0))
         self._set_path(path)
         if is_modified:
-            self.undo_stack.resetClean()
+            self.undo_stack.reset_clean()
 
     def save(self, path: Path) -> None:
         """Write the project and make this its file.
@@ -181,12 +189,13 @@ class Document(QObject):
         ProjectFileError
             If it cannot be written; the document stays modified and keeps its old file.
         """
-        write_project(self.project, path)
+        write_project(self.kept_project, path)
         self._set_path(path)
-        self.undo_stack.setClean()
+        self.solved.mark_saved()
+        self.undo_stack.set_clean()
 
-    def _on_undo_stack_clean_changed(self, is_clean: bool) -> None:
-        self.modified_changed.emit(not is_clean)
+    def _tell_modified(self) -> None:
+        self.modified_changed.emit(self.is_modified)
 
     def _set_path(self, path: Path | None) -> None:
         if path != self._path:
@@ -198,13 +207,7 @@ class Document(QObject):
         return next(self._gestures)
 
     def change_channel(self, values: Mapping[str, object], *, gesture: int | None = None) -> None:
-        """Change fields of the set in hand.
-
-        Raises
-        ------
-        DesignValueError
-            If a value cannot be used; nothing is changed then.
-        """
+        """Change fields of the set in hand, or raise ``DesignValueError`` and change nothing."""
         old = self.current_set
         new = replace(old, channel=old.channel.with_values(values))
         project = self.project.with_set_replaced(old.name, new)
@@ -220,11 +223,8 @@ class Document(QObject):
     def change_operating(self, values: Mapping[str, object], *, gesture: int | None = None) -> None:
         """Change fluid, temperature or flow.
 
-        Raises
-        ------
-        DesignValueError
-            If a value cannot be used, or the fluid does not exist at the temperature; nothing is
-            changed then.
+        Raises ``DesignValueError`` and changes nothing if a value cannot be used or the fluid does
+        not exist at the temperature.
         """
         operating = self.operating.with_values(values)
         fluid_of(operating)
@@ -295,5 +295,4 @@ class Document(QObject):
     ) -> None:
         new = Held(project=project, index=index)
         if new.project != self.project:
-            command = ChangeProjectCommand(self, old=self._held, new=new, describe=describe, gesture=gesture)
-            self.undo_stack.push(command)
+            self.undo_stack.push(Step(old=self._held, new=new, describe=describe, gesture=gesture))

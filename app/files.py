@@ -128,7 +128,7 @@ class ProjectFiles(QObject):
     def keep_copy(self) -> None:
         """Keep a copy of unsaved work for the day after a crash."""
         if self._document.is_modified:
-            self._recovery.keep(self._document.project, self._document.path)
+            self._recovery.keep(self._document.kept_project, self._document.path)
 
     def forget_copy(self) -> None:
         """Remove the copy: the work is saved, or given up by the user."""

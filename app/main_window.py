@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from PySide6.QtWidgets import QApplication, QLabel, QMainWindow
+from PySide6.QtWidgets import QLabel, QMainWindow
 
 from app.actions import fill_menus, keys_page, made_actions
 from app.arrangement import Arrangement
@@ -18,8 +18,9 @@ from app.panels.ask import Ask
 from app.panels.cautions import cautions_page
 from app.panels.export import ExportDialog
 from app.panels.pages import ABOUT_PAGE, PageDialog, details_dialog, notes_dialog
-from app.settings import Settings, user_folder
+from app.settings import Settings, made_application, user_folder
 from app.shown_values import ShownUnits, number_text, screen_words
+from app.solving.desk import SolveDesk
 from app.throttle import Throttle
 from core.errors import CoreError
 from core.project import RecoveryStore
@@ -76,6 +77,7 @@ class MainWindow(QMainWindow):
         if (geometry := settings.arrangement("window")) is not None:
             self.restoreGeometry(geometry)
         self._show_all()
+        self.solving = SolveDesk(self.document, parts=self.parts, settings=settings, ask=ask, window=self)
 
     # --- building -------------------------------------------------------------------------
 
@@ -95,6 +97,11 @@ class MainWindow(QMainWindow):
             "details": lambda: details_dialog(self, document).open(),
             "export": self.export,
             "quit": self.close,
+            "solve": lambda: self.solving.solve_here(),
+            "solve_curve": lambda: self.solving.solve_curve(),
+            "stop_solve": lambda: self.solving.cancel(),
+            "save_picture": lambda: self.solving.save_picture(),
+            "save_numbers": lambda: self.solving.save_numbers(),
             "undo": document.undo_stack.undo,
             "redo": document.undo_stack.redo,
             "add_set": lambda: self._try(document.add_set),
@@ -126,15 +133,14 @@ class MainWindow(QMainWindow):
         document.modified_changed.connect(self._show_title)
         document.channel_changed.connect(self._show_shape)
         document.estimate_changed.connect(self._show_assessment)
-        stack = document.undo_stack
-        for name, can_changed, text_changed in (
-            ("undo", stack.canUndoChanged, stack.undoTextChanged),
-            ("redo", stack.canRedoChanged, stack.redoTextChanged),
-        ):
-            action = self.actions_by_name[name]
-            action.setEnabled(False)
-            can_changed.connect(action.setEnabled)
-            text_changed.connect(lambda text, action=action, name=name: _show_step(action, name, text))
+        document.undo_stack.changed.connect(self._show_steps)
+        self._show_steps()
+
+    def _show_steps(self) -> None:
+        stack = self.document.undo_stack
+        for name, text in (("undo", stack.undo_text), ("redo", stack.redo_text)):
+            self.actions_by_name[name].setEnabled(bool(text))
+            _show_step(self.actions_by_name[name], name, text)
 
     def _connect_parts(self) -> None:
         parts, findings = self.parts, self.parts.verdict.findings
@@ -208,7 +214,8 @@ class MainWindow(QMainWindow):
     def _on_drawing_pointer_moved(self, x_um: float, y_um: float) -> None:
         units = ShownUnits.of(self.settings)
         x, y = (number_text(units.shown(value, "um")) for value in (x_um, y_um))
-        self.place_label.setText(f"x {x}   y {y} {unit_symbol(units.length)}")
+        value = self.solving.text_at(x_um, y_um)
+        self.place_label.setText(f"{value + '   ' if value else ''}x {x}   y {y} {unit_symbol(units.length)}")
 
     # --- doing ----------------------------------------------------------------------------
 
@@ -241,8 +248,6 @@ class MainWindow(QMainWindow):
         dialog.open()
         return dialog
 
-    # --- the window itself ----------------------------------------------------------------
-
     def dragEnterEvent(self, event: QDragEnterEvent) -> None:
         """Welcome files."""
         if any(url.isLocalFile() for url in event.mimeData().urls()):
@@ -260,6 +265,7 @@ class MainWindow(QMainWindow):
         if not self.files.may_leave():
             event.ignore()
             return
+        self.solving.end_now()
         self.files.forget_copy()
         self.parts.remember()
         self.settings.set_arrangement("window", self.saveGeometry())
@@ -269,14 +275,6 @@ class MainWindow(QMainWindow):
 def _show_step(action: QAction, name: str, text: str) -> None:
     word = name.capitalize()
     action.setText(f"&{word}: {text}" if text else f"&{word}")
-
-
-def application() -> QApplication:
-    """Return the one application object, made if need be."""
-    made = QApplication.instance()
-    made = made if isinstance(made, QApplication) else QApplication(["sideloop"])
-    made.setApplicationName("Sideloop")
-    return made
 
 
 def run_window(path: Path | None) -> int:
@@ -292,7 +290,7 @@ def run_window(path: Path | None) -> int:
     int
         Exit status of the window.
     """
-    program = application()
+    program = made_application()
     folder = user_folder()
     start_log(folder / "sideloop.log")
     settings = Settings(folder / "settings.ini")

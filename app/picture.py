@@ -42,12 +42,12 @@ def render_window(
     from PySide6.QtCore import QCoreApplication, QEvent
 
     from app.look import Look, Scheme
-    from app.main_window import MainWindow, application
+    from app.main_window import MainWindow
     from app.panels.ask import Ask
-    from app.settings import Settings
+    from app.settings import Settings, made_application
     from core.project import RecoveryStore
 
-    program = application()
+    program = made_application()
     look = Look(program, scheme=Scheme(scheme))
     with TemporaryDirectory() as folder:
         settings = Settings(Path(folder) / "settings.ini")
@@ -63,7 +63,8 @@ def render_window(
             program.processEvents()
         shown = program.activeModalWidget() or window
         shown.grab().save(str(target_png))
-        window.document.undo_stack.setClean()
+        window.document.undo_stack.set_clean()
+        window.document.solved.mark_saved()
         window.close()
         window.deleteLater()
         QCoreApplication.sendPostedEvents(None, QEvent.Type.DeferredDelete)

@@ -9,6 +9,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QByteArray, QObject, QSettings, QStandardPaths, Signal
+from PySide6.QtWidgets import QApplication
 
 from core.units import UNITS, base_unit
 
@@ -21,6 +22,14 @@ SCHEMES = ("system", "light", "dark")
 
 # one small step per version of the file, from the version named to the next
 _MIGRATIONS: dict[int, Callable[[QSettings], None]] = {}
+
+
+def made_application() -> QApplication:
+    """Return the one application object, made if need be."""
+    made = QApplication.instance()
+    application = made if isinstance(made, QApplication) else QApplication(["sideloop"])
+    application.setApplicationName("Sideloop")
+    return application
 
 
 def user_folder() -> Path:

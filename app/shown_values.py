@@ -30,6 +30,7 @@ _FIELD_NAMES = re.compile(rf"\b({'|'.join(_LABELS)})\b")
 
 # An error as large as the rectification itself: even the sign of Di - 1 is open.
 _UNKNOWN_FROM_PERCENT = 100.0
+_HARDLY_ANY = 0.1  # and of this little even twice as much is little: it is said roughly
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -97,7 +98,7 @@ def diodicity_text(score: Score) -> str:
     """Return Di as surely as it is known: in full, roughly, or as unknown, and never more than that."""
     if score.valid:
         return f"Di {score.diodicity:.3f}"
-    if score.rectification_band_percent >= _UNKNOWN_FROM_PERCENT:
+    if score.rectification_band_percent >= _UNKNOWN_FROM_PERCENT and score.rectification > _HARDLY_ANY:
         return "Di unknown"
     return f"Di about {score.diodicity:.1f}"
 

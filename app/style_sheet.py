@@ -41,12 +41,12 @@ QSlider::handle:horizontal {
 QSlider::handle:horizontal:hover { border-color: $accent; }
 QSlider:focus::handle:horizontal, QSlider::handle:horizontal:pressed { background: $accent; border-color: $accent; }
 QSlider::handle:horizontal:disabled { border-color: $rule; }
-QLineEdit, QPlainTextEdit, QAbstractSpinBox, QComboBox {
+QLineEdit, QPlainTextEdit, QAbstractSpinBox {
     background: $field; color: $ink; border: 1px solid $rule; border-radius: $corner; padding: 1px 6px;
     min-height: 20px;
 }
-QLineEdit:focus, QPlainTextEdit:focus, QAbstractSpinBox:focus, QComboBox:focus { border-color: $accent; }
-QLineEdit:disabled, QPlainTextEdit:disabled, QAbstractSpinBox:disabled, QComboBox:disabled { color: $pale_edge; }
+QLineEdit:focus, QPlainTextEdit:focus, QAbstractSpinBox:focus { border-color: $accent; }
+QLineEdit:disabled, QPlainTextEdit:disabled, QAbstractSpinBox:disabled { color: $pale_edge; }
 QTabBar::tab {
     background: transparent; color: $ink_soft; padding: $small $medium; border-bottom: 3px solid transparent;
 }

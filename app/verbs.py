@@ -9,6 +9,7 @@ from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 from app.plain_text import as_json, findings_text, masks_text, score_text
+from app.progress_line import told_progress
 from core.errors import CoreError, shown
 from core.fields import unknown_field
 from core.findings import Severity
@@ -78,6 +79,31 @@ def score_verb(arguments: argparse.Namespace) -> Answer:
     points = [found.score(index).as_dict() for index in range(len(flows))]
     if arguments.json:
         return Answer(text=as_json(points[0] if len(points) == 1 else {"points": points}))
+    return Answer(text=score_text(points, title=_title(project, chosen), operating=project.operating, fluid=fluid))
+
+
+def solve_verb(arguments: argparse.Namespace) -> Answer:
+    """Solve the flow of one parameter set in both directions, at one flow or several."""
+    from core.flow.channel import solve_channel
+    from core.geometry.shape import build_shape
+
+    project = _project(arguments)
+    flows = _flows_ul_min(arguments, project)
+    chosen = _chosen_set(project, arguments)
+    fluid = project.operating.fluid_state()
+    _refuse_errors(chosen, build_shape(chosen.channel), "cure it first")
+    with told_progress() as report:
+        found = solve_channel(
+            chosen.channel,
+            fluid=fluid,
+            flows_ul_min=flows,
+            quality=arguments.quality,
+            report=report,
+            check_steady=arguments.quality == "fine",
+        )
+    if arguments.json:
+        return Answer(text=as_json(found.as_dict()))
+    points = [point.as_dict() for point in found.points]
     return Answer(text=score_text(points, title=_title(project, chosen), operating=project.operating, fluid=fluid))
 
 

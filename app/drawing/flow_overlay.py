@@ -30,7 +30,8 @@ if TYPE_CHECKING:
     from core.flow.result import FlowField
 
 _REST_MS = 90  # after the last move, before the picture is made anew
-_BAR_PX = 14.0
+_BAR_PX = 9.0
+_BAND_PX = 38.0
 _ROW_PX = 17.0
 _ARROW_PX = 7.0
 _ARROW_EVERY = 220  # points of a streamline from one arrow head to the next
@@ -109,7 +110,7 @@ class FlowOverlay(QObject):
             self._forget()
 
     def set_remark(self, remark: str) -> None:
-        """Write a remark under the legend, such as that the picture is stale; empty for none."""
+        """Write a remark into the legend, such as that the picture is stale; empty for none."""
         if remark != self._remark:
             self._remark = remark
             self.changed.emit()
@@ -121,7 +122,7 @@ class FlowOverlay(QObject):
 
     @property
     def remark(self) -> str:
-        """What is written under the legend."""
+        """What is written into the legend."""
         return self._remark
 
     def _forget(self) -> None:
@@ -237,47 +238,50 @@ class FlowOverlay(QObject):
                 )
 
     def paint_legend(self, painter: QPainter, area: QRectF, palette: Palette) -> QRectF:
-        """Paint what the colours mean, in the upper right corner; returns the box it takes."""
-        lines = [line for line in (self._title(), *self._caption.split("\n"), *self._remark.split("\n")) if line]
-        rows = [] if self._shown is Shown.STREAMLINES else self._rows()
-        width = max(text_size(line).width() for line in (*lines, "00000")) + 2.0 * SPACING.small
-        box = QRectF(0.0, 0.0, width, _ROW_PX * (len(lines) + len(rows)) + 2.0 * SPACING.small)
-        box.moveTopRight(area.topRight() + QPointF(-SPACING.medium, SPACING.medium))
+        """Paint what the colours mean, along the upper rim; returns the box it takes."""
+        title, remark = self._title(), self._remark and f"   {self._remark}"
+        texts = [] if self._shown is Shown.STREAMLINES else self._level_texts()
+        bar_width = min(_BAND_PX * max(len(texts) - 1, 0), area.width() - 6.0 * SPACING.medium)
+        ends = text_size("00000").width()
+        width = max(text_size(title + remark).width(), bar_width + ends) + 2.0 * SPACING.small
+        height = _ROW_PX * (2 if texts else 1) + (_BAR_PX if texts else 0.0) + 2.0 * SPACING.hair
+        box = QRectF(area.left() + SPACING.medium, area.top() + SPACING.small, width, height)
         painter.setPen(Qt.PenStyle.NoPen)
         painter.setBrush(veil(palette))
         painter.drawRoundedRect(box, SPACING.corner, SPACING.corner)
         painter.setFont(font("small"))
-        top = box.top() + SPACING.small
-        for number, line in enumerate(lines):
-            is_remark = number >= len(lines) - len([part for part in self._remark.split("\n") if part])
-            painter.setPen(QColor(palette.warning if is_remark else palette.ink))
-            painter.drawText(
-                QRectF(box.left() + SPACING.small, top, width, _ROW_PX), Qt.AlignmentFlag.AlignVCenter, line
-            )
-            top += _ROW_PX
-        if rows:
-            self._paint_bar(painter, QPointF(box.left() + SPACING.small, top + _ROW_PX / 2.0), rows, palette)
+        line = QRectF(box.left() + SPACING.small, box.top() + SPACING.hair, width, _ROW_PX)
+        for text, colour in ((title, palette.ink), (remark, palette.warning)):
+            painter.setPen(QColor(colour))
+            painter.drawText(line, Qt.AlignmentFlag.AlignVCenter, text)
+            line.setLeft(line.left() + text_size(text).width())
+        if texts:
+            self._paint_bar(painter, QPointF(box.left() + ends / 2.0, line.bottom()), bar_width, texts, palette)
         return box
 
-    def _rows(self) -> list[str]:
+    def _level_texts(self) -> list[str]:
         self._nodal()
-        return [number_text(float(level), 3) for level in reversed(self._levels)]
+        return [number_text(float(level), 3) for level in self._levels]
 
-    def _paint_bar(self, painter: QPainter, top_left: QPointF, rows: Sequence[str], palette: Palette) -> None:
-        colours = band_colours(palette, len(rows) - 1)
-        for number, text in enumerate(rows):
-            y = top_left.y() + number * _ROW_PX
-            if number < len(rows) - 1:
-                painter.fillRect(QRectF(top_left.x(), y, _BAR_PX, _ROW_PX), QColor(colours[-1 - number]))
+    def _paint_bar(
+        self, painter: QPainter, top_left: QPointF, width: float, texts: Sequence[str], palette: Palette
+    ) -> None:
+        """Paint the bands from left to right, each limit with its value below."""
+        colours = band_colours(palette, len(texts) - 1)
+        band = width / max(len(texts) - 1, 1)
+        for number, text in enumerate(texts):
+            x = top_left.x() + number * band
+            if number < len(texts) - 1:
+                painter.fillRect(QRectF(x, top_left.y(), band, _BAR_PX), QColor(colours[number]))
             painter.setPen(line_pen(palette.ink))
-            painter.drawLine(QPointF(top_left.x(), y), QPointF(top_left.x() + _BAR_PX + 4.0, y))
-            place = QRectF(top_left.x() + _BAR_PX + 8.0, y - _ROW_PX / 2.0, 200.0, _ROW_PX)
-            painter.drawText(place, Qt.AlignmentFlag.AlignVCenter, text)
+            painter.drawLine(QPointF(x, top_left.y()), QPointF(x, top_left.y() + _BAR_PX + 3.0))
+            place = QRectF(x - 50.0, top_left.y() + _BAR_PX + 2.0, 100.0, _ROW_PX)
+            painter.drawText(place, Qt.AlignmentFlag.AlignCenter, text)
 
     def _title(self) -> str:
         if self._shown is Shown.STREAMLINES:
-            return f"Streamlines, {height_text(self._height_share)}"
-        return f"{self._quantity().capitalize()}, {self._unit()}, {height_text(self._height_share)}"
+            return f"Streamlines {height_text(self._height_share)}, {self._caption}"
+        return f"{self._quantity().capitalize()} in {self._unit()} {height_text(self._height_share)}, {self._caption}"
 
 
 def height_text(height_share: float) -> str:

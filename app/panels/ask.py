@@ -4,10 +4,10 @@ from __future__ import annotations
 
 from enum import StrEnum
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, TypeVar
 
 from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QFileDialog, QInputDialog, QLineEdit, QMessageBox
+from PySide6.QtWidgets import QFileDialog, QInputDialog, QLineEdit, QMessageBox, QPushButton
 
 from core.project import PROJECT_SUFFIX
 
@@ -15,6 +15,8 @@ if TYPE_CHECKING:
     from PySide6.QtWidgets import QWidget
 
 _PROJECT_FILTER = f"Chip projects (*{PROJECT_SUFFIX});;All files (*)"
+
+Answer = TypeVar("Answer", bound=StrEnum)
 
 
 class Unsaved(StrEnum):
@@ -46,9 +48,7 @@ class Ask:
         stay = box.addButton("Stay &here", QMessageBox.ButtonRole.RejectRole)
         box.setDefaultButton(save)
         box.setEscapeButton(stay)
-        box.exec()
-        answers = {save.text(): Unsaved.SAVE, discard.text(): Unsaved.DISCARD}
-        return answers.get(box.clickedButton().text(), Unsaved.STAY)
+        return _answer(box, {Unsaved.SAVE: save, Unsaved.DISCARD: discard, Unsaved.STAY: stay})
 
     def recovery(self, parent: QWidget, story: str) -> Recovery:
         """Ask what happens to a project that a crash left behind."""
@@ -58,9 +58,7 @@ class Ask:
         later = box.addButton("Ask me &later", QMessageBox.ButtonRole.RejectRole)
         box.setDefaultButton(recover)
         box.setEscapeButton(later)
-        box.exec()
-        answers = {recover.text(): Recovery.RECOVER, discard.text(): Recovery.DISCARD}
-        return answers.get(box.clickedButton().text(), Recovery.LATER)
+        return _answer(box, {Recovery.RECOVER: recover, Recovery.DISCARD: discard, Recovery.LATER: later})
 
     def tell(self, parent: QWidget, title: str, text: str, details: tuple[str, ...] = ()) -> None:
         """Tell what went wrong; several problems are listed."""
@@ -68,6 +66,7 @@ class Ask:
         if len(details) > 1:
             box.setInformativeText("\n".join(f"\N{BULLET} {line}" for line in details))
         box.exec()
+        box.deleteLater()
 
     def file_to_open(self, parent: QWidget, folder: Path) -> Path | None:
         """Ask for a project file; None when the user thinks better of it."""
@@ -78,6 +77,11 @@ class Ask:
         """Ask under which name to save; None when the user thinks better of it."""
         name, _ = QFileDialog.getSaveFileName(parent, "Save the chip project", str(suggestion), _PROJECT_FILTER)
         return Path(name) if name else None
+
+    def file_to_write(self, parent: QWidget, title: str, name: str, kinds: str) -> Path | None:
+        """Ask where to write a picture or a table; None when the user thinks better of it."""
+        chosen, _ = QFileDialog.getSaveFileName(parent, title, str(Path.home() / name), f"{kinds};;All files (*)")
+        return Path(chosen) if chosen else None
 
     def folder(self, parent: QWidget, start: Path) -> Path | None:
         """Ask for a folder; None when the user thinks better of it."""
@@ -90,8 +94,15 @@ class Ask:
         return answer if is_given else None
 
 
+def _answer(box: QMessageBox, buttons: dict[Answer, QPushButton]) -> Answer:
+    """Open the question and return what the pressed button stands for; Escape presses one too."""
+    box.exec()
+    pressed = box.clickedButton()
+    box.deleteLater()
+    return next(answer for answer, button in buttons.items() if button == pressed)
+
+
 def _box(parent: QWidget, icon: QMessageBox.Icon, title: str, text: str) -> QMessageBox:
     box = QMessageBox(icon, title, text, QMessageBox.StandardButton.NoButton, parent)
-    box.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
     box.setTextFormat(Qt.TextFormat.PlainText)
     return box

@@ -95,6 +95,12 @@ class VerdictPanel(QScrollArea):
         layout.addStretch(1)
         self.setWidget(column)
 
+    def add_part(self, part: QWidget) -> None:
+        """Put a part under the score, above what says how far to trust it."""
+        layout = self.widget().layout()
+        assert isinstance(layout, QVBoxLayout)
+        layout.insertWidget(1, part)
+
     def _built_score(self) -> QFrame:
         frame, layout = _framed()
         self.condition_label = _label("small", "soft")

@@ -16,10 +16,11 @@ blocks are then sums of (table entry) x (scalar matrix).
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 import numpy as np
+
+from core.flow.layout import Layout, Scatter
 
 if TYPE_CHECKING:
     from scipy.sparse import csr_array
@@ -29,45 +30,6 @@ if TYPE_CHECKING:
 
 _ORDER = 5  # of the quadrature: quadratic test x quadratic carrier x slope of a quadratic
 _SOFTENING = 1e-7  # of the liquid, in the matrix that is factorised only: makes every pivot usable in any order
-
-
-@dataclass(frozen=True, slots=True, eq=False)
-class Layout:
-    """Where each field stands in the vector of unknowns.
-
-    Attributes
-    ----------
-    nodes, corners : int
-        Number of quadratic and of linear nodes.
-    in_plane, vertical, pressure : int
-        Number of modes of each family.
-    """
-
-    nodes: int
-    corners: int
-    in_plane: int
-    vertical: int
-    pressure: int
-
-    @property
-    def fields(self) -> int:
-        """Number of velocity fields."""
-        return 2 * self.in_plane + self.vertical
-
-    @property
-    def size(self) -> int:
-        """Number of unknowns, prescribed ones included."""
-        return self.fields * self.nodes + self.pressure * self.corners
-
-    def velocity(self, state: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
-        """Return in-plane (2, n_u, nodes) and vertical (n_w, nodes) views of a state."""
-        cut, end = 2 * self.in_plane * self.nodes, self.fields * self.nodes
-        plane = state[:cut].reshape(2, self.in_plane, self.nodes)
-        return plane, state[cut:end].reshape(self.vertical, self.nodes)
-
-    def pressures(self, state: np.ndarray) -> np.ndarray:
-        """Return the pressure modes (n_p, corners) as a view of a state."""
-        return state[self.fields * self.nodes :].reshape(self.pressure, self.corners)
 
 
 class Assembler:
@@ -100,8 +62,8 @@ class Assembler:
         self._slope = np.einsum("rdeq,raq->deqa", self._turn, self._steep)  # (2, cells, points, 6)
         self._pairs = np.einsum("aq,bq->qab", self._shape, self._shape).reshape(self._shape.shape[1], 36)
         hat = np.array([ElementTriP1().lbasis(points, i)[0] + 0.0 * points[0] for i in range(3)])
-        self._square = _Scatter(self.dofs, self.dofs, self.layout.nodes, self.layout.nodes)
-        self._mixed = _Scatter(corner_dofs, self.dofs, self.layout.corners, self.layout.nodes)
+        self._square = Scatter(self.dofs, self.dofs, self.layout.nodes, self.layout.nodes)
+        self._mixed = Scatter(corner_dofs, self.dofs, self.layout.corners, self.layout.nodes)
         self._constant_blocks(hat, corner_dofs)
         self._lay_out()
 
@@ -330,24 +292,3 @@ def _by_carrier(table: np.ndarray, values: np.ndarray) -> np.ndarray:
 def _by_carried(table: np.ndarray, values: np.ndarray) -> np.ndarray:
     """Return blocks (test, trial, stored) from the values of one matrix for each carried mode."""
     return np.tensordot(table, values, axes=(2, 0))
-
-
-class _Scatter:
-    """Adds the entries of small cell matrices up to the stored entries of one sparse matrix."""
-
-    def __init__(self, row_dofs: np.ndarray, column_dofs: np.ndarray, n_rows: int, n_columns: int) -> None:
-        from scipy.sparse import csr_array
-
-        rows = np.repeat(row_dofs, column_dofs.shape[1], axis=1).ravel().astype(np.int64)
-        columns = np.tile(column_dofs, (1, row_dofs.shape[1])).ravel()
-        keys, place = np.unique(rows * n_columns + columns, return_inverse=True)
-        self.nnz = len(keys)
-        self.rows, self.columns = keys // n_columns, keys % n_columns
-        ones = np.ones(len(place))
-        self._sum = csr_array((ones, (place, np.arange(len(place)))), shape=(self.nnz, len(place)))
-
-    def __call__(self, local: np.ndarray) -> np.ndarray:
-        """Return stored values (..., nnz) of cell matrices (..., cells, entries)."""
-        if local.ndim == 2:
-            return self._sum @ local.ravel()
-        return np.array([self._sum @ one.ravel() for one in local])

@@ -2,17 +2,16 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
 from core.errors import SolveError
-from core.findings import Severity
 from core.flow.chains import ExtendedDrop, extend_settled
+from core.flow.channel_places import channel_domain
 from core.flow.channel_result import ChannelFlow, FlowPoint
 from core.flow.curve import solve_curve
-from core.flow.domain import FlowDomain
 from core.flow.quality import first_levels, quality_named
 from core.flow.solve import MEMORY_LIMIT_MB, solve
 from core.fluids import ATMOSPHERE_PA
@@ -31,46 +30,8 @@ if TYPE_CHECKING:
 MOST_STAGES = 9  # solved in full at most; longer chains are extended
 _FULL_STAGES = 6  # up to here it does not pay to look for a shorter chain
 _FIRST_STAGES = 5  # shortest chain that is extended
-_SAGITTA_SHARE = 5e-4  # of the channel width; far below what any mesh of the solve resolves
 _STEPS = 1000  # of a whole solve, as told to the caller
 _GAS_SHARE = 0.05  # pressure drop against the atmosphere beyond which a gas is not incompressible
-
-
-def channel_domain(shape: ChannelShape, *, sagitta_um: float | None = None) -> FlowDomain:
-    """Return the region of liquid of a channel, ready to be solved.
-
-    Parameters
-    ----------
-    shape : ChannelShape
-        With an outline.
-    sagitta_um : float or None
-        Largest distance between an arc and its chords [um]; None for one that no mesh resolves.
-
-    Returns
-    -------
-    FlowDomain
-        The very outline that is drawn and written to masks, with its open ends and one pair of
-        measuring sections per stage.
-
-    Raises
-    ------
-    SolveError
-        If the shape has no outline; names the finding.
-    """
-    if shape.outline is None:
-        errors = [finding.message for finding in shape.findings if finding.severity is Severity.ERROR]
-        raise SolveError(f"there is no outline to solve: {errors[0] if errors else 'see the findings of the shape'}")
-    p, line = shape.parameters, shape.centreline
-    sagitta = _SAGITTA_SHARE * p.channel_width_um if sagitta_um is None else sagitta_um
-    return FlowDomain(
-        outer_um=shape.outline.outer.chords(sagitta_um=sagitta),
-        islands_um=tuple(island.chords(sagitta_um=sagitta) for island in shape.outline.islands),
-        depth_um=p.depth_um,
-        channel_width_um=p.channel_width_um,
-        forward_inlet_um=line.forward_inlet.section_um,
-        forward_outlet_um=line.forward_outlet.section_um,
-        sections=tuple((place.bypass_section_um, place.loop_section_um) for place in line.stages),
-    )
 
 
 def solve_channel(
@@ -146,6 +107,18 @@ def solve_channel(
     return ChannelFlow(parameters=parameters, fluid=fluid, points=points, solved_stages=solved_stages)
 
 
+@dataclass(frozen=True, slots=True)
+class _Part:
+    """A part of a whole call, from one share of the work to another."""
+
+    begin: float
+    end: float
+    prefix: str = ""
+
+
+_SEARCH, _AFTER_SEARCH, _WHOLE = _Part(0.0, 0.3, "looking for settled drops: "), _Part(0.3, 1.0), _Part(0.0, 1.0)
+
+
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class _Job:
     """What all solves of one call share."""
@@ -156,6 +129,7 @@ class _Job:
     should_stop: Callable[[], bool] | None
     memory_limit_mb: float
     check_steady: bool
+    found: dict[tuple[int, str, float], FlowResult] = field(default_factory=dict)
 
     def settled_stages(self, flow_ul_min: float, most_stages: int) -> int:
         """Return how many stages must be solved so that the rest follows, found with coarse solves."""
@@ -164,7 +138,8 @@ class _Job:
             return p.stages
         stages = _FIRST_STAGES + (p.stages - _FIRST_STAGES) % period(p)  # so that its ends look like the whole's
         while stages + 2 <= min(most_stages, p.stages):
-            (result,) = self._results([flow_ul_min], stages, "coarse", f"looking for settled drops, {stages} stages: ")
+            (result,) = self._results([flow_ul_min], stages, "coarse", _SEARCH)
+            self.found[stages, "coarse", flow_ul_min] = result
             ends = [
                 extend_settled(pressure_pa=each.pressure_pa, bypass_drops_pa=each.bypass_drops_pa, stages=p.stages)
                 for each in (result.forward, result.reverse)
@@ -177,10 +152,13 @@ class _Job:
 
     def points(self, flows_ul_min: list[float], stages: int, quality: str) -> tuple[FlowPoint, ...]:
         """Return what is found at each flow with so many stages solved in full."""
-        results = self._results(flows_ul_min, stages, quality, "")
+        part = _WHOLE if stages == self.shape.parameters.stages else _AFTER_SEARCH
+        results = self._results(flows_ul_min, stages, quality, part)
         return tuple(self._point(flow, each, stages) for flow, each in zip(flows_ul_min, results, strict=True))
 
-    def _results(self, flows_ul_min: list[float], stages: int, quality: str, prefix: str) -> list[FlowResult]:
+    def _results(self, flows_ul_min: list[float], stages: int, quality: str, part: _Part) -> list[FlowResult]:
+        if len(flows_ul_min) == 1 and (known := self.found.get((stages, quality, flows_ul_min[0]))) is not None:
+            return [known]  # the search for settled drops has asked the same
         domain = channel_domain(build_shape(replace(self.shape.parameters, stages=stages)))
         works = [
             level.modes**1.5 / level.size**2 for level in first_levels(quality_named(quality), domain.depth_to_width)
@@ -191,13 +169,13 @@ class _Job:
         }
         control: dict[str, Any] = {
             "quality": quality,
-            "report": None if self.report is None else _weighted(self.report, works, len(set(flows_ul_min)), prefix),
+            "report": None if self.report is None else _weighted(self.report, works, len(set(flows_ul_min)), part),
             "should_stop": self.should_stop,
             "memory_limit_mb": self.memory_limit_mb,
         }
         flows = [flow * M3_S_PER_UL_MIN for flow in flows_ul_min]
         if len(flows) == 1:
-            is_checked = self.check_steady and not prefix
+            is_checked = self.check_steady and part is not _SEARCH
             return [solve(domain, flow_m3_s=flows[0], check_steady=is_checked, **liquid, **control)]
         return solve_curve(domain, flows_m3_s=flows, **liquid, **control)
 
@@ -247,6 +225,8 @@ class _Job:
         if result.error_band_percent is None or result.diodicity_band is None or result.diodicity is None:
             return None, None
         percent, diodicity_band = result.error_band_percent, result.diodicity_band
+        if self.shape.parameters.stages == 0:  # a straight channel has no easy direction: what is found of one is error
+            diodicity_band = max(diodicity_band, abs(result.diodicity - 1.0))
         if forward is not None and reverse is not None:
             shares = [part.error_pa / part.pressure_pa for part in (forward, reverse)]
             diodicity = reverse.pressure_pa / forward.pressure_pa
@@ -286,17 +266,19 @@ def _checked_flows(flows_ul_min: Sequence[float]) -> list[float]:
 
 
 def _weighted(
-    report: Callable[[int, int, str], None], works: list[float], flows: int, prefix: str
+    report: Callable[[int, int, str], None], works: list[float], flows: int, part: _Part
 ) -> Callable[[int, int, str], None]:
     """Return a report in shares of the work: a level has one step for its mesh and two for each flow."""
     per_level = 1 + 2 * flows
 
     def tell(step: int, _total: int, text: str) -> None:
-        level, part = divmod(max(step - 1, 0), per_level)
+        if text == "done":  # with this part, not with the whole
+            return
+        level, ticks = divmod(max(step - 1, 0), per_level)
         further = [works[-1]] * max(level + 1 - len(works), 0)  # levels that the tolerance asked for
         known = [*works, *further]
-        done = sum(known[:level]) + known[level] * part / per_level
-        report(round(_STEPS * done / sum(known)), _STEPS, prefix + text)
+        share = (sum(known[:level]) + known[level] * ticks / per_level) / sum(known)
+        report(round(_STEPS * (part.begin + (part.end - part.begin) * share)), _STEPS, part.prefix + text)
 
     return tell
 
@@ -325,39 +307,3 @@ def _placed(direction: DirectionResult, whole: ExtendedDrop | None, shift_um: np
     pressure = direction.field.pressure_modes_pa.copy()
     pressure[0] += whole.pressure_pa - direction.pressure_pa
     return replace(direction.field, points_um=direction.field.points_um + shift_um, pressure_modes_pa=pressure)
-
-
-def streamline_seeds_um(shape: ChannelShape, *, is_forward: bool, lines: int = 11, per_path: int = 2) -> np.ndarray:
-    """Return places through which streamlines show a flow well, shape (s, 2) [um].
-
-    Parameters
-    ----------
-    shape : ChannelShape
-        Whose flow is drawn.
-    is_forward : bool
-        Whether the flow enters at the far end of the lead in.
-    lines : int
-        Streamlines that start where the flow enters.
-    per_path : int
-        Streamlines through the middle of each loop and each bypass.
-    """
-    end = shape.centreline.forward_inlet if is_forward else shape.centreline.forward_outlet
-    inward = -np.array([np.cos(end.outward_heading_rad), np.sin(end.outward_heading_rad)])
-    seeds = [_along(end.section_um, lines) + 0.1 * end.width_um * inward]
-    for place in shape.centreline.stages:
-        seeds += [_along(place.loop_section_um, per_path), _along(place.bypass_section_um, per_path)]
-    return np.concatenate(seeds)
-
-
-def _along(chord_um: np.ndarray, count: int) -> np.ndarray:
-    """Return places along a chord, the outer ones half a space from its ends."""
-    share = (np.arange(count)[:, None] + 0.5) / count
-    return chord_um[0] + share * (chord_um[1] - chord_um[0])
-
-
-def curve_flows_ul_min(top_ul_min: float, *, through_ul_min: float, count: int = 8) -> tuple[float, ...]:
-    """Return flows for a curve from near zero to a top, rising, one of them a given flow [uL/min]."""
-    even = top_ul_min * np.arange(1, count + 1) / count
-    nearest = int(np.argmin(np.abs(even - through_ul_min)))
-    even[nearest] = through_ul_min
-    return tuple(sorted(set(even.tolist())))

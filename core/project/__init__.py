@@ -3,6 +3,7 @@
 from core.project.chip import ChipProject, ParameterSet, new_project
 from core.project.files import PROJECT_SUFFIX, read_project, write_project
 from core.project.recovery import RecoveryOffer, RecoveryOutcome, RecoveryStore
+from core.project.solved import SolvedResult, kept_results
 
 __all__ = [
     "PROJECT_SUFFIX",
@@ -11,6 +12,8 @@ __all__ = [
     "RecoveryOffer",
     "RecoveryOutcome",
     "RecoveryStore",
+    "SolvedResult",
+    "kept_results",
     "new_project",
     "read_project",
     "write_project",

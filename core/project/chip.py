@@ -8,6 +8,7 @@ from itertools import count
 from core.errors import DesignValueError, did_you_mean
 from core.operating import OperatingPoint
 from core.parameters import ChannelParameters
+from core.project.solved import MOST_SOLVED, SolvedResult
 from core.project.text import LONGEST_NAME, checked_line, checked_name, checked_notes, name_key
 
 MOST_SETS = 100
@@ -58,6 +59,8 @@ class ChipProject:
         Who keeps the project; may be empty.
     notes : str
         What the chip is for, in the user's words.
+    solved : tuple of SolvedResult
+        Results of flow solves, the oldest first; at most 500.
 
     Raises
     ------
@@ -71,6 +74,7 @@ class ChipProject:
     lab: str = ""
     author: str = ""
     notes: str = ""
+    solved: tuple[SolvedResult, ...] = ()
 
     def __post_init__(self) -> None:
         """Check the words and that every set has a name of its own."""
@@ -79,6 +83,7 @@ class ChipProject:
         object.__setattr__(self, "author", checked_line(self.author, field="author"))
         object.__setattr__(self, "notes", checked_notes(self.notes, field="chip notes"))
         object.__setattr__(self, "sets", tuple(self.sets))
+        object.__setattr__(self, "solved", tuple(self.solved)[-MOST_SOLVED:])
         if problems := set_list_problems([each.name for each in self.sets]):
             raise problems[0]
 

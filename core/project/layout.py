@@ -11,6 +11,7 @@ from core.operating import OPERATING_FIELDS, OperatingPoint
 from core.parameters import CHANNEL_FIELDS, ChannelParameters
 from core.project.chip import ChipProject, ParameterSet, set_list_problems
 from core.project.migration import SCHEMA, migrated
+from core.project.solved import KEYS, SolvedResult
 from core.project.text import checked_line, checked_name, checked_notes
 
 if TYPE_CHECKING:
@@ -27,7 +28,7 @@ _WORDS: dict[str, Callable[[object], str]] = {
     "author": partial(checked_line, field="author"),
     "notes": partial(checked_notes, field="notes"),
 }
-_TOP_KEYS = ("format", "schema", *_WORDS, "operating", "sets")
+_TOP_KEYS = ("format", "schema", *_WORDS, "operating", "sets", "solved")
 _SET_KEYS = ("name", "notes", "channel")
 _MOST_UNKNOWN = 10  # unknown names told per object; a file of another kind may have thousands
 
@@ -47,7 +48,17 @@ def project_data(project: ChipProject) -> dict[str, object]:
         "notes": project.notes,
         "operating": project.operating.as_dict(),
         "sets": [{"name": each.name, "notes": each.notes, "channel": each.channel.as_dict()} for each in project.sets],
+        "solved": [_solved_data(each) for each in project.solved],
     }
+
+
+def _solved_data(result: SolvedResult) -> dict[str, object]:
+    groups = {
+        "channel": result.channel.as_dict(),
+        "operating": result.operating.as_dict(),
+        "notes": list(result.notes),
+    }
+    return {key: groups.get(key, getattr(result, key)) for key in KEYS}
 
 
 def project_from_data(data: object, *, problems: Iterable[str] = ()) -> ChipProject:
@@ -78,10 +89,16 @@ def project_from_data(data: object, *, problems: Iterable[str] = ()) -> ChipProj
     words = _words(data, "", found)
     operating = _values(data.get("operating", {}), OPERATING_FIELDS, "operating: ", found)
     sets = _sets(data.get("sets", []), found)
+    solved = _solved(data.get("solved", []), found)
     if found:
         raise ProjectFileError(_told(found), found)
     values = {"name": "Untitled chip", **words}
-    return ChipProject(**values, sets=tuple(sets), operating=OperatingPoint(**operating))  # type: ignore[arg-type]
+    return ChipProject(
+        **values,
+        sets=tuple(sets),
+        operating=OperatingPoint(**operating),  # type: ignore[arg-type]
+        solved=tuple(solved),
+    )
 
 
 def _told(problems: list[str], most: int = 5) -> str:
@@ -163,3 +180,40 @@ def _set(data: object, where: str, problems: list[str]) -> ParameterSet | None:
     if "name" not in words:
         return None
     return ParameterSet(**words, channel=ChannelParameters(**channel))  # type: ignore[arg-type]
+
+
+def _solved(data: object, problems: list[str]) -> list[SolvedResult]:
+    if not isinstance(data, list):
+        problems.append(f"solved: {shown(data)} is no list; write [ ... ] with one entry per result")
+        return []
+    tried = [_solved_result(each, f"solved {number}: ", problems) for number, each in enumerate(data, start=1)]
+    return [each for each in tried if each is not None]
+
+
+def _solved_result(data: object, where: str, problems: list[str]) -> SolvedResult | None:
+    """Return one result of a flow solve; None when it cannot be used (told in the problems)."""
+    if not isinstance(data, dict):
+        problems.append(f"{where}{shown(data)} is no result; remove it and solve again")
+        return None
+    before = len(problems)
+    _tell_unknown(data, KEYS, where, problems)
+    missing = [key for key in ("set_name", "channel", "operating", "reynolds") if key not in data]
+    problems.extend(f"{where}{key} is missing; remove the entry and solve again" for key in missing)
+    channel = _values(data.get("channel", {}), CHANNEL_FIELDS, where, problems)
+    operating = _values(data.get("operating", {}), OPERATING_FIELDS, where, problems)
+    notes = data.get("notes", [])
+    if not isinstance(notes, list):
+        problems.append(f"{where}notes: {shown(notes)} is no list of texts")
+    if len(problems) > before:
+        return None
+    others = {key: data[key] for key in KEYS if key in data and key not in ("channel", "operating", "notes")}
+    return _tried(
+        lambda: SolvedResult(
+            **others,
+            channel=ChannelParameters(**channel),  # type: ignore[arg-type]
+            operating=OperatingPoint(**operating),  # type: ignore[arg-type]
+            notes=tuple(notes),
+        ),
+        where,
+        problems,
+    )

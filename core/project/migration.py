@@ -15,12 +15,14 @@ from core.errors import ProjectFileError, shown
 if TYPE_CHECKING:
     from collections.abc import Callable
 
-SCHEMA = 1
+SCHEMA = 2
 
 Data = dict[str, object]
 
 # schema of the data given -> function that returns data of the next schema
-STEPS: dict[int, Callable[[Data], Data]] = {}
+STEPS: dict[int, Callable[[Data], Data]] = {
+    1: lambda data: data,  # 2 may hold results of flow solves under "solved", which older programs do not know
+}
 
 
 def migrated(data: Data) -> Data:

@@ -34,6 +34,10 @@ class ReadyAnswers(Ask):
         self.asked.append(("save", suggestion))
         return self.path
 
+    def file_to_write(self, parent, title, name, kinds):
+        self.asked.append(("write", name))
+        return self.path
+
     def folder(self, parent, start):
         self.asked.append(("folder", start))
         return self.path

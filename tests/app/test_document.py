@@ -44,9 +44,9 @@ def test_push_undo_redo(document):
 
 def test_undo_text_is_plain_words(document):
     document.change_channel({"loop_radius_um": 340})
-    assert document.undo_stack.undoText() == "Loop radius 320 to 340 µm"
+    assert document.undo_stack.undo_text == "Loop radius 320 to 340 µm"
     document.change_operating({"fluid": "ethanol"})
-    assert document.undo_stack.undoText() == "Fluid water to ethanol"
+    assert document.undo_stack.undo_text == "Fluid water to ethanol"
 
 
 def test_modified_follows_save_and_undo(document, tmp_path):
@@ -68,7 +68,7 @@ def test_one_drag_is_one_step(document):
     for radius in (325, 330, 350, 360):
         document.change_channel({"loop_radius_um": radius}, gesture=gesture)
     assert document.undo_stack.count() == 1
-    assert document.undo_stack.undoText() == "Loop radius 320 to 360 µm"
+    assert document.undo_stack.undo_text == "Loop radius 320 to 360 µm"
     document.undo_stack.undo()
     assert document.channel.loop_radius_um == 320.0
 
@@ -203,7 +203,7 @@ def test_loading_forgets_old_steps(document, tmp_path, qtbot):
     with qtbot.waitSignals([document.path_changed, document.project_changed]):
         document.load(other, path=tmp_path / "other.sideloop")
     assert not document.is_modified
-    assert not document.undo_stack.canUndo()
+    assert not document.undo_stack.can_undo
     assert document.project is other
 
 
@@ -226,4 +226,4 @@ def test_details_are_one_step(document):
     document.undo_stack.undo()
     assert document.project.name == "Bench chip"
     with pytest.raises(DesignValueError):
-        document.change_details(name="  ")
+        document.change_details(name="  ", lab="", author="", notes="")

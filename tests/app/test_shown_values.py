@@ -53,9 +53,16 @@ def test_fields_are_called_what_the_screen_calls_them():
 
 
 @pytest.mark.parametrize(
-    ("valid", "band_percent", "text"),
-    [(True, 50.0, "Di 1.235"), (False, 60.0, "Di about 1.2"), (False, 100.0, "Di unknown")],
+    ("valid", "band_percent", "diodicity", "text"),
+    [
+        (True, 50.0, 1.23456, "Di 1.235"),
+        (False, 60.0, 1.23456, "Di about 1.2"),
+        (False, 100.0, 1.23456, "Di unknown"),
+        (False, 160.0, 1.0157, "Di about 1.0"),
+    ],
 )
-def test_di_is_told_as_surely_as_it_is_known(valid, band_percent, text):
-    score = SimpleNamespace(diodicity=1.23456, valid=valid, rectification_band_percent=band_percent)
+def test_di_is_told_as_surely_as_it_is_known(valid, band_percent, diodicity, text):
+    score = SimpleNamespace(
+        diodicity=diodicity, rectification=diodicity - 1.0, valid=valid, rectification_band_percent=band_percent
+    )
     assert diodicity_text(score) == text

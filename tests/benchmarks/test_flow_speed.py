@@ -1,32 +1,138 @@
-"""Seconds and unknowns of the flow solve; limits are generous because the machine may be busy."""
+"""Seconds and memory of the flow solve, printed; asserted are only loose ratios, because the machine may be busy.
+
+Aims on a free machine of two cores: three dimensions at least 10 times slower at equal accuracy; 16
+stages at most 5 times the time of 4 in full and at most twice with settled drops; both directions of 10
+stages in 15 s, a curve of 8 flows of 4 stages in 45 s, both in 2 GB; first answer in 1.5 s.
+
+The long solves are made at quality 'coarse' here; at 'normal' they take some minutes together.
+"""
 
 from __future__ import annotations
 
+import json
+import subprocess
+import sys
+import time
+from dataclasses import asdict
+from pathlib import Path
+
 import pytest
 
-from core.flow import solve
+from core.flow.assembly import Assembler
+from core.flow.channel import solve_channel
+from core.flow.ladder import DIRECTIONS
+from core.flow.mesh import MeshPlan, channel_mesh
+from core.flow.modes import depth_tensors
+from core.flow.newton import creeping_branch, follow
+from core.flow.problem import both_directions
+from core.flow.quality import suited_modes
+from core.operating import OperatingPoint
+from core.parameters import ChannelParameters
 from tests.core.flow.flow_shapes import chain
+from tests.core.flow.solid_on_mesh import solid_on, started_from
 
-WATER = {"density_kg_m3": 1000.0, "viscosity_pa_s": 1e-3}
+pytestmark = [pytest.mark.benchmark, pytest.mark.slow]
+
+ROOT = Path(__file__).parents[2]
+WATER = OperatingPoint().fluid_state()
+FLOW_UL_MIN = 1200.0  # the flow a new project starts with; Re 100 in the default channel
+ONE_STAGE = {"depth_um": 100.0, "radius_um": 130.0, "lead_um": 150.0}
+LAYERS = 4  # of quadratic tetrahedra over half the depth
+# A process of its own: its memory is that of the solve alone. The high-water mark of the process is read
+# from the system, since that of getrusage starts at the size of the process that made it.
+CHILD = """
+import json, sys, time
+began = time.perf_counter()
+channel, flows, quality = json.loads(sys.argv[1])
+from core.flow.channel import solve_channel
+from core.operating import OperatingPoint
+from core.parameters import ChannelParameters
+found = solve_channel(
+    ChannelParameters(**channel), fluid=OperatingPoint().fluid_state(), flows_ul_min=flows, quality=quality
+)
+seconds = time.perf_counter() - began
+status = dict(line.split(":", 1) for line in open("/proc/self/status"))
+print(json.dumps([seconds, int(status["VmHWM"].split()[0]) / 1024, all(p.valid for p in found.points)]))
+"""
 
 
-@pytest.mark.benchmark
-@pytest.mark.slow
-def test_first_coarse_answer_of_a_four_stage_chain():
-    result = solve(chain(stages=4), flow_m3_s=0.5e-8, quality="coarse", **WATER)
-    print(f"4 stages, coarse: {result.seconds:.2f} s, {result.unknowns} unknowns")
-    assert result.valid
-    assert result.seconds < 6  # aim 1.5 s on a free machine
+@pytest.fixture
+def say(capsys):
+    """Print past the capture of the run."""
+
+    def line(text):
+        with capsys.disabled():
+            print(f"\n  {text}")
+
+    return line
 
 
-@pytest.mark.benchmark
-@pytest.mark.slow
-def test_sixteen_stages_against_four():
-    """Cost grows little faster than the number of stages: at most 5 times for 4 times the stages."""
+def test_one_stage_against_three_dimensions(say):
+    """Same triangles, both directions, drops that agree within 1 % and Di - 1 within 0.003.
+
+    The three-dimensional solve starts from the answer of the depth modes, which spares it most of
+    its iterations: the ratio is on the low side.
+    """
+    domain = chain(**ONE_STAGE)
+    depth = domain.depth_to_width
+    mesh = channel_mesh(domain, MeshPlan(0.4, nose=0.3))
+    began = time.perf_counter()
+    problems = both_directions(Assembler(mesh, depth_tensors(suited_modes(depth), depth)))
+    branches = {d: creeping_branch(problems[d]) for d in DIRECTIONS}
+    assert all(follow(problems[d], branches[d], 60.0) for d in DIRECTIONS)
+    flat = {d: problems[d].pressure_drop(branches[d].state, 60.0) / 60.0 for d in DIRECTIONS}
+    ours, began = time.process_time() - began, time.process_time()
+    solid, full = solid_on(domain, mesh, depth, LAYERS), {}
+    for d in DIRECTIONS:
+        full[d] = solid.drop(
+            problems[d].inlet, problems[d].outlet, 60.0, started_from(problems[d], branches[d].state, depth)
+        )
+    theirs = time.perf_counter() - began
+    excess = [drops["reverse"] / drops["forward"] - 1.0 for drops in (flat, full)]
+    say(f"one stage: {ours:.2f} s, three dimensions {theirs:.1f} s, ratio {theirs / ours:.1f} (Di - 1: {excess})")
+    assert all(flat[d] == pytest.approx(full[d], rel=0.01) for d in DIRECTIONS)
+    assert abs(excess[0] - excess[1]) < 0.003
+    assert theirs > 5.0 * ours
+
+
+def test_sixteen_stages_against_four(say):
+    """Cost grows little faster than the number of stages, and hardly at all with settled drops."""
     seconds = {}
-    for stages in (4, 16):
-        result = solve(chain(stages=stages), flow_m3_s=0.5e-8, quality="coarse", memory_limit_mb=8000, **WATER)
-        assert result.valid
-        seconds[stages] = result.seconds
-    print(f"4 stages {seconds[4]:.2f} s, 16 stages {seconds[16]:.2f} s")
-    assert seconds[16] < 6 * seconds[4]
+    for name, stages, solved in (("4", 4, 4), ("16 in full", 16, 16), ("16 by settled drops", 16, None)):
+        channel = ChannelParameters(stages=stages)
+        began = time.perf_counter()
+        found = solve_channel(
+            channel,
+            fluid=WATER,
+            flows_ul_min=[FLOW_UL_MIN],
+            quality="coarse",
+            solved_stages=solved,
+            memory_limit_mb=8000,
+        )
+        seconds[name] = time.perf_counter() - began
+        assert found.points[0].valid
+        assert len(found.points[0].loop_shares_reverse) == stages
+    say(", ".join(f"{name}: {value:.2f} s ({value / seconds['4']:.2f})" for name, value in seconds.items()))
+    assert seconds["16 in full"] <= 8.0 * seconds["4"]
+    assert seconds["16 by settled drops"] <= 3.0 * seconds["4"]
+
+
+@pytest.mark.skipif(not Path("/proc/self/status").exists(), reason="the memory of a process is read from /proc")
+@pytest.mark.parametrize(
+    ("name", "stages", "flows", "quality"),
+    [
+        ("10 stages, both directions", 10, [FLOW_UL_MIN], "coarse"),
+        ("4 stages, curve of 8 flows", 4, [FLOW_UL_MIN * k / 6 for k in range(1, 9)], "coarse"),
+        ("first answer of the default channel", 4, [FLOW_UL_MIN], "coarse"),
+    ],
+)
+def test_seconds_and_memory(say, name, stages, flows, quality):
+    """From the start of a fresh process, loading of libraries included."""
+    work = json.dumps([asdict(ChannelParameters(stages=stages)), flows, quality])
+    done = subprocess.run(
+        [sys.executable, "-c", CHILD, work], cwd=ROOT, capture_output=True, text=True, timeout=600, check=True
+    )
+    seconds, megabytes, is_valid = json.loads(done.stdout)
+    say(f"{name}, {quality}: {seconds:.1f} s, {megabytes:.0f} MB")
+    assert is_valid
+    assert megabytes < 4000.0  # the limit that a solve keeps by itself

@@ -132,6 +132,8 @@ def test_the_whole_job(window, make_window, qtbot, sample, tmp_path):
     dialog = other.findChild(ExportDialog)
     folder = tmp_path / "masks"
     dialog.choices.folder_entry.setText(str(folder))
+    with qtbot.waitSignal(dialog.summary_shown, timeout=30_000):
+        pass
     qtbot.mouseClick(dialog.write_button, Qt.MouseButton.LeftButton)
     with qtbot.waitSignal(dialog._job.ended, timeout=60_000):
         pass

@@ -14,8 +14,8 @@ import shapely
 
 from core.errors import SolveError
 from core.flow import FlowStopped
-from core.flow.channel import channel_domain, solve_channel
-from core.fluids import FluidState
+from core.flow.channel import solve_channel
+from core.flow.channel_places import channel_domain, curve_flows_ul_min, streamline_seeds_um
 from core.geometry.shape import build_shape
 from core.operating import OperatingPoint
 from core.parameters import ChannelParameters
@@ -36,9 +36,9 @@ REFERENCE = ChannelParameters(
 )
 
 
-def flow_at(reynolds: float, parameters: ChannelParameters, fluid: FluidState = WATER) -> float:
+def flow_at(reynolds: float, parameters: ChannelParameters) -> float:
     """Return the flow [uL/min] at a Reynolds number on the channel width."""
-    speed = reynolds * fluid.kinematic_viscosity_m2_s / (parameters.channel_width_um * 1e-6)
+    speed = reynolds * WATER.kinematic_viscosity_m2_s / (parameters.channel_width_um * 1e-6)
     area_m2 = parameters.channel_width_um * parameters.depth_um * 1e-12
     return speed * area_m2 / M3_S_PER_UL_MIN
 
@@ -96,6 +96,24 @@ def test_an_unusable_shape_is_refused_with_its_finding():
 def test_unusable_flows_are_named(flows):
     with pytest.raises(SolveError, match="flow_ul_min"):
         solve_channel(REFERENCE, fluid=WATER, flows_ul_min=flows)
+
+
+@pytest.mark.parametrize("name", SHAPES)
+@pytest.mark.parametrize("is_forward", [True, False])
+def test_streamlines_start_in_the_liquid(name, is_forward):
+    shape = build_shape(SHAPES[name])
+    area = liquid(channel_domain(shape))
+    seeds = streamline_seeds_um(shape, is_forward=is_forward, lines=7, per_path=2)
+    assert len(seeds) == 7 + 4 * shape.parameters.stages
+    assert all(area.contains(shapely.Point(seed)) for seed in seeds)
+
+
+def test_flows_of_a_curve_rise_to_the_top_through_the_operating_flow():
+    flows = curve_flows_ul_min(2000.0, through_ul_min=1200.0)
+    assert flows == tuple(sorted(flows))
+    assert (len(flows), flows[-1]) == (8, 2000.0)
+    assert 1200.0 in flows
+    assert 3.0 in curve_flows_ul_min(5.0, through_ul_min=3.0)
 
 
 # --- one stage ------------------------------------------------------------------------------
@@ -162,7 +180,7 @@ def test_fields_fill_the_outline(coarse_curve):
 def test_a_plain_channel_has_no_easy_direction():
     plain = ChannelParameters(stages=0, lead_in_um=500.0, lead_out_um=500.0)
     (point,) = solve_channel(plain, fluid=WATER, flows_ul_min=[500.0], quality="coarse").points
-    assert abs(point.diodicity - 1.0) < min(point.diodicity_band, 0.003)  # the two ends are not meshed alike
+    assert abs(point.diodicity - 1.0) <= point.diodicity_band < 0.003  # the two ends are not meshed alike
     assert point.loop_share_forward == point.loop_share_reverse == 0.0
     # square duct: R = 28.454 mu L / w^4 (series solution of the Poisson equation)
     exact = 28.454 * WATER.viscosity_pa_s * 1e-3 / (200e-6) ** 4 * 500.0 * M3_S_PER_UL_MIN

@@ -91,7 +91,7 @@ def test_a_byte_order_mark_is_taken(saved):
         (b"[" * 500 + b"]" * 500, "nested more than 8 deep"),
         (b'{"a": ' * 20 + b"1" + b"}" * 20, "nested more than 8 deep"),
         (b"1" * 5_000, "too many digits"),
-        (b'"' + b"x" * LARGEST_FILE_BYTES + b'"', "larger than the 5 MB"),
+        (b'"' + b"x" * LARGEST_FILE_BYTES + b'"', "larger than the 10 MB"),
         (b'{"' + b"x" * 1_000_000 + b'": 1, "format": "sideloop chip project", "schema": 1}', "'xxxxx"),
     ],
 )
@@ -118,7 +118,7 @@ def test_a_huge_file_is_not_read_whole(tmp_path):
     file = tmp_path / "huge.sideloop"
     with file.open("wb") as handle:
         handle.truncate(1 << 40)  # a sparse file: reading it whole would exhaust the memory
-    assert "larger than the 5 MB" in str(refusal(file))
+    assert "larger than the 10 MB" in str(refusal(file))
 
 
 def test_a_missing_file_is_answered_with_its_neighbours(saved):

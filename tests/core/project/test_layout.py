@@ -36,7 +36,7 @@ def test_missing_fields_take_their_defaults():
 def test_every_field_is_in_the_file_under_its_own_name():
     data = json.loads(project_bytes(rinse_project()))
     assert data["format"] == "sideloop chip project"
-    assert data["schema"] == 1
+    assert data["schema"] == 2
     assert data["operating"] == rinse_project().operating.as_dict()
     assert data["sets"][0]["channel"] == rinse_project().sets[0].channel.as_dict()
 
@@ -86,7 +86,7 @@ def test_the_message_counts_what_it_leaves_out():
     ("change", "part"),
     [
         ({"format": "other"}, "no chip project"),
-        ({"schema": 2}, "saved by a newer Sideloop (schema 2; this one knows up to 1)"),
+        ({"schema": 3}, "saved by a newer Sideloop (schema 3; this one knows up to 2)"),
         ({"schema": 0}, "schema is 0"),
         ({"schema": "1"}, "schema is '1'"),
         ({"schema": True}, "schema is True"),
