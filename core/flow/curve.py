@@ -101,19 +101,21 @@ def _climb_all(
         _add_level(domain, level, climbs, reynolds, quality, progress, memory_limit_mb)
     while True:
         poor = [
-            i for i, c in enumerate(climbs) if c.band is not None and not good_enough(quality, c.band, c.last.diodicity)
+            i
+            for i, c in enumerate(climbs)
+            if c.band is not None and not good_enough(quality, c.band, c.answer.diodicity)
         ]
         if not poor:
             return climbs
-        worst = climbs[max(poor, key=lambda i: climbs[i].band.diodicity)]
-        finest = min((climbs[i].last.level for i in poor), key=lambda level: (level.size, -level.modes))
-        level = next_level(quality, finest, domain.depth_to_width, worst.by_modes or Band(), worst.by_size or Band())
-        if level is None:
+        worst = climbs[max(poor, key=lambda i: (climbs[i].band or Band()).diodicity)]
+        finest = min((climbs[i].answer.level for i in poor), key=lambda level: (level.size, -level.modes))
+        finer = next_level(quality, finest, domain.depth_to_width, worst.by_modes or Band(), worst.by_size or Band())
+        if finer is None:
             return climbs
         try:
             _add_level(
                 domain,
-                level,
+                finer,
                 [climbs[i] for i in poor],
                 [reynolds[i] for i in poor],
                 quality,

@@ -8,7 +8,7 @@ R. J. Vanderbei, SIAM J. Optim. 5, 1995, 100); Newton's corrections remove the t
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
@@ -23,7 +23,7 @@ _BYTES_PER_ENTRY = 12  # a value and an index in the factor
 class Factor:
     """A factor that solves for the free unknowns in their own order."""
 
-    def __init__(self, lu: object, order: np.ndarray) -> None:
+    def __init__(self, lu: Any, order: np.ndarray) -> None:
         self._lu, self._order = lu, order
 
     @property

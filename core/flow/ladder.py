@@ -41,7 +41,9 @@ class Progress:
         Answers True to stop.
     """
 
-    def __init__(self, total: int, report: Callable | None, should_stop: Callable | None) -> None:
+    def __init__(
+        self, total: int, report: Callable[[int, int, str], None] | None, should_stop: Callable[[], bool] | None
+    ) -> None:
         self._step, self._total, self._report, self._should_stop = 0, total, report, should_stop
 
     def tick(self, text: str, *, advance: bool = True) -> None:
@@ -115,6 +117,13 @@ class Climb:
     memory_mb: float = 0.0
 
     @property
+    def answer(self) -> Answer:
+        """The last answer; there is one as soon as a level has been solved."""
+        if self.last is None:
+            raise AssertionError("no level of the ladder has been solved")
+        return self.last
+
+    @property
     def band(self) -> Band | None:
         """Error of the last answer, or None if no two answers can be compared."""
         if self.last is None or not self.last.complete or (self.by_modes is None and self.by_size is None):
@@ -165,16 +174,16 @@ def climb(
     state, misses = Climb(quality), 0
     for level in first_levels(quality, domain.depth_to_width):
         state.add(solve_level(domain, level, state.last, reynolds, quality, progress, memory_limit_mb))
-        misses = 0 if state.last.complete else misses + 1
+        misses = 0 if state.answer.complete else misses + 1
         if misses == 2:
             return state
-    while state.band is not None and not good_enough(quality, state.band, state.last.diodicity):
-        level = next_level(
-            quality, state.last.level, domain.depth_to_width, state.by_modes or Band(), state.by_size or Band()
+    while state.band is not None and not good_enough(quality, state.band, state.answer.diodicity):
+        finer = next_level(
+            quality, state.answer.level, domain.depth_to_width, state.by_modes or Band(), state.by_size or Band()
         )
-        if level is None or _too_large(state.last, level, memory_limit_mb):
+        if finer is None or _too_large(state.answer, finer, memory_limit_mb):
             break
-        answer = solve_level(domain, level, state.last, reynolds, quality, progress, memory_limit_mb)
+        answer = solve_level(domain, finer, state.last, reynolds, quality, progress, memory_limit_mb)
         if not answer.complete:
             break
         state.add(answer)

@@ -197,7 +197,9 @@ def _thinned_path(ring: np.ndarray, path: np.ndarray, sag: float) -> list[int]:
     return [int(path[k]) for k in sorted(kept)]
 
 
-def _triangulated(rings: list, chains: list, plan: MeshPlan) -> tuple[MeshTri1, np.ndarray, np.ndarray]:
+def _triangulated(
+    rings: list[np.ndarray], chains: list[np.ndarray], plan: MeshPlan
+) -> tuple[MeshTri1, np.ndarray, np.ndarray]:
     """Return straight triangles, their wall edges (n, 2) and the thinned chord each edge lies on."""
     from netgen.geom2d import SplineGeometry
     from netgen.meshing import MeshingParameters
@@ -255,7 +257,7 @@ def _facets_of(mesh: MeshTri1, edges: np.ndarray) -> np.ndarray:
 class _ChordMap:
     """Moves points of thinned chords on the stretch of ring that each chord stands for."""
 
-    def __init__(self, rings: list, chains: list) -> None:
+    def __init__(self, rings: list[np.ndarray], chains: list[np.ndarray]) -> None:
         self._stretches = []
         for ring, chain in zip(rings, chains, strict=True):
             for start, stop in zip(chain, np.roll(chain, -1), strict=True):

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
@@ -46,7 +46,7 @@ class Branch:
 
     state: np.ndarray
     reynolds: float = 0.0
-    factor: object = None
+    factor: Any = None
     creeping: np.ndarray | None = None
     factorisations: int = 0
     history: list[float] = field(default_factory=list)

@@ -12,6 +12,7 @@ from core.flow.mesh import OPEN_ENDS
 
 if TYPE_CHECKING:
     from scipy.sparse import csr_array
+    from skfem import MeshTri1
 
     from core.flow.assembly import Assembler
     from core.flow.elimination import Factor
@@ -145,11 +146,11 @@ def both_directions(assembler: Assembler) -> dict[str, FlowProblem]:
     }
 
 
-def _nodes(mesh: object, facets: np.ndarray) -> np.ndarray:
+def _nodes(mesh: MeshTri1, facets: np.ndarray) -> np.ndarray:
     return np.unique(np.concatenate([mesh.facets[:, facets].ravel(), mesh.nvertices + facets]))
 
 
-def _ends(mesh: object, boundary: str) -> tuple[np.ndarray, np.ndarray]:
+def _ends(mesh: MeshTri1, boundary: str) -> tuple[np.ndarray, np.ndarray]:
     """Return the two end points of a straight boundary."""
     points = mesh.p[:, np.unique(mesh.facets[:, mesh.boundaries[boundary]])].T
     first = points[np.argmax(np.hypot(*(points - points.mean(axis=0)).T))]
@@ -157,7 +158,7 @@ def _ends(mesh: object, boundary: str) -> tuple[np.ndarray, np.ndarray]:
     return first, last
 
 
-def _inward(mesh: object, boundary: str) -> np.ndarray:
+def _inward(mesh: MeshTri1, boundary: str) -> np.ndarray:
     """Return the unit normal of a straight boundary that points into the liquid."""
     start, stop = _ends(mesh, boundary)
     along = (stop - start) / np.hypot(*(stop - start))

@@ -54,6 +54,10 @@ class Quality:
     least_pressure_percent, least_excess_percent : float
         Error stated even where two answers agree: scatter between equally fine meshes of one design,
         measured by mirroring it.
+    excess_growth_percent : float
+        What the error of Di - 1 gains up to Re 150 on the width, beyond what two coarse answers show:
+        coarse triangles lose the thin jets of fast flow (measured against the normal quality: a
+        third at Re 110, nearly half at Re 150).
     """
 
     name: str
@@ -66,6 +70,7 @@ class Quality:
     newton_tolerance: float
     least_pressure_percent: float
     least_excess_percent: float
+    excess_growth_percent: float = 0.0
 
 
 QUALITIES = {
@@ -75,13 +80,14 @@ QUALITIES = {
             name="coarse",
             steps=((-2, 0.75), (-1, 0.5)),
             pressure_tolerance_percent=3.0,
-            excess_tolerance_percent=40.0,
+            excess_tolerance_percent=65.0,
             excess_floor=0.02,
             smallest_size=0.5,
             most_modes=-1,
             newton_tolerance=1e-6,
             least_pressure_percent=2.0,
             least_excess_percent=15.0,
+            excess_growth_percent=35.0,
         ),
         Quality(
             name="normal",
@@ -221,9 +227,10 @@ def least_band(quality: Quality, diodicity: float, reynolds: float) -> Band:
     and nothing at creeping flow.
     """
     uneven = 2e-4 * reynolds / (reynolds + 20) + 1e-6
+    share = quality.least_excess_percent + quality.excess_growth_percent * min(reynolds / 150, 1.5)
     return Band(
         pressure_percent=quality.least_pressure_percent,
-        diodicity=quality.least_excess_percent / 100 * abs(diodicity - 1) + uneven,
+        diodicity=share / 100 * abs(diodicity - 1) + uneven,
     )
 
 

@@ -3,10 +3,14 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 import numpy as np
 
 from core.flow.modes import in_plane_modes, pressure_modes, vertical_modes
+
+if TYPE_CHECKING:
+    from numpy.polynomial import Polynomial
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -70,7 +74,7 @@ class FlowField:
         means = [(mode.integ()(1.0) - mode.integ()(-1.0)) / 2 for mode in modes]
         return np.einsum("k,ckn->nc", np.ones(1) if self.plain else np.array(means), self.in_plane_m_s)
 
-    def _at(self, modes: list, height_share: float) -> np.ndarray:
+    def _at(self, modes: list[Polynomial], height_share: float) -> np.ndarray:
         if self.plain:
             return np.ones(1)
         return np.array([mode(2 * height_share - 1) for mode in modes])

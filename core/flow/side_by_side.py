@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import multiprocessing
 from multiprocessing.connection import wait
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from core.errors import SolveError
 from core.flow.newton import FlowStopped
@@ -22,7 +22,7 @@ _POLL_S = 0.2
 def solve_in_processes(
     domain: FlowDomain,
     flows_m3_s: Sequence[float],
-    liquid: dict,
+    liquid: dict[str, Any],
     processes: int,
     *,
     memory_limit_mb: float,
@@ -79,14 +79,17 @@ def solve_in_processes(
     return [solved[q] for q in flows_m3_s]
 
 
-def _gather(links: list[Connection], report: Callable | None, should_stop: Callable | None) -> dict[float, FlowResult]:
+def _gather(
+    links: list[Any], report: Callable[[int, int, str], None] | None, should_stop: Callable[[], bool] | None
+) -> dict[float, FlowResult]:
     """Take messages from all children until each has delivered."""
     solved: dict[float, FlowResult] = {}
     steps, open_links = dict.fromkeys(links, (0, 1)), list(links)
     while open_links:
         if should_stop is not None and should_stop():
             raise FlowStopped("the flow solve was stopped")
-        for link in wait(open_links, timeout=_POLL_S):
+        ready: list[Any] = wait(open_links, timeout=_POLL_S)
+        for link in ready:
             try:
                 kind, content = link.recv()
             except EOFError as error:
@@ -102,7 +105,7 @@ def _gather(links: list[Connection], report: Callable | None, should_stop: Calla
     return solved
 
 
-def _work(link: Connection, domain: FlowDomain, flows_m3_s: list[float], arguments: dict) -> None:
+def _work(link: Connection, domain: FlowDomain, flows_m3_s: list[float], arguments: dict[str, Any]) -> None:
     """Run in a child: solve a share of the flows and send what happens."""
     from core.flow.curve import solve_curve
 

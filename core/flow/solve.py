@@ -105,7 +105,7 @@ def as_result(
     check_steady: bool = False,
 ) -> FlowResult:
     """Return the last answer of a ladder in units, with bands and notes."""
-    last, band = ladder.last, ladder.band
+    last, band = ladder.answer, ladder.band
     notes, steady = _notes(ladder, unit, quality), True
     if check_steady:
         steady, remark = _steadiness(ladder, progress)
@@ -133,7 +133,7 @@ def as_result(
 
 
 def _notes(ladder: Climb, unit: Scales, quality: Quality) -> list[str]:
-    last, band = ladder.last, ladder.band
+    last, band = ladder.answer, ladder.band
     notes = [f"flow solve, {last.level.modes} depth modes, triangles of {last.level.size:.2g} channel widths"]
     for direction in DIRECTIONS:
         if not last.reached[direction]:
@@ -153,7 +153,7 @@ def _steadiness(ladder: Climb, progress: Progress) -> tuple[bool, str]:
     """Return whether no disturbance of either flow grows, and a sentence that says so."""
     from core.flow.steadiness import growth_rate
 
-    last = ladder.last
+    last = ladder.answer
     if not last.complete:
         return False, "growth of disturbances was not looked for because no steady flow was found"
     rates = {}
