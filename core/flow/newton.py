@@ -155,6 +155,7 @@ def correct(
         if factor is None:
             if spent == _MOST_FACTORS:
                 return False
+            branch.factor = None  # two factors at once would double the memory
             factor, fresh, spent = problem.factorised(state, reynolds), True, spent + 1
             branch.factorisations += 1
         change = factor.solve(problem.residual(state, reynolds))
@@ -182,6 +183,9 @@ def correct(
 def _predicted(problem: FlowProblem, branch: Branch, aim: float) -> np.ndarray:
     """Return the state moved along the tangent of the branch."""
     guess = branch.state.copy()
+    if branch.factor is None:  # lost in a step that failed
+        branch.factor = problem.factorised(branch.state, branch.reynolds)
+        branch.factorisations += 1
     slope = branch.factor.solve(problem.convection(branch.state)[problem.free])
     guess[problem.free] -= (aim - branch.reynolds) * slope
     return guess
