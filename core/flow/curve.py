@@ -70,6 +70,7 @@ def solve_curve(
         from core.flow.side_by_side import solve_in_processes
 
         return solve_in_processes(
+            solve_curve,
             domain,
             flows_m3_s,
             liquid,

@@ -20,6 +20,7 @@ _POLL_S = 0.2
 
 
 def solve_in_processes(
+    solve_share: Callable[..., list[FlowResult]],
     domain: FlowDomain,
     flows_m3_s: Sequence[float],
     liquid: dict[str, Any],
@@ -33,6 +34,8 @@ def solve_in_processes(
 
     Parameters
     ----------
+    solve_share : callable
+        What each child does with its flows: ``solve_curve``.
     domain : FlowDomain
     flows_m3_s : sequence of float
         Volume flows [m^3/s].
@@ -63,7 +66,7 @@ def solve_in_processes(
     try:
         for hand in hands:
             ours, theirs = context.Pipe(duplex=False)
-            child = context.Process(target=_work, args=(theirs, domain, hand, arguments), daemon=True)
+            child = context.Process(target=_work, args=(theirs, solve_share, domain, hand, arguments), daemon=True)
             child.start()
             theirs.close()
             children.append(child)
@@ -105,15 +108,20 @@ def _gather(
     return solved
 
 
-def _work(link: Connection, domain: FlowDomain, flows_m3_s: list[float], arguments: dict[str, Any]) -> None:
+def _work(
+    link: Connection,
+    solve_share: Callable[..., list[FlowResult]],
+    domain: FlowDomain,
+    flows_m3_s: list[float],
+    arguments: dict[str, Any],
+) -> None:
     """Run in a child: solve a share of the flows and send what happens."""
-    from core.flow.curve import solve_curve
 
     def tell(step: int, total: int, text: str) -> None:
         link.send(("step", (step, total, text)))
 
     try:
-        results = solve_curve(domain, flows_m3_s=flows_m3_s, report=tell, **arguments)
+        results = solve_share(domain, flows_m3_s=flows_m3_s, report=tell, **arguments)
     except SolveError as error:
         link.send(("error", str(error)))
     else:
