@@ -6,8 +6,9 @@ Sliders, project files, the command line and every message read the same ``Field
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
-from typing import TYPE_CHECKING, NoReturn
+from abc import ABC, abstractmethod
+from dataclasses import dataclass, replace
+from typing import TYPE_CHECKING, NoReturn, Self
 
 from core.errors import DesignValueError, did_you_mean
 
@@ -113,6 +114,50 @@ class Field:
 
     def _refuse(self, value: object, way_out: str) -> NoReturn:
         raise DesignValueError(field=self.name, value=value, limit=self.limit, way_out=way_out)
+
+
+class CheckedValues(ABC):
+    """Base of frozen dataclasses whose fields are all described in one table.
+
+    Raises
+    ------
+    DesignValueError
+        If a value has the wrong kind, is not finite or lies out of bounds.
+    """
+
+    __slots__ = ()
+
+    @classmethod
+    @abstractmethod
+    def table(cls) -> Mapping[str, Field]:
+        """Return the table that describes the fields."""
+
+    def __post_init__(self) -> None:
+        """Check every field and keep it in its own type."""
+        for field in self.table().values():
+            object.__setattr__(self, field.name, field.checked(getattr(self, field.name)))
+
+    def with_values(self, values: Mapping[str, object]) -> Self:
+        """Return a copy with some fields replaced.
+
+        Parameters
+        ----------
+        values : mapping
+            Field names to new values (numbers, words or text holding them).
+
+        Raises
+        ------
+        DesignValueError
+            For the first unknown name or unusable value.
+        """
+        for name, value in values.items():
+            if name not in self.table():
+                raise unknown_field(name, value, self.table())
+        return replace(self, **dict(values))  # type: ignore[type-var]  # subclasses are dataclasses
+
+    def as_dict(self) -> dict[str, Value]:
+        """Return all fields by name, in the order of the field table."""
+        return {name: getattr(self, name) for name in self.table()}
 
 
 def table_of(*fields: Field) -> dict[str, Field]:

@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from core.fields import Field, Value, problems_in, table_of, unknown_field
+from core.fields import CheckedValues, Field, problems_in, table_of
 from core.fluids import FLUID_RANGES_C, FluidState, fluid_state
 
 if TYPE_CHECKING:
@@ -32,7 +32,7 @@ OPERATING_FIELDS: dict[str, Field] = table_of(
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class OperatingPoint:
+class OperatingPoint(CheckedValues):
     """One checked operating point; every field is described in ``OPERATING_FIELDS``.
 
     Raises
@@ -48,32 +48,10 @@ class OperatingPoint:
     own_density_kg_m3: float = 1000.0
     own_viscosity_mpa_s: float = 1.0
 
-    def __post_init__(self) -> None:
-        """Check every field and keep it in its own type."""
-        for field in OPERATING_FIELDS.values():
-            object.__setattr__(self, field.name, field.checked(getattr(self, field.name)))
-
-    def with_values(self, values: Mapping[str, object]) -> OperatingPoint:
-        """Return a copy with some fields replaced.
-
-        Parameters
-        ----------
-        values : mapping
-            Field names to new values (numbers, words or text holding them).
-
-        Raises
-        ------
-        DesignValueError
-            For the first unknown name or unusable value.
-        """
-        for name, value in values.items():
-            if name not in OPERATING_FIELDS:
-                raise unknown_field(name, value, OPERATING_FIELDS)
-        return replace(self, **dict(values))  # type: ignore[arg-type]  # checked in __post_init__
-
-    def as_dict(self) -> dict[str, Value]:
-        """Return all fields by name, in the order of the field table."""
-        return {name: getattr(self, name) for name in OPERATING_FIELDS}
+    @classmethod
+    def table(cls) -> Mapping[str, Field]:
+        """Return the table that describes the fields."""
+        return OPERATING_FIELDS
 
     def fluid_state(self) -> FluidState:
         """Return density and viscosity at this operating point.

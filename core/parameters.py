@@ -6,10 +6,10 @@ bends back, an optional straight *return* meets the bypass at the *mouth*.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from core.fields import Field, Value, problems_in, table_of, unknown_field
+from core.fields import CheckedValues, Field, problems_in, table_of
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -67,7 +67,7 @@ CHANNEL_FIELDS: dict[str, Field] = table_of(
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class ChannelParameters:
+class ChannelParameters(CheckedValues):
     """One checked parameter set; lengths in um, angles in degrees.
 
     Every field is described in ``CHANNEL_FIELDS``. Values that are fine one by one but do not
@@ -96,32 +96,10 @@ class ChannelParameters:
     nose_radius_um: float = 10.0
     corner_radius_um: float = 10.0
 
-    def __post_init__(self) -> None:
-        """Check every field and keep it in its own type."""
-        for field in CHANNEL_FIELDS.values():
-            object.__setattr__(self, field.name, field.checked(getattr(self, field.name)))
-
-    def with_values(self, values: Mapping[str, object]) -> ChannelParameters:
-        """Return a copy with some fields replaced.
-
-        Parameters
-        ----------
-        values : mapping
-            Field names to new values (numbers, words or text holding them).
-
-        Raises
-        ------
-        DesignValueError
-            For the first unknown name or unusable value.
-        """
-        for name, value in values.items():
-            if name not in CHANNEL_FIELDS:
-                raise unknown_field(name, value, CHANNEL_FIELDS)
-        return replace(self, **dict(values))  # type: ignore[arg-type]  # checked in __post_init__
-
-    def as_dict(self) -> dict[str, Value]:
-        """Return all fields by name, in the order of the field table."""
-        return {name: getattr(self, name) for name in CHANNEL_FIELDS}
+    @classmethod
+    def table(cls) -> Mapping[str, Field]:
+        """Return the table that describes the fields."""
+        return CHANNEL_FIELDS
 
 
 def channel_problems(values: Mapping[str, object]) -> list[str]:
