@@ -24,6 +24,7 @@ from app.environment import ROOT, SetUpError, core_environment, ready_qt, run, s
 
 CORE_TESTS = (ROOT / "tests" / "core", ROOT / "core")  # the second for the examples in docstrings
 NOTHING_COLLECTED = 5  # pytest's exit status
+SIDE_BY_SIDE = ("-n", "2", "--dist", "worksteal")  # two processes; benchmarks run alone
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -55,6 +56,7 @@ def main(arguments: list[str]) -> int:
         0 if all steps passed, 1 otherwise.
     """
     os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")  # as in conftest.py
+    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")  # two processes share the processors already
     complete, bare = suite_environment().prepare(), core_environment().prepare()
     if not ready_qt(complete):
         raise SetUpError("the tests of the window cannot run without Qt")
@@ -102,9 +104,8 @@ def testing_steps(complete: Path, bare: Path, arguments: list[str]) -> list[Step
         profile = "fast" if is_fast else "ci"
         pytest = [python, "-P", "-m", "pytest", *chosen, f"--hypothesis-profile={profile}"]
         marks = "not slow and not benchmark" if is_fast else "not benchmark"
-        steps.append(
-            Step(name=f"tests of {name}", command=[*pytest, "-m", marks, *options], may_be_empty=bool(arguments))
-        )
+        command = [*pytest, "-m", marks, *SIDE_BY_SIDE, *options]
+        steps.append(Step(name=f"tests of {name}", command=command, may_be_empty=bool(arguments)))
         if not is_fast:
             command = [*pytest, "-m", "benchmark", "-s", *options]
             steps.append(Step(name=f"benchmarks of {name}", command=command, may_be_empty=True))

@@ -52,7 +52,7 @@ DESIGN_RANGES: dict[str, Range] = {
     "loop_angle": Range(label="loop angle", low=25.0, high=90.0, unit=" deg"),
     "loop_turn": Range(label="loop turn", low=150.0, high=210.0, unit=" deg"),
     # a bypass that hardly bends lets forward and reverse flow part in ways the estimate misses
-    "run_bend": Range(label="run bend over loop angle", low=0.4, high=1.0),
+    "run_bend": Range(label="run bend over loop angle", low=0.5, high=1.0),
     # closer stages rectify less than estimated: their streams meet before they have formed
     "stage_gap": Range(label="stage gap over channel width", low=0.9, high=np.inf),
 }
@@ -66,7 +66,7 @@ RECTIFICATION_PERCENT = 40.0  # together with the floor: nine in ten lie inside 
 RECTIFICATION_FLOOR = 0.006  # ... plus this much of Di, which flow solves found with either sign
 INERTIA_RE = 30.0  # above it the floor counts in full; below it falls as Re^2
 WIDEST_PERCENT = 1000.0
-OUTSIDE_FACTOR = 2.5  # no comparison there: a judgement, no source
+OUTSIDE_FACTOR = 4.0  # of both bands; nine in ten of the flow solves made out of range lie inside
 
 NOTHING_TO_GAIN = 1e-3
 SOFT_WALL_PA = 10e3

@@ -318,7 +318,7 @@ def test_masks_into_a_place_that_is_no_folder(refused, tmp_path):
     ("words", "part"),
     [
         (["scor", SAMPLE], "did you mean 'score'?"),
-        (["banana"], "known names: open, score, check, masks"),
+        (["banana"], "known names: open, score, solve, check, masks"),
         ([SAMPLE], "write 'open "),
         (["score"], "required: FILE"),
         (["masks", SAMPLE], "required: --out"),

@@ -21,7 +21,7 @@ pytestmark = pytest.mark.slow
 
 
 def solved(*reynolds, quality="coarse", **fields):
-    """Return the points of the default channel with some fields changed and leads of three widths."""
+    """Return the points for the default channel with some fields changed and leads of three widths."""
     channel = ChannelParameters(lead_in_um=600.0, lead_out_um=600.0, **fields)
     flows = [flow_ul_min(channel, each) for each in reynolds]
     return solve_channel(channel, fluid=WATER, flows_ul_min=flows, quality=quality).points
@@ -29,13 +29,15 @@ def solved(*reynolds, quality="coarse", **fields):
 
 @pytest.fixture(scope="module")
 def by_stages():
-    return {
-        stages: dict(zip((20, 100), solved(20.0, 100.0, stages=stages), strict=True)) for stages in (1, 2, 4)
-    }
+    return {stages: dict(zip((20, 100), solved(20.0, 100.0, stages=stages), strict=True)) for stages in (1, 2, 4)}
 
 
 def test_growth_with_stages_is_below_linear(by_stages):
-    """At Re 100."""
+    """At Re 100: Di is 1.088, 1.112 and 1.143 with 1, 2 and 4 stages.
+
+    That is stages to the power of 0.035, where the published 1.43, 2.76 and 3.58 follow a power of 0.57:
+    those are the largest values up to Re 450, and the growth is said to be stronger at higher flow.
+    """
     one, two, four = (by_stages[stages][100].diodicity - 1.0 for stages in (1, 2, 4))
     assert one < two < four
     assert two < 2.0 * one
@@ -48,16 +50,30 @@ def test_stages_hardly_matter_in_slow_flow(by_stages):
 
 
 def test_a_longer_gap_gives_no_more():
-    """At Re 100, from one to four widths."""
+    """At Re 100, from one to four widths: 1.147 and 1.124 with an error of 0.006 when this was written."""
     near, far = (solved(100.0, quality="normal", stages=2, stage_gap_um=gap)[0] for gap in (200.0, 800.0))
     assert far.diodicity < near.diodicity + near.diodicity_band
     assert near.diodicity_band < 0.01
 
 
-def test_bands():
-    one = dict(zip((20, 50, 300), solved(20.0, 50.0, 300.0, stages=1), strict=True))
-    assert 0.995 < one[20].diodicity < 1.3
-    assert 0.995 < one[50].diodicity < 1.3
-    assert one[300].diodicity == pytest.approx(1.2, abs=0.1)
-    two = solved(200.0, 450.0, stages=2)
-    assert all(1.0 < point.diodicity < 1.5 for point in two if point.valid)
+def test_bands_of_one_stage():
+    """Slow flow at most 1.3; at Re 300 published 1.2, here 1.22 with an error of 0.16 from this coarse solve.
+
+    The outlines are not the same: what agrees is the size of the effect.
+    """
+    points = dict(zip((20, 50, 300), solved(20.0, 50.0, 300.0, stages=1), strict=True))
+    assert 0.999 < points[20].diodicity < 1.3
+    assert 0.999 < points[50].diodicity < 1.3
+    assert points[300].diodicity == pytest.approx(1.2, abs=0.1)
+
+
+def test_band_of_two_stages():
+    """At Re 200 below the 1.43 that were published as the most up to Re 450.
+
+    Not held at Re 300 and above: this solve gives 1.51 with an error of 0.35 at Re 300, and 1.71 without
+    any error known at Re 450. Meshes of this quality do not carry such flows; besides, the real flow is
+    likely to fluctuate there (J. Fluids Eng. 2021, doi 10.1115/1.4051401), and a steady solution that is
+    followed further says little about it. The program warns above Re 200.
+    """
+    (point,) = solved(200.0, stages=2)
+    assert 1.0 < point.diodicity < 1.43

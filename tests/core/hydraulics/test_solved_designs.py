@@ -15,6 +15,7 @@ import pytest
 
 from core.fluids import fluid_state
 from core.hydraulics.estimate import estimate
+from core.hydraulics.trust import OUTSIDE_FACTOR, PRESSURE_PERCENT
 from core.parameters import CHANNEL_FIELDS, ChannelParameters
 
 TABLE = Path(__file__).with_name("solved_designs.csv")
@@ -50,7 +51,8 @@ def _compared(row):
     }
 
 
-COMPARED = {use: [_compared(row) for row in _rows() if row["use"] == use] for use in ("fit", "check")}
+USES = ("fit", "check", "fit outside", "check outside")
+COMPARED = {use: [_compared(row) for row in _rows() if row["use"] == use] for use in USES}
 HIGH_ENOUGH_RE = 9.0  # below, Di - 1 of the solves is mesh error
 
 
@@ -69,7 +71,7 @@ def _inside(use):
 
 
 def test_designs_the_coefficients_were_fitted_to():
-    """Drops: median 1.0 %, 90th percentile 2.8 %. Di - 1 above 0.005: median 10 %, 90th percentile 34 %."""
+    """18 designs. Drops: median 1.1 %, 90th percentile 2.9 %. Di - 1 above 0.005: median 9 %, 90th percentile 30 %."""
     pressure, rectification = _errors("fit")
     assert np.median(pressure) < 0.015
     assert np.quantile(pressure, 0.9) < 0.04
@@ -79,13 +81,37 @@ def test_designs_the_coefficients_were_fitted_to():
 
 
 def test_designs_kept_aside():
-    """Drops: median 1.5 %, 90th percentile 2.1 %. Di - 1 above 0.005 (8 points): median 29 %, 90th percentile 59 %."""
+    """18 designs. Drops: median 1.1 %, 90th percentile 2.5 %.
+
+    Di - 1 above 0.005 (12 points): median 24 %, 90th percentile 55 %. Designs with the run bend
+    between 0.4 and 0.5 of the loop angle were called out of range after these solves; counted
+    in, the median was 29 %, the 90th percentile 69 %.
+    """
     pressure, rectification = _errors("check")
     assert np.median(pressure) < 0.02
     assert np.quantile(pressure, 0.9) < 0.04
     assert np.median(rectification) < 0.4
     assert np.quantile(rectification, 0.9) < 0.7
-    assert _inside("check") > 0.85
+    assert _inside("check") > 0.9
+
+
+@pytest.mark.parametrize("use", ["fit outside", "check outside"])
+def test_designs_out_of_range(use):
+    """24 designs. Drops: median 1.2 %, 90th percentile 4.6 %, at worst 28 %.
+
+    Di - 1 above 0.005 (21 points) is wrong by its own size at the median. The estimate calls itself not
+    valid there; nine in ten lie inside its wider bands.
+    """
+    pressure, _ = _errors(use)
+    assert np.quantile(pressure, 0.9) < PRESSURE_PERCENT * OUTSIDE_FACTOR / 100.0
+    assert _inside(use) > 0.9
+
+
+def test_sixty_designs_cover_the_flows():
+    reynolds = [one["reynolds"] for use in USES for one in COMPARED[use]]
+    assert len({row["design"] for row in _rows()}) >= 60
+    assert min(reynolds) <= 1.0
+    assert max(reynolds) >= 150.0
 
 
 @pytest.mark.parametrize("use", ["fit", "check"])
@@ -96,6 +122,6 @@ def test_loop_shares(use):
 
 def test_no_solved_design_is_flattered():
     """Where a solve found next to nothing (|Di - 1| below 0.001), the estimate does not promise a percent."""
-    nothing = [one for use in COMPARED for one in COMPARED[use] if abs(one["solved"]) < 1e-3]
+    nothing = [one for use in ("fit", "check") for one in COMPARED[use] if abs(one["solved"]) < 1e-3]
     assert len(nothing) > 50
     assert max(one["estimated"] for one in nothing) < 0.01
