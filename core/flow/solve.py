@@ -127,7 +127,7 @@ def as_result(
         seconds=time.perf_counter() - began,
         memory_mb=ladder.memory_mb,
         quality=quality.name,
-        valid=last.complete and steady,
+        valid=last.complete and steady and band is not None,
         notes=tuple(notes),
     )
 
