@@ -198,11 +198,11 @@ def flow_notes(
     limit = STEADY_UP_TO_RE if parameters.stages else DUCT_LAMINAR_UP_TO_RE
     if reynolds > limit:
         notes.append(
-            f"Re {reynolds:.3g}: above {limit:g} the flow may be unsteady; the steady laminar result "
+            f"Re {_plain(reynolds)}: above {limit:g} the flow may be unsteady; the steady laminar result "
             "is indicative; lower the flow or measure."
         )
     if parameters.stages and abs(rectification) < NOTHING_TO_GAIN:
-        notes.append(f"Re {reynolds:.2g}: rectification below 0.1 %; {_way_to_rectify(reynolds)}.")
+        notes.append(f"Re {_plain(reynolds)}: rectification below 0.1 %; {_way_to_rectify(reynolds)}.")
     elif parameters.stages and rectification < 0.0:
         notes.append(
             "This shape resists the forward flow more at this flow; raise the run bend towards the loop angle."
@@ -239,7 +239,7 @@ def _outside(parameters: ChannelParameters) -> list[str]:
         "stage_gap": parameters.stage_gap_um / width if parameters.stages > 1 else 1.0,
     }
     return [
-        f"The {span.label} is {values[name]:.3g}{span.unit}; the estimate was compared with flow solves "
+        f"The {span.label} is {_plain(values[name])}{span.unit}; the estimate was compared with flow solves "
         f"{span.words} only: run the flow solve before you trust it."
         for name, span in DESIGN_RANGES.items()
         if not span.low <= values[name] <= span.high

@@ -250,3 +250,10 @@ def test_two_hundred_flows_through_a_hundred_stages_in_time():
         estimate(parameters, fluid=WATER_LIKE, flows_ul_min=flows)
         spent.append(perf_counter() - start)
     assert min(spent) < 3e-3
+
+
+def test_notes_write_large_numbers_out():
+    fast = estimate(ChannelParameters(), fluid=fluid_state(fluid="water"), flows_ul_min=[40000.0]).score(0)
+    assert fast.reynolds > 1000.0
+    assert any("unsteady" in note for note in fast.notes)
+    assert not any("e+" in note for note in fast.notes)
