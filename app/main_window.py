@@ -5,6 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+from PySide6.QtCore import QSize
 from PySide6.QtWidgets import QLabel, QMainWindow
 
 from app.actions import fill_menus, keys_page, made_actions
@@ -73,7 +74,7 @@ class MainWindow(QMainWindow):
         self._connect_document()
         self._connect_parts()
         self.setAcceptDrops(True)
-        self.resize(1440, 900)
+        self.resize(first_size(self.screen().availableGeometry().size()))
         if (geometry := settings.arrangement("window")) is not None:
             self.restoreGeometry(geometry)
         self._show_all()
@@ -275,6 +276,11 @@ class MainWindow(QMainWindow):
 def _show_step(action: QAction, name: str, text: str) -> None:
     word = name.capitalize()
     action.setText(f"&{word}: {text}" if text else f"&{word}")
+
+
+def first_size(room: QSize) -> QSize:
+    """Return the size of a window that was never arranged: roomy, but never larger than the screen."""
+    return QSize(1440, 900).boundedTo(room)
 
 
 def run_window(path: Path | None) -> int:

@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 import pytest
-from PySide6.QtCore import QMimeData, QPoint, QPointF, Qt, QUrl
+from PySide6.QtCore import QMimeData, QPoint, QPointF, QSize, Qt, QUrl
 from PySide6.QtGui import QDragEnterEvent, QDropEvent, QKeySequence
 from PySide6.QtWidgets import QApplication, QPushButton
 
 from app.actions import ACTIONS
+from app.main_window import first_size
 from app.panels.ask import Unsaved
 from app.panels.pages import PageDialog, WordsDialog
 from core.parameters import ChannelParameters
@@ -256,6 +257,13 @@ def test_the_arrangement_comes_back(window, make_window):
     sizes = window.parts.sizes()
     window.close()
     assert make_window().parts.sizes() == pytest.approx(sizes, abs=30)
+
+
+@pytest.mark.parametrize(
+    ("room", "first"), [((1280, 720), (1280, 720)), ((1920, 1040), (1440, 900)), ((3840, 2160), (1440, 900))]
+)
+def test_the_first_window_fits_the_screen(room, first):
+    assert first_size(QSize(*room)) == QSize(*first)
 
 
 @pytest.mark.parametrize("size", [(1280, 720), (1600, 1000), (3840, 2160)])
