@@ -31,6 +31,8 @@ class Finding:
         Measured value and limit [um]; None where the finding is not a length.
     x_um, y_um : float or None
         Place on the drawing [um].
+    cure : tuple of (str, value) or None
+        Nearest value of a field that was tried and takes the finding away, ready to be applied.
     """
 
     code: str
@@ -41,6 +43,7 @@ class Finding:
     limit_um: float | None = None
     x_um: float | None = None
     y_um: float | None = None
+    cure: tuple[str, float | int | str] | None = None
 
     def as_dict(self) -> dict[str, object]:
         """Return the finding with the keys used in machine-readable output."""
@@ -53,4 +56,5 @@ class Finding:
             "limit_um": self.limit_um,
             "x_um": self.x_um,
             "y_um": self.y_um,
+            "cure": None if self.cure is None else {"field": self.cure[0], "value": self.cure[1]},
         }

@@ -1,0 +1,174 @@
+"""The process that makes a chip: its limits, what it does to a drawing, and how its files should be.
+
+Every value is a starting point, to be confirmed with the shop that makes the chip.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from enum import StrEnum
+from typing import TYPE_CHECKING
+
+from core.errors import DesignValueError
+from core.fields import CheckedValues, Field, table_of
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping
+
+LIMITS, DEPTHS, CHANGES, STRENGTH, FILES = (
+    "Smallest features", "Depth", "What making changes", "Bond", "Drawing and files",
+)  # fmt: skip
+
+
+class ProcessKind(StrEnum):
+    """Ways of making a chip that are known here; the value is the word used in files."""
+
+    CAST_FILM = "cast, film mask"
+    CAST_CHROME = "cast, chrome mask"
+    WET_GLASS = "wet-etched glass"
+    DRY_SILICON = "dry-etched silicon"
+    LASER_ACRYLIC = "laser-cut acrylic"
+    LASER_FILM = "laser-cut film"
+    MILLED_CHANNEL = "milled channel"
+    MILLED_MOULD = "milled mould"
+    KNIFE_FILM = "knife-cut film"
+
+
+def _um(
+    name: str, label: str, group: str, default: float, bounds: tuple[float, float], step: float, text: str
+) -> Field:
+    return Field(name=name, label=label, group=group, default=default, unit="um",
+                 minimum=bounds[0], maximum=bounds[1], step=step, help=text)  # fmt: skip
+
+
+def _word(name: str, label: str, group: str, choices: tuple[str, ...], text: str) -> Field:
+    return Field(name=name, label=label, group=group, default=choices[0], choices=choices, help=text)
+
+
+PROCESS_FIELDS: dict[str, Field] = table_of(
+    Field(name="kind", label="Process", group=LIMITS, default=str(ProcessKind.CAST_FILM),
+          choices=tuple(map(str, ProcessKind)), help="How the chip is made."),
+    _um("min_width_um", "Smallest width", LIMITS, 50.0, (0.1, 5000.0), 5.0,
+        "Narrowest channel that comes out reliably."),
+    _um("min_gap_um", "Smallest gap", LIMITS, 50.0, (0.1, 5000.0), 5.0,
+        "Narrowest solid between two walls of one channel, an island's neck for instance."),
+    _um("min_wall_um", "Smallest wall", LIMITS, 200.0, (0.1, 10000.0), 50.0,
+        "Narrowest solid between two channels, or between a channel and a foreign port, that keeps tight."),
+    _um("min_drawn_um", "Smallest drawn feature", LIMITS, 50.0, (0.1, 5000.0), 5.0,
+        "Narrowest line or gap on the mask or tool path itself, after all compensation."),
+    _um("min_radius_um", "Smallest radius", LIMITS, 10.0, (0.0, 5000.0), 1.0,
+        "Corners come out at least this round, whatever is drawn."),
+    _um("min_depth_um", "Smallest depth", DEPTHS, 5.0, (0.1, 10000.0), 5.0, "Shallowest channel."),
+    _um("max_depth_um", "Largest depth", DEPTHS, 500.0, (0.1, 10000.0), 10.0, "Deepest channel."),
+    Field(name="max_depth_to_width", label="Depth to width at most", group=DEPTHS, default=2.0, unit="",
+          minimum=0.01, maximum=100.0, step=0.1,
+          help="Channels deeper, or solids taller, than this many times their width lean, break off or stay closed."),
+    Field(name="max_width_to_depth", label="Width to depth, careful", group=DEPTHS, default=10.0, unit="",
+          minimum=0.1, maximum=1000.0, step=1.0,
+          help="Wider channels than this many times their depth may sag: a warning."),
+    Field(name="collapse_width_to_depth", label="Width to depth at most", group=DEPTHS, default=20.0, unit="",
+          minimum=0.1, maximum=1000.0, step=1.0,
+          help="Wider channels than this many times their depth close: an error."),
+    _um("bias_um", "Edge bias", CHANGES, 0.0, (-500.0, 500.0), 0.5,
+        "How far every wall moves outwards from the drawing to the part; negative where channels come out narrower."),
+    Field(name="undercut_ratio", label="Undercut", group=CHANGES, default=0.0, unit="",
+          minimum=0.0, maximum=3.0, step=0.05,
+          help="Sideways etching on each side, as a part of the depth; 1 for isotropic etching."),
+    _um("kerf_um", "Kerf", CHANGES, 0.0, (0.0, 3000.0), 10.0,
+        "Width that the beam or blade takes away, centred on the drawn line."),
+    _um("tool_diameter_um", "Tool diameter", CHANGES, 0.0, (0.0, 6000.0), 50.0,
+        "Diameter of the smallest tool that runs along the walls; 0 for none."),
+    _word("tool_runs", "Tool runs", CHANGES, ("in the channel", "outside the channel"),
+          "In the channel when it is milled straight into the part; outside when a raised mould is milled."),
+    _word("allowance", "Allowance", CHANGES, ("in the drawing", "by the shop", "not at all"),
+          "Who allows for bias, undercut, kerf and tool: the drawing, the shop, or nobody. Never both."),
+    Field(name="shrink_percent", label="Shrinkage", group=CHANGES, default=0.0, unit="%",
+          minimum=0.0, maximum=20.0, step=0.1,
+          help="How much smaller the part comes out than its mould, along the plane."),
+    Field(name="wall_lean_deg", label="Wall lean", group=CHANGES, default=0.0, unit="deg",
+          minimum=0.0, maximum=60.0, step=0.5,
+          help="How far each wall leans from upright, so that the channel is narrower at its floor."),
+    Field(name="bond_limit_kpa", label="Bond holds", group=STRENGTH, default=200.0, unit="kPa",
+          minimum=0.1, maximum=100000.0, step=10.0, help="Pressure at which the weakest bond of the chip may fail."),
+    Field(name="safety_factor", label="Safety factor", group=STRENGTH, default=2.0, unit="",
+          minimum=1.0, maximum=20.0, step=0.5,
+          help="The bond's limit is divided by this before the pressure in the channel is compared with it."),
+    Field(name="grid_nm", label="Drawing grid", group=FILES, default=1, unit="nm", minimum=1, maximum=10000, step=1,
+          whole=True, help="Every corner of a mask lies on a multiple of this. The writer's address unit, if known."),
+    _word("tone", "Tone", FILES, ("drawn shapes are CLEAR", "drawn shapes are DARK", "drawn lines are CUT"),
+          "What the drawn shapes become on the mask."),
+    _word("reading", "Reading side", FILES,
+          ("right-reading, chrome or emulsion side DOWN", "right-reading, chrome or emulsion side UP",
+           "as seen from the side where the tool enters"),
+          "From which side the drawing reads correctly. Files are never mirrored."),
+    _word("formats", "Formats", FILES, ("DXF and GDSII", "DXF", "GDSII"), "Which files are written."),
+    _word("dxf_version", "DXF version", FILES, ("R2000", "R12"), "R12 for the oldest readers only."),
+    _word("islands", "Islands", FILES, ("pieces", "loops", "nested"),
+          "Pieces: butting shapes without holes. Loops: islands on a layer of their own, combined by NOT. "
+          "Nested: plain loops within loops, inner ones first, for cutting."),
+    _word("dxf_copies", "Copies in DXF", FILES, ("inserts", "flat"),
+          "Repeated shapes as inserts of a block, or everything written out."),
+    _um("chord_tolerance_um", "Chord tolerance", FILES, 0.02, (0.002, 5.0), 0.01,
+        "Largest distance between an arc and the straight edges that stand for it in GDSII files."),
+)  # fmt: skip
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Process(CheckedValues):
+    """One checked process; every field is described in ``PROCESS_FIELDS``.
+
+    Raises
+    ------
+    DesignValueError
+        If a value has the wrong kind or lies out of bounds, or two values contradict each other.
+    """
+
+    kind: str = str(ProcessKind.CAST_FILM)
+    min_width_um: float = 50.0
+    min_gap_um: float = 50.0
+    min_wall_um: float = 200.0
+    min_drawn_um: float = 50.0
+    min_radius_um: float = 10.0
+    min_depth_um: float = 5.0
+    max_depth_um: float = 500.0
+    max_depth_to_width: float = 2.0
+    max_width_to_depth: float = 10.0
+    collapse_width_to_depth: float = 20.0
+    bias_um: float = 0.0
+    undercut_ratio: float = 0.0
+    kerf_um: float = 0.0
+    tool_diameter_um: float = 0.0
+    tool_runs: str = "in the channel"
+    allowance: str = "in the drawing"
+    shrink_percent: float = 0.0
+    wall_lean_deg: float = 0.0
+    bond_limit_kpa: float = 200.0
+    safety_factor: float = 2.0
+    grid_nm: int = 1
+    tone: str = "drawn shapes are CLEAR"
+    reading: str = "right-reading, chrome or emulsion side DOWN"
+    formats: str = "DXF and GDSII"
+    dxf_version: str = "R2000"
+    islands: str = "pieces"
+    dxf_copies: str = "inserts"
+    chord_tolerance_um: float = 0.02
+
+    @classmethod
+    def table(cls) -> Mapping[str, Field]:
+        """Return the table that describes the fields."""
+        return PROCESS_FIELDS
+
+    def __post_init__(self) -> None:
+        """Check every value, and those that must go together."""
+        CheckedValues.__post_init__(self)
+        self._in_order("min_depth_um", "max_depth_um")
+        self._in_order("max_width_to_depth", "collapse_width_to_depth")
+
+    def _in_order(self, low: str, high: str) -> None:
+        if getattr(self, low) > getattr(self, high):
+            raise DesignValueError(
+                field=low,
+                value=getattr(self, low),
+                limit=f"at most {high}, which is {getattr(self, high):g}",
+                way_out=f"lower {low} or raise {high}",
+            )
