@@ -90,6 +90,17 @@ ACTIONS: tuple[ActionWords, ...] = (
         ("compare", "Compare side &by side", "F7", "part switch"),
     ),
     *_words(
+        "&Place",
+        ("place_set", "&Add the set in hand", "Ctrl+Shift+A"),
+        ("place_control", "Add its &control", "Ctrl+Shift+K"),
+        ("turn_placed", "&Turn by a quarter", "Ctrl+R", "part"),
+        ("level_placed", "&Level its ports", "Ctrl+L"),
+        ("fold_placed", "&Fold into one row more", "Ctrl+]"),
+        ("unfold_placed", "&Unfold by one row", "Ctrl+["),
+        ("remove_placed", "&Remove from the chip", "Ctrl+Shift+Del", "part"),
+        ("pack_chip", "&Pack all anew", "Ctrl+K", "part"),
+    ),
+    *_words(
         "S&olve",
         ("solve", "Solve the flow &here", "F5"),
         ("solve_curve", "Solve along the &curve", "Shift+F5"),
@@ -104,7 +115,13 @@ ACTIONS: tuple[ActionWords, ...] = (
         ("zoom_out", "Zoom &out", "Ctrl+-"),
         ("next_finding", "Ne&xt finding", "F8", "part"),
         ("previous_finding", "Previous fi&nding", "Shift+F8"),
-        ("next_part", "&Go to the next part of the window", "F6", "part"),
+        ("use_cure", "&Use the finding's cure", "Ctrl+F8"),
+        ("show_drawn", "Walls as &drawn on the mask", "F9", "part switch"),
+        ("show_made", "Walls as &made", "Shift+F9", "switch"),
+        ("show_channel", "Page of the &channel", "Ctrl+1", "part"),
+        ("show_process", "Page of the &making", "Ctrl+2"),
+        ("show_chip", "Page of the c&hip", "Ctrl+3"),
+        ("next_part", "&Go to the next part of the window", "F6"),
         ("previous_part", "Go to the &previous part", "Shift+F6"),
     ),
     *_words(
@@ -169,6 +186,10 @@ def keys_page() -> str:
         ("Entry: take it, take typing back", "Enter, Escape"),
         ("Next and previous field", "Tab, Shift+Tab"),
         ("Row of sets: another set", "Left, Right"),
+        ("Chip: next and previous channel", "Space, Shift+Space"),
+        ("Chip: move a channel by 100 \N{MICRO SIGN}m, by 1 \N{MICRO SIGN}m", "Arrow keys, Shift+Arrow keys"),
+        ("Chip: remove a channel, let go of it", "Delete, Escape"),
+        ("Chip: show all, show one chip", "F, C"),
         ("Findings: step, go to the field", "Up and Down, Enter"),
     )
     rows = "".join(f"<tr><td>{what}&nbsp;&nbsp;</td><td>{keys}</td></tr>" for what, keys in hand)

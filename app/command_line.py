@@ -21,7 +21,6 @@ from app.verbs import (
     GOOD,
     REFUSED,
     Answer,
-    DesignRefusedError,
     UsageError,
     check_verb,
     masks_verb,
@@ -30,7 +29,7 @@ from app.verbs import (
     score_verb,
     solve_verb,
 )
-from core.errors import CoreError, did_you_mean, shown
+from core.errors import CoreError, DesignRefusedError, did_you_mean, shown
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Sequence
@@ -159,12 +158,12 @@ VERBS: dict[str, Verb] = {
         run=solve_verb,
     ),
     "check": Verb(
-        summary="findings: what is wrong with the design, or doubtful",
+        summary="findings: what is wrong with the chip or doubtful, in its shapes, for its process and on its masks",
         options=("FILE", "--set", "--with", "--json"),
         run=check_verb,
     ),
     "masks": Verb(
-        summary="write the mask set",
+        summary="write the mask set of the chip, or bare channels of one set or all",
         options=("FILE", "--out", "--set", "--all-sets", "--with", "--force", "--json"),
         run=masks_verb,
     ),
@@ -172,8 +171,11 @@ VERBS: dict[str, Verb] = {
 
 _OPTIONS: dict[str, dict[str, object]] = {
     "FILE": {"metavar": "FILE", "type": Path, "help": "chip project (.sideloop)"},
-    "--set": {"metavar": "NAME", "help": "which parameter set (default: the first)"},
-    "--all-sets": {"action": "store_true", "help": "every parameter set of the chip"},
+    "--set": {
+        "metavar": "NAME",
+        "help": "which parameter set (default: the first for score and solve, the whole chip for check and masks)",
+    },
+    "--all-sets": {"action": "store_true", "help": "the bare channel of every parameter set, without the chip"},
     "--with": {
         "metavar": "FIELD=VALUE", "action": "append", "default": [], "dest": "overrides",
         "help": "use another value for a field, as named in the file; repeatable, the last one counts",
@@ -181,7 +183,7 @@ _OPTIONS: dict[str, dict[str, object]] = {
     "--flow-ul-min": {"metavar": "Q[,Q...]", "help": "flow or flows [uL/min] (default: the project's)"},
     "--quality": {"metavar": "Q", "default": "normal", "help": "coarse, normal (default) or fine"},
     "--out": {"metavar": "DIR", "type": Path, "required": True, "help": "folder for the mask files"},
-    "--force": {"action": "store_true", "help": "write although there are error findings"},
+    "--force": {"action": "store_true", "help": "write although there are error findings; the order sheet says so"},
     "--json": {"action": "store_true", "help": "machine-readable answer"},
 }  # fmt: skip
 

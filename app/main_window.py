@@ -10,21 +10,22 @@ from PySide6.QtWidgets import QLabel, QMainWindow
 
 from app.actions import fill_menus, keys_page, made_actions
 from app.arrangement import Arrangement
+from app.beside_desk import BesideDesk
+from app.curves_desk import CurvesDesk
 from app.document import Document
-from app.failures import FailureHook, start_log
+from app.drawing.beside import Walls
 from app.files import ProjectFiles
+from app.findings_desk import FindingsDesk
 from app.look import Look, Scheme
 from app.menus import RecentMenu, add_choice_menus
-from app.panels.ask import Ask
 from app.panels.cautions import cautions_page
+from app.panels.chip_desk import ChipDesk
+from app.panels.chip_places import PLACING
 from app.panels.export import ExportDialog
 from app.panels.pages import ABOUT_PAGE, PageDialog, details_dialog, notes_dialog
-from app.settings import Settings, made_application, user_folder
 from app.shown_values import ShownUnits, number_text, screen_words
 from app.solving.desk import SolveDesk
-from app.throttle import Throttle
 from core.errors import CoreError
-from core.project import RecoveryStore
 from core.units import unit_symbol
 
 if TYPE_CHECKING:
@@ -33,12 +34,12 @@ if TYPE_CHECKING:
     from PySide6.QtGui import QAction, QCloseEvent, QDragEnterEvent, QDropEvent
 
     from app.assessment import Assessment
+    from app.panels.ask import Ask
+    from app.settings import Settings
     from core.geometry.shape import ChannelShape
+    from core.project import RecoveryStore
 
 _MESSAGE_MS = 6000
-
-# Painting the curves takes longer than all the rest, so that they may lag behind the drawing by this.
-_CURVES_MS = 50
 
 
 class MainWindow(QMainWindow):
@@ -63,13 +64,14 @@ class MainWindow(QMainWindow):
         self.files = ProjectFiles(self.document, settings=settings, recovery=recovery, ask=ask, window=self)
         self.actions_by_name = made_actions(self, self._handlers())
         set_buttons = tuple(self.actions_by_name[name] for name in ("add_set", "copy_set", "compare"))
-        self.parts = Arrangement(self.document, settings=settings, palette=look.palette, set_buttons=set_buttons)
+        place_buttons = tuple(action for name, action in self.actions_by_name.items() if name in PLACING)
+        self.parts = Arrangement(
+            self.document, settings=settings, palette=look.palette, set_buttons=set_buttons, place_buttons=place_buttons
+        )
         self.setCentralWidget(self.parts)
         self.place_label = QLabel()
         self.statusBar().setSizeGripEnabled(False)
         self.statusBar().addPermanentWidget(self.place_label)
-        self._curves_throttle = Throttle(self._show_curves, interval_ms=_CURVES_MS, parent=self)
-        self._flow_gesture: int | None = None
         self._build_menus()
         self._connect_document()
         self._connect_parts()
@@ -78,6 +80,7 @@ class MainWindow(QMainWindow):
         if (geometry := settings.arrangement("window")) is not None:
             self.restoreGeometry(geometry)
         self._show_all()
+        self._add_desks()
         self.solving = SolveDesk(self.document, parts=self.parts, settings=settings, ask=ask, window=self)
 
     # --- building -------------------------------------------------------------------------
@@ -87,6 +90,31 @@ class MainWindow(QMainWindow):
         recent = RecentMenu(self.settings, self.files.open_path, menus["&Chip"])
         menus["&Chip"].insertMenu(self.actions_by_name["save"], recent)
         add_choice_menus(menus["&View"], self.settings)
+
+    def _add_desks(self) -> None:
+        document, parts, switches = self.document, self.parts, self.actions_by_name
+        self.curves = CurvesDesk(
+            document, parts=parts, is_comparing=switches["compare"].isChecked, refuse=self._show_refusal, parent=self
+        )
+        self.findings = FindingsDesk(
+            document,
+            panel=parts.verdict.findings,
+            drawing=parts.drawing,
+            settings=self.settings,
+            refuse=self._show_refusal,
+            parent=self,
+        )
+        self.chip = ChipDesk(
+            document,
+            parts=parts,
+            settings=self.settings,
+            findings=self.findings,
+            refuse=self._show_refusal,
+            parent=self,
+        )
+        switches["show_made"].setChecked(True)
+        walls = {Walls.DRAWN: switches["show_drawn"], Walls.MADE: switches["show_made"]}
+        self.beside = BesideDesk(document, drawing=parts.drawing, switches=walls, parent=self)
 
     def _handlers(self) -> dict[str, Callable[[], object]]:
         document, files = self.document, self.files
@@ -115,11 +143,18 @@ class MainWindow(QMainWindow):
             "previous_set": lambda: document.select_set(document.index - 1),
             "next_set": lambda: document.select_set(document.index + 1),
             "compare": self._show_comparison,
-            "fit": lambda: self.parts.drawing.fit(),
-            "zoom_in": lambda: self.parts.drawing.zoom_in(),
-            "zoom_out": lambda: self.parts.drawing.zoom_out(),
+            **{name: lambda place=place: place(self.chip) for name, place in PLACING.items()},
+            "fit": lambda: self.parts.view.fit(),
+            "zoom_in": lambda: self.parts.view.zoom_in(),
+            "zoom_out": lambda: self.parts.view.zoom_out(),
             "next_finding": lambda: self.parts.verdict.findings.step(1),
             "previous_finding": lambda: self.parts.verdict.findings.step(-1),
+            "use_cure": lambda: self.parts.verdict.findings.use_cure(),
+            "show_drawn": lambda: None,  # the switches themselves are followed
+            "show_made": lambda: None,
+            "show_channel": lambda: self.parts.show_page(self.parts.sliders),
+            "show_process": lambda: self.parts.show_page(self.parts.process),
+            "show_chip": lambda: self.parts.show_page(self.parts.chip),
             "next_part": lambda: self.parts.go_to_part(1),
             "previous_part": lambda: self.parts.go_to_part(-1),
             "keys": lambda: PageDialog(self, "Keys", keys_page()).open(),
@@ -144,17 +179,15 @@ class MainWindow(QMainWindow):
             _show_step(self.actions_by_name[name], name, text)
 
     def _connect_parts(self) -> None:
-        parts, findings = self.parts, self.parts.verdict.findings
+        parts = self.parts
         parts.sliders.field_attended.connect(parts.drawing.highlight_field)
         parts.drawing.pointer_moved.connect(self._on_drawing_pointer_moved)
         parts.drawing.pointer_left.connect(self.place_label.clear)
-        parts.drawing.finding_selected.connect(findings.point_at)
-        findings.finding_chosen.connect(parts.drawing.show_finding)
-        findings.field_requested.connect(parts.sliders.reveal)
+        parts.chip_view.pointer_moved.connect(self._show_place)
+        parts.chip_view.pointer_left.connect(self.place_label.clear)
+        parts.verdict.findings.field_requested.connect(parts.reveal_field)
         parts.comparison.set_requested.connect(self.document.select_set)
         parts.sets.model.name_refused.connect(self._show_refusal)
-        parts.curves.operating_flow_dragged.connect(self._on_curves_flow_dragged)
-        parts.curves.operating_flow_set.connect(self._on_curves_flow_set)
         self.settings.units_changed.connect(self._show_units)
         self.settings.scheme_changed.connect(lambda scheme: self.look.set_scheme(Scheme(scheme)))
         self.look.palette_changed.connect(parts.use_palette)
@@ -174,31 +207,13 @@ class MainWindow(QMainWindow):
         self.setWindowModified(self.document.is_modified)
 
     def _show_shape(self, shape: ChannelShape) -> None:
-        self.parts.drawing.show_shape(shape, last_good=self.document.last_good_shape)
+        last_good = self.document.last_good_shape
+        self.parts.drawing.show_shape(shape, last_good=last_good, keeps_findings=shape.is_usable)
 
     def _show_assessment(self, assessment: Assessment) -> None:
         score = assessment.score
-        self.parts.show_curves(score is not None)
-        if score is None:
-            self.parts.drawing.show_shares(None, None)
-        else:
-            self.parts.drawing.show_shares(score.loop_share_forward, score.loop_share_reverse)
-            self._curves_throttle.call()
-
-    def _show_curves(self) -> None:
-        assessment = self.document.assessment
-        if assessment.estimate is not None:
-            self.parts.curves.show_estimate(assessment.estimate, flow_ul_min=assessment.flow_ul_min)
-            self._show_compared_curves()
-
-    def _show_compared_curves(self) -> None:
-        named = []
-        if self.actions_by_name["compare"].isChecked():
-            for index, each in enumerate(self.document.project.sets):
-                beside = self.document.assessment_beside(index).estimate
-                if index != self.document.index and beside is not None:
-                    named.append((each.name, beside))
-        self.parts.curves.show_comparison(named)
+        shares = (None, None) if score is None else (score.loop_share_forward, score.loop_share_reverse)
+        self.parts.drawing.show_shares(*shares)
 
     def _show_units(self) -> None:
         units = ShownUnits.of(self.settings)
@@ -207,16 +222,19 @@ class MainWindow(QMainWindow):
 
     def _show_comparison(self) -> None:
         self.parts.show_comparison(self.actions_by_name["compare"].isChecked())
-        self._show_compared_curves()
+        self.curves.show_compared()
 
     def _show_refusal(self, error: CoreError) -> None:
         self.statusBar().showMessage(f"\N{BLACK DIAMOND} {screen_words(str(error))}", _MESSAGE_MS)
 
     def _on_drawing_pointer_moved(self, x_um: float, y_um: float) -> None:
+        value = self.solving.text_at(x_um, y_um)
+        self._show_place(x_um, y_um, f"{value}   " if value else "")
+
+    def _show_place(self, x_um: float, y_um: float, before: str = "") -> None:
         units = ShownUnits.of(self.settings)
         x, y = (number_text(units.shown(value, "um")) for value in (x_um, y_um))
-        value = self.solving.text_at(x_um, y_um)
-        self.place_label.setText(f"{value + '   ' if value else ''}x {x}   y {y} {unit_symbol(units.length)}")
+        self.place_label.setText(f"{before}x {x}   y {y} {unit_symbol(units.length)}")
 
     # --- doing ----------------------------------------------------------------------------
 
@@ -231,21 +249,10 @@ class MainWindow(QMainWindow):
         if 0 <= place < len(self.document.project.sets):
             self.document.move_set(self.document.index, place)
 
-    def _on_curves_flow_dragged(self, flow_ul_min: float) -> None:
-        if self._flow_gesture is None:
-            self._flow_gesture = self.document.new_gesture()
-            self.document.hold_curve(True)
-        gesture = self._flow_gesture
-        self._try(lambda: self.document.change_operating({"flow_ul_min": flow_ul_min}, gesture=gesture))
-
-    def _on_curves_flow_set(self, flow_ul_min: float) -> None:
-        self._on_curves_flow_dragged(flow_ul_min)
-        self._flow_gesture = None
-        self.document.hold_curve(False)
-
     def export(self) -> ExportDialog:
         """Open the dialog that writes the masks."""
         dialog = ExportDialog(self, document=self.document, settings=self.settings, ask=self.ask)
+        dialog.process_requested.connect(lambda: self.parts.reveal_field("formats"))
         dialog.open()
         return dialog
 
@@ -267,6 +274,7 @@ class MainWindow(QMainWindow):
             event.ignore()
             return
         self.solving.end_now()
+        self.chip.end_now()
         self.files.forget_copy()
         self.parts.remember()
         self.settings.set_arrangement("window", self.saveGeometry())
@@ -281,34 +289,3 @@ def _show_step(action: QAction, name: str, text: str) -> None:
 def first_size(room: QSize) -> QSize:
     """Return the size of a window that was never arranged: roomy, but never larger than the screen."""
     return QSize(1440, 900).boundedTo(room)
-
-
-def run_window(path: Path | None) -> int:
-    """Open the window and stay until it is closed.
-
-    Parameters
-    ----------
-    path : Path or None
-        A project to open; None for a new chip.
-
-    Returns
-    -------
-    int
-        Exit status of the window.
-    """
-    program = made_application()
-    folder = user_folder()
-    start_log(folder / "sideloop.log")
-    settings = Settings(folder / "settings.ini")
-    look = Look(program, scheme=Scheme(settings.scheme))
-    window = MainWindow(settings=settings, look=look, recovery=RecoveryStore(folder / "recovery"), ask=Ask())
-    FailureHook(
-        keep_work=window.files.keep_copy,
-        tell=lambda title, text: window.ask.tell(window, title, text),
-        log_path=folder / "sideloop.log",
-    ).install()
-    window.show()
-    if path is not None:
-        window.files.open_path(path)
-    window.files.offer_recovery()
-    return program.exec()

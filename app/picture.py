@@ -52,7 +52,8 @@ def render_window(
     with TemporaryDirectory() as folder:
         settings = Settings(Path(folder) / "settings.ini")
         window = MainWindow(settings=settings, look=look, recovery=RecoveryStore(Path(folder)), ask=Ask())
-        window.parts.drawing.set_animated(False)
+        for drawing in (window.parts.drawing, window.parts.chip_view):
+            drawing.set_animated(False)
         window.resize(width_px, height_px)
         window.show()
         if path is not None:

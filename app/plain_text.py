@@ -6,6 +6,8 @@ import json
 import math
 from typing import TYPE_CHECKING
 
+from core.errors import shown
+
 if TYPE_CHECKING:
     from collections.abc import Iterable, Mapping, Sequence
 
@@ -80,15 +82,28 @@ def score_text(
     )
 
 
-def findings_text(findings: Sequence[Finding], *, title: str) -> str:
-    """Return findings one to a line, the place on the drawing behind."""
-    if not findings:
+def findings_text(found: Sequence[tuple[str, Finding]], *, title: str) -> str:
+    """Return findings one to a line; its set, the place on the drawing and the cure behind.
+
+    Parameters
+    ----------
+    found : sequence of (str, Finding)
+        Name of the set, empty for the chip as a whole, and what was found.
+    title : str
+        What was checked.
+    """
+    if not found:
         return f"{title}: no findings"
-    lines = [f"{title}: {len(findings)} finding{'s' if len(findings) > 1 else ''}"]
-    for finding in findings:
-        place = "" if finding.x_um is None else f" (at {finding.x_um:.0f}, {finding.y_um:.0f} um)"
-        lines.append(f"  {finding.severity:7} {finding.code}: {finding.message}{place}")
-    return "\n".join(lines)
+    lines = [f"{title}: {len(found)} finding{'s' if len(found) > 1 else ''}"]
+    return "\n".join([*lines, *(_finding_line(name, finding) for name, finding in found)])
+
+
+def _finding_line(name: str, finding: Finding) -> str:
+    where = f"set {shown(name)}" if name else ""
+    place = "" if finding.x_um is None else f"at {finding.x_um:.0f}, {finding.y_um:.0f} um"
+    cure = "" if finding.cure is None else f"try {finding.cure[0]}={finding.cure[1]}"
+    behind = "; ".join(filter(None, (where, place, cure)))
+    return f"  {finding.severity:7} {finding.code}: {finding.message}{f' ({behind})' if behind else ''}"
 
 
 def masks_text(report: MaskSetReport, *, title: str, left_out: Sequence[str]) -> str:
@@ -97,7 +112,7 @@ def masks_text(report: MaskSetReport, *, title: str, left_out: Sequence[str]) ->
         [
             f"{title}: {len(report.files)} files in {report.folder}",
             *(line for file in report.files for line in _file_lines(file)),
-            *_list("left out, because they have no outline (see 'check')", left_out),
+            *_list("left out, because they cannot be drawn (see 'check')", left_out),
         ]
     )
 

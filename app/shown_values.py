@@ -6,6 +6,8 @@ import re
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
+from core.chip.plan import CHIP_FIELDS
+from core.fabrication.process import PROCESS_FIELDS
 from core.operating import OPERATING_FIELDS
 from core.parameters import CHANNEL_FIELDS
 from core.units import UNITS, base_unit, convert, unit_symbol
@@ -15,6 +17,8 @@ if TYPE_CHECKING:
     from core.fields import Field, Value
     from core.hydraulics.estimate import Score
 
+DIFFERENT = "\N{NOT EQUAL TO}"  # before what is not as it was, or not as beside it
+
 # how the words of a choice are shown; words not listed are shown as they are
 _WORDS = {
     "alternate": "left and right in turn",
@@ -23,9 +27,18 @@ _WORDS = {
     "glycerol-water": "glycerol and water",
     "saline": "saline, 0.9 %",
     "own": "your own",
+    "right-reading, chrome or emulsion side DOWN": "right-reading, coated side DOWN",
+    "right-reading, chrome or emulsion side UP": "right-reading, coated side UP",
+    "as seen from the side where the tool enters": "seen from the tool's side",
 }
 
-_LABELS = {name: field.label for name, field in (*CHANNEL_FIELDS.items(), *OPERATING_FIELDS.items())}
+ALL_FIELDS = {**CHANNEL_FIELDS, **OPERATING_FIELDS, **PROCESS_FIELDS, **CHIP_FIELDS}
+# of process and chip only the names that are no words of plain sentences ("plate", "reading") as well
+_LABELS = {
+    name: field.label
+    for name, field in ALL_FIELDS.items()
+    if "_" in name or name in CHANNEL_FIELDS or name in OPERATING_FIELDS
+}
 _FIELD_NAMES = re.compile(rf"\b({'|'.join(_LABELS)})\b")
 
 # An error as large as the rectification itself: even the sign of Di - 1 is open.

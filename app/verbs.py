@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING
 
 from app.plain_text import as_json, findings_text, masks_text, score_text
 from app.progress_line import told_progress
-from core.errors import CoreError, shown
+from core.errors import CoreError, DesignRefusedError, shown
 from core.fields import unknown_field
 from core.findings import Severity
 from core.operating import OPERATING_FIELDS
@@ -19,11 +19,13 @@ from core.project import read_project
 
 if TYPE_CHECKING:
     import argparse
-    from collections.abc import Sequence
+    from collections.abc import Iterable
     from pathlib import Path
 
     from core.findings import Finding
     from core.geometry.shape import ChannelShape
+    from core.masks.report import MaskSetReport
+    from core.parameters import ChannelParameters
     from core.project import ChipProject, ParameterSet
 
 GOOD, REFUSED, BAD_INPUT = 0, 1, 2
@@ -33,10 +35,6 @@ _OVERRIDES = {**CHANNEL_FIELDS, **OPERATING_FIELDS}
 
 class UsageError(CoreError):
     """The command line itself is wrong."""
-
-
-class DesignRefusedError(CoreError):
-    """The design has findings that forbid what was asked."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -56,7 +54,7 @@ def open_verb(arguments: argparse.Namespace) -> Answer:
 def open_window(path: Path | None) -> Answer:
     """Open the window, on a project or empty; the answer comes when it is closed."""
     try:
-        from app.main_window import run_window
+        from app.opening import run_window
     except ImportError as error:
         way_out = "'python3 app/start.py' installs what it needs"
         raise UsageError(f"the window cannot open here ({error}); {way_out}") from None
@@ -64,72 +62,90 @@ def open_window(path: Path | None) -> Answer:
 
 
 def score_verb(arguments: argparse.Namespace) -> Answer:
-    """Estimate pressures and diodicity of one parameter set, at one flow or several."""
+    """Estimate pressures and diodicity of what is made of one parameter set, at one flow or several."""
     import numpy as np
 
-    from core.geometry.shape import build_shape
     from core.hydraulics.estimate import estimate
 
     project = _project(arguments)
     flows = _flows_ul_min(arguments, project)
     chosen = _chosen_set(project, arguments)
     fluid = project.operating.fluid_state()
-    _refuse_errors(chosen, build_shape(chosen.channel), "cure it first")
-    found = estimate(chosen.channel, fluid=fluid, flows_ul_min=np.array(flows))
-    points = [found.score(index).as_dict() for index in range(len(flows))]
+    made, notes = _made(project, chosen)
+    found = estimate(made, fluid=fluid, flows_ul_min=np.array(flows))
+    points = [_with_notes(found.score(index).as_dict(), notes) for index in range(len(flows))]
     if arguments.json:
         return Answer(text=as_json(points[0] if len(points) == 1 else {"points": points}))
     return Answer(text=score_text(points, title=_title(project, chosen), operating=project.operating, fluid=fluid))
 
 
 def solve_verb(arguments: argparse.Namespace) -> Answer:
-    """Solve the flow of one parameter set in both directions, at one flow or several."""
+    """Solve the flow in what is made of one parameter set in both directions, at one flow or several."""
     from core.flow.channel import solve_channel
-    from core.geometry.shape import build_shape
 
     project = _project(arguments)
     flows = _flows_ul_min(arguments, project)
     chosen = _chosen_set(project, arguments)
     fluid = project.operating.fluid_state()
-    _refuse_errors(chosen, build_shape(chosen.channel), "cure it first")
+    made, notes = _made(project, chosen)
     with told_progress() as report:
         found = solve_channel(
-            chosen.channel,
+            made,
             fluid=fluid,
             flows_ul_min=flows,
             quality=arguments.quality,
             report=report,
             check_steady=arguments.quality == "fine",
         )
+    points = [_with_notes(point.as_dict(), notes) for point in found.points]
     if arguments.json:
-        return Answer(text=as_json(found.as_dict()))
-    points = [point.as_dict() for point in found.points]
+        return Answer(text=as_json(points[0] if len(points) == 1 else {"points": points}))
     return Answer(text=score_text(points, title=_title(project, chosen), operating=project.operating, fluid=fluid))
 
 
 def check_verb(arguments: argparse.Namespace) -> Answer:
-    """Tell the findings of one parameter set."""
-    from core.geometry.shape import build_shape
+    """Tell the findings of the whole chip, or of one parameter set."""
+    from core.project.checks import order_findings, set_findings
 
     project = _project(arguments)
-    chosen = _chosen_set(project, arguments)
-    findings = build_shape(chosen.channel).findings
-    if arguments.json:
-        text = as_json({"findings": [finding.as_dict() for finding in findings]})
+    if arguments.set is None:
+        title, found = project.name, order_findings(project)
     else:
-        text = findings_text(findings, title=_title(project, chosen))
-    return Answer(text=text, status=REFUSED if _errors_in(findings) else GOOD)
+        chosen = _chosen_set(project, arguments)
+        title = _title(project, chosen)
+        found = tuple((chosen.name, finding) for finding in set_findings(project, chosen))
+    if arguments.json:
+        text = as_json({"findings": [{**finding.as_dict(), "set": name} for name, finding in found]})
+    else:
+        text = findings_text(found, title=title)
+    return Answer(text=text, status=REFUSED if _errors_in(finding for _, finding in found) else GOOD)
 
 
 def masks_verb(arguments: argparse.Namespace) -> Answer:
-    """Write the mask set of one parameter set, or of all."""
-    from core.geometry.shape import build_shape
-    from core.masks.mask_set import write_mask_set
-    from core.masks.options import MaskOptions
-
+    """Write the mask set of the chip, or of bare channels when sets are asked for."""
     project = _project(arguments)
     if arguments.all_sets and arguments.set is not None:
         raise UsageError("--set and --all-sets exclude one another; give one of them")
+    if not arguments.all_sets and arguments.set is None:
+        return _chip_masks(project, arguments)
+    return _bare_masks(project, arguments)
+
+
+def _chip_masks(project: ChipProject, arguments: argparse.Namespace) -> Answer:
+    from datetime import date
+
+    from core.project.order import order_of
+
+    with told_progress() as report:
+        order = order_of(project, date=date.today(), force=arguments.force, report=report)
+        done = order.write(arguments.out, report=report)
+    return _masks_answer(done, project, arguments, left_out=list(order.left_out))
+
+
+def _bare_masks(project: ChipProject, arguments: argparse.Namespace) -> Answer:
+    from core.geometry.shape import build_shape
+    from core.masks.mask_set import write_mask_set
+
     chosen = project.sets if arguments.all_sets else (_chosen_set(project, arguments),)
     shapes = [(each, build_shape(each.channel)) for each in chosen]
     if not arguments.force:
@@ -139,7 +155,13 @@ def masks_verb(arguments: argparse.Namespace) -> Answer:
     left_out = [each.name for each, shape in shapes if shape.outline is None]
     if not usable:
         raise DesignRefusedError(f"nothing to write: no outline for {', '.join(map(shown, left_out))}; see 'check'")
-    report = write_mask_set(usable, folder=arguments.out, chip_name=project.name, options=MaskOptions())
+    report = write_mask_set(usable, folder=arguments.out, chip_name=project.name)
+    return _masks_answer(report, project, arguments, left_out=left_out)
+
+
+def _masks_answer(
+    report: MaskSetReport, project: ChipProject, arguments: argparse.Namespace, *, left_out: list[str]
+) -> Answer:
     if arguments.json:
         return Answer(text=as_json({**report.as_dict(), "left_out": left_out}))
     return Answer(text=masks_text(report, title=project.name, left_out=left_out))
@@ -181,6 +203,25 @@ def _flows_ul_min(arguments: argparse.Namespace, project: ChipProject) -> list[f
     return [float(field.checked(word.strip())) for word in arguments.flow_ul_min.split(",")]
 
 
+def _made(project: ChipProject, chosen: ParameterSet) -> tuple[ChannelParameters, list[str]]:
+    """Return what the process makes of a set, and what is to be said when that is not what is wanted."""
+    from core.fabrication.making import making_of
+    from core.geometry.shape import build_shape
+
+    _refuse_errors(chosen, build_shape(chosen.channel), "cure it first")
+    making = making_of(chosen.channel, project.process)
+    if making.flow == chosen.channel:
+        return chosen.channel, [finding.message for finding in making.findings]
+    _refuse_errors(
+        chosen, build_shape(making.flow), f"that is what '{project.process.kind}' makes of it; cure it first"
+    )
+    return making.flow, list(making.notes)
+
+
+def _with_notes(point: dict[str, object], notes: list[str]) -> dict[str, object]:
+    return {**point, "notes": [*notes, *point["notes"]]}  # type: ignore[misc]
+
+
 def _refuse_errors(chosen: ParameterSet, shape: ChannelShape, way_out: str) -> None:
     if errors := _errors_in(shape.findings):
         more = f" (and {len(errors) - 1} more, see 'check')" if len(errors) > 1 else ""
@@ -194,7 +235,7 @@ def _way_out(shape: ChannelShape, *, has_others: bool) -> str:
     return "cure it, or add --force to leave it out" if has_others else "cure it first"
 
 
-def _errors_in(findings: Sequence[Finding]) -> list[Finding]:
+def _errors_in(findings: Iterable[Finding]) -> list[Finding]:
     return [finding for finding in findings if finding.severity is Severity.ERROR]
 
 

@@ -7,6 +7,7 @@
     ├── GeometryError      a shape cannot be built from values that are fine one by one
     ├── SolveError         the flow solve cannot give an answer
     ├── ExportError        mask files cannot be written, or do not read back as written
+    │   └── DesignRefusedError   the design has findings that forbid what was asked
     └── ProjectFileError   a chip project cannot be read or saved
 
 Anything else that escapes from ``core`` is a defect of the program, not of the input.
@@ -65,6 +66,10 @@ class SolveError(CoreError):
 
 class ExportError(CoreError):
     """Mask files cannot be written, or do not read back as written."""
+
+
+class DesignRefusedError(ExportError):
+    """The design has findings that forbid what was asked."""
 
 
 class ProjectFileError(CoreError):

@@ -33,6 +33,8 @@ class Finding:
         Place on the drawing [um].
     cure : tuple of (str, value) or None
         Nearest value of a field that was tried and takes the finding away, ready to be applied.
+    ends_um : tuple of four float, or None
+        Both ends (x, y, x, y) of the line along which the value was measured, on the drawing [um].
     """
 
     code: str
@@ -44,6 +46,7 @@ class Finding:
     x_um: float | None = None
     y_um: float | None = None
     cure: tuple[str, float | int | str] | None = None
+    ends_um: tuple[float, float, float, float] | None = None
 
     def as_dict(self) -> dict[str, object]:
         """Return the finding with the keys used in machine-readable output."""

@@ -1,4 +1,4 @@
-"""Every sample design: opens, has a usable shape, scores and exports as it did before.
+"""Every sample design: opens, is checked and scored as before, and is ordered as a mask set that others can read.
 
 The numbers beside this file (``sample_expectations.json``) are **regression only**: they come from
 this program and show that something moved, not that it was right. After a change that is meant to
@@ -8,19 +8,31 @@ move them: ``python -m tests.test_samples`` writes them anew.
 from __future__ import annotations
 
 import json
+from dataclasses import replace
+from datetime import date
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 import numpy as np
 import pytest
+import shapely
 
+from core.fabrication.making import making_of
+from core.fabrication.process import ProcessKind
 from core.findings import Severity
 from core.geometry.shape import build_shape
 from core.hydraulics.estimate import estimate
-from core.masks.mask_set import write_mask_set
 from core.project import read_project
+from core.project.checks import order_findings
 from core.project.files import project_bytes
+from core.project.order import order_of
+from tests.core.masks.truth import check_files, meant
+
+if TYPE_CHECKING:
+    from core.project import ChipProject
 
 FOLDER = Path(__file__).parents[1] / "sample_designs"
+DAY = date(2031, 5, 17)
 EXPECTATIONS = Path(__file__).with_name("sample_expectations.json")
 FILES = sorted(FOLDER.glob("*.sideloop"))
 RELATIVE_TOLERANCES = {
@@ -35,24 +47,30 @@ sample = pytest.mark.parametrize("file", FILES, ids=lambda file: file.stem)
 
 
 def figures(file: Path) -> dict[str, dict[str, float]]:
-    """Return the compared numbers of every set of a sample."""
+    """Return the compared numbers of what is made of every set of a sample."""
     project = read_project(file)
     flows = np.array([project.operating.flow_ul_min])
     found = {}
     for each in project.sets:
-        score = estimate(each.channel, fluid=project.operating.fluid_state(), flows_ul_min=flows).score(0).as_dict()
-        score["area_um2"] = build_shape(each.channel).outline.area_um2
+        made = making_of(each.channel, project.process).flow
+        score = estimate(made, fluid=project.operating.fluid_state(), flows_ul_min=flows).score(0).as_dict()
+        score["area_um2"] = build_shape(made).outline.area_um2
         found[each.name] = {key: score[key] for key in RELATIVE_TOLERANCES}
     return found
 
 
-def test_there_are_samples_of_one_lab_with_a_control_channel():
+def test_there_is_a_complete_chip_of_one_lab_for_every_process():
     projects = [read_project(file) for file in FILES]
-    assert len(projects) >= 4
     assert {project.lab for project in projects} == {"Fernhollow Bench Fluidics"}
+    assert {project.process.kind for project in projects if project.plan.channels} == set(map(str, ProcessKind))
     assert all(len(project.sets) >= 2 for project in projects)
-    stages = [[each.channel.stages for each in project.sets] for project in projects]
-    assert any(0 in counts and max(counts) > 0 for counts in stages)
+
+
+def test_the_samples_show_what_can_be_placed():
+    plans = [read_project(file).plan for file in FILES]
+    assert any(each.is_control for plan in plans for each in plan.channels)
+    assert any(each.rows > 1 for plan in plans for each in plan.channels)
+    assert any(plan.plate == "wafer" and len(plan.series) == 2 for plan in plans)
 
 
 @sample
@@ -69,7 +87,12 @@ def test_every_set_has_notes_and_a_usable_shape(file):
         assert each.notes
         assert shape.is_usable, each.name
         assert len(shape.outline.islands) == each.channel.stages
-        assert not [finding for finding in shape.findings if finding.severity is Severity.ERROR]
+
+
+@sample
+def test_no_process_objects(file):
+    found = order_findings(read_project(file))
+    assert [(name, each.message) for name, each in found if each.severity is Severity.ERROR] == []
 
 
 @sample
@@ -101,16 +124,54 @@ def test_the_shallow_sample_says_that_it_hardly_rectifies():
     assert any("rectification below 0.1 %" in note for note in score.notes)
 
 
+# --- orders ---------------------------------------------------------------------------------
+
+
+def drawn_areas_um2(project: ChipProject) -> tuple[float, float]:
+    """Return the least and the largest area that the channels of one chip may have on the mask [um^2].
+
+    A second way, past placing, hierarchy and files: the bare outline of each channel, and on top two whole pads
+    and, for each bend of a folded chain, a strip of a row's length.
+    """
+    plan, least, extra = project.plan, 0.0, 0.0
+    for placed in plan.channels:
+        channel = project.set_named(placed.set_name).channel
+        drawn = making_of(replace(channel, stages=0) if placed.is_control else channel, project.process).drawn
+        outline = build_shape(drawn).outline
+        least += outline.area_um2
+        extra += 2.0 * np.pi * (0.5 * plan.port_diameter_um + plan.pad_margin_um) ** 2
+        extra += (placed.rows - 1) * 0.5 * outline.area_um2
+    scale = 1.0 / (1.0 - project.process.shrink_percent / 100.0)
+    return 0.99 * least * scale**2, (least + extra) * scale**2
+
+
+def islands_in(project: ChipProject) -> int:
+    """Return the number of islands of one chip."""
+    return sum(
+        project.set_named(each.set_name).channel.stages * (not each.is_control) for each in project.plan.channels
+    )
+
+
 @sample
-def test_masks_hold_the_outlines(file, tmp_path):
+def test_the_chip_holds_its_channels(file):
     project = read_project(file)
-    shapes = [(each.name, build_shape(each.channel)) for each in project.sets]
-    report = write_mask_set(shapes, folder=tmp_path / "masks", chip_name=project.name)
-    written = sorted(each.name for each in (tmp_path / "masks").iterdir())
-    assert written == sorted(each.name for each in report.files)
-    for kind, tolerance in (("DXF R2000", 1e-6), ("GDSII", 1e-4)):  # GDSII: arcs became chords
-        areas = [each.area_um2 for each in report.files if each.format == kind]
-        assert areas == pytest.approx([shape.outline.area_um2 for _, shape in shapes], rel=tolerance)
+    project = project.with_plan(replace(project.plan, plate="single chip", series=()))
+    channels = meant(order_of(project, date=DAY).scene)["L1_CHAN"]
+    pieces = shapely.get_parts(channels)
+    assert len(pieces) == len(project.plan.channels)
+    assert sum(len(piece.interiors) for piece in pieces) == islands_in(project)
+    least, largest = drawn_areas_um2(project)
+    assert least < channels.area < largest
+
+
+@pytest.mark.slow
+@sample
+def test_the_order_is_read_back_by_others(file, tmp_path):
+    # five readers of other authors, and what the scene means, put together by shapely
+    order = order_of(read_project(file), date=DAY)
+    report = order.write(tmp_path)
+    assert sorted(each.name for each in tmp_path.iterdir()) == sorted(each.name for each in report.files)
+    assert check_files(report, order.scene, order.options) == len(order.options.formats)
 
 
 if __name__ == "__main__":

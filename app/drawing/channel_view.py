@@ -9,6 +9,8 @@ Use::
     view.fit(animated=False)                     # when another parameter set is chosen
     view.highlight_field("loop_radius_um")       # while its slider is handled; None afterwards
     view.show_shares(0.23, 0.61)                 # loop shares, forward and reverse; None hides them
+    view.show_findings(findings)                 # other findings than those of the shape
+    view.show_beside({Walls.MADE: made})         # other walls; an empty mapping hides them
 
 Signals
     ``pointer_moved(x_um, y_um)`` and ``pointer_left()`` for a read-out;
@@ -31,13 +33,16 @@ from PySide6.QtCore import QEvent, QPointF, QRectF, Qt, Signal
 from PySide6.QtGui import QPainter
 from PySide6.QtWidgets import QToolTip, QWidget
 
-from app.drawing.picture import NO_FINDING, Picture
-from app.drawing.signs import line_pen
+from app.drawing.finding_marks import NO_FINDING, looked_at_um
+from app.drawing.picture import Picture
 from app.drawing.zoom_area import ZoomArea
 
 if TYPE_CHECKING:
+    from collections.abc import Mapping
+
     from PySide6.QtGui import QHelpEvent, QKeyEvent, QPaintEvent
 
+    from app.drawing.beside import Walls
     from app.drawing.flow_overlay import FlowOverlay
     from app.look import Palette
     from core.findings import Finding
@@ -68,7 +73,9 @@ class ChannelView(ZoomArea):
         self._picture.palette = palette
         self.update()
 
-    def show_shape(self, shape: ChannelShape | None, *, last_good: ChannelShape | None = None) -> None:
+    def show_shape(
+        self, shape: ChannelShape | None, *, last_good: ChannelShape | None = None, keeps_findings: bool = False
+    ) -> None:
         """Show a shape.
 
         Parameters
@@ -77,13 +84,29 @@ class ChannelView(ZoomArea):
             What the user asked for; None empties the drawing.
         last_good : ChannelShape or None
             The latest shape that had an outline, drawn pale when ``shape`` has none.
+        keeps_findings : bool
+            True to leave those shown until others come by ``show_findings``, so that marks do not
+            flicker during a drag; otherwise the shape's own are shown.
         """
         self._picture.set_shape(shape, last_good)
-        if self._picture.finding >= len(self.findings):
-            self._select(NO_FINDING)
-        self.setAccessibleDescription(self._picture.summary())
         self.set_bounds(self._picture.bounds_um)
+        if keeps_findings:
+            self.setAccessibleDescription(self._picture.summary())
+            self.update()
+        else:
+            self.show_findings(shape.findings if shape is not None else (), chosen=self.selected_finding)
+
+    def show_findings(self, findings: tuple[Finding, ...], *, chosen: int = NO_FINDING) -> None:
+        """Mark other findings; the one chosen is stressed and the view stays where it is."""
+        self._picture.marks.findings = findings
+        self.mark_finding(chosen if chosen < len(findings) else NO_FINDING)
+        self.setAccessibleDescription(self._picture.summary())
         self.update()
+
+    def show_beside(self, shapes: Mapping[Walls, ChannelShape]) -> None:
+        """Show other walls beside the wanted ones, with a legend."""
+        if self._picture.beside.show(shapes):
+            self.update()
 
     def highlight_field(self, name: str | None) -> None:
         """Show and stress the dimension of a parameter, as while its slider is moved."""
@@ -131,32 +154,33 @@ class ChannelView(ZoomArea):
 
     @property
     def findings(self) -> tuple[Finding, ...]:
-        """Findings of the shape shown; their places in this tuple are the indices of the signals."""
-        return self._picture.findings
+        """Findings that are marked; their places in this tuple are the indices of the signals."""
+        return self._picture.marks.findings
 
     @property
     def selected_finding(self) -> int:
         """Index of the finding that is picked, -1 for none."""
-        return self._picture.finding
+        return self._picture.marks.chosen
 
     def show_finding(self, index: int) -> None:
-        """Pick a finding, show its message and bring its place into view; -1 picks none."""
+        """Pick a finding, show its message and go where its place and what was measured can be seen; -1 picks none."""
         if not NO_FINDING <= index < len(self.findings):
             return
-        self._select(index)
+        self.mark_finding(index)
         if index == NO_FINDING:
             return
-        x_um, y_um = self.findings[index].x_um, self.findings[index].y_um
-        if x_um is not None and y_um is not None and not self.is_in_view(x_um, y_um):
-            self.centre_on(x_um, y_um)
+        finding = self.findings[index]
+        if finding.x_um is not None and finding.y_um is not None:
+            self.come_near(finding.x_um, finding.y_um, length_um=looked_at_um(finding))
 
     def finding_boxes(self) -> dict[int, QRectF]:
         """Return where the marks of findings are on the screen, by index [px]."""
-        return self._picture.finding_boxes(self.camera)
+        return self._picture.marks.boxes(self.camera)
 
-    def _select(self, index: int) -> None:
-        if index != self._picture.finding:
-            self._picture.finding = index
+    def mark_finding(self, index: int) -> None:
+        """Pick a finding and show its message where the view is; -1 picks none."""
+        if index != self._picture.marks.chosen:
+            self._picture.marks.chosen = index
             self.finding_selected.emit(index)
             self.update()
 
@@ -168,7 +192,7 @@ class ChannelView(ZoomArea):
 
     def clicked_at(self, point_px: QPointF) -> None:
         """Pick the finding whose mark was clicked, or none."""
-        self._select(self._finding_at(point_px))
+        self.mark_finding(self._finding_at(point_px))
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         """Step through findings; the rest is zoom and pan."""
@@ -177,7 +201,7 @@ class ChannelView(ZoomArea):
             start = max(self.selected_finding, -1 if step > 0 else 0)
             self.show_finding((start + step) % len(self.findings))
         elif event.key() == Qt.Key.Key_Escape and self.selected_finding != NO_FINDING:
-            self._select(NO_FINDING)
+            self.mark_finding(NO_FINDING)
         else:
             super().keyPressEvent(event)
 
@@ -187,7 +211,7 @@ class ChannelView(ZoomArea):
             return super().event(event)
         help_event: QHelpEvent = event  # type: ignore[assignment]  # by its type
         index = self._finding_at(QPointF(help_event.pos()))
-        text = "" if index == NO_FINDING else self._picture.message(index)  # no text hides the tip
+        text = "" if index == NO_FINDING else self._picture.marks.message(index)  # no text hides the tip
         QToolTip.showText(help_event.globalPos(), text, self)
         return True
 
@@ -197,7 +221,4 @@ class ChannelView(ZoomArea):
         with QPainter(self) as painter:
             painter.setRenderHint(QPainter.RenderHint.Antialiasing)
             self._picture.paint(painter, area, self.camera)
-            if self.hasFocus():
-                painter.setPen(line_pen(self._picture.palette.accent, width_px=2.0))
-                painter.setBrush(Qt.BrushStyle.NoBrush)
-                painter.drawRect(area.adjusted(1, 1, -1, -1))
+            self.paint_focus(painter, self._picture.palette.accent)

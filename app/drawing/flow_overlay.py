@@ -11,11 +11,11 @@ from math import atan2
 from typing import TYPE_CHECKING
 
 import numpy as np
-from PySide6.QtCore import QObject, QPointF, QRectF, Qt, QTimer, Signal
+from PySide6.QtCore import QObject, QRectF, QTimer, Signal
 from PySide6.QtGui import QColor, QImage, QPainterPath, QPixmap
 
-from app.drawing.signs import draw_arrow_head, line_pen, text_size, veil
-from app.look import SPACING, font
+from app.drawing.flow_legend import band_colours, draw_flow_legend
+from app.drawing.signs import draw_arrow_head, line_pen
 from app.shown_values import ShownUnits, number_text
 from core.flow.field_map import FieldMap, round_levels
 from core.units import unit_symbol
@@ -30,16 +30,8 @@ if TYPE_CHECKING:
     from core.flow.result import FlowField
 
 _REST_MS = 90  # after the last move, before the picture is made anew
-_BAR_PX = 9.0
-_BAND_PX = 38.0
-_ROW_PX = 17.0
 _ARROW_PX = 7.0
 _ARROW_EVERY = 220  # points of a streamline from one arrow head to the next
-# from little to much, by falling (light) or rising (dark) lightness, so that it reads without colour
-_RAMPS = {
-    "light": ("#eef4ee", "#a9d3cf", "#4f9ba6", "#2c5f8f", "#3b2a6b", "#1d0f33"),
-    "dark": ("#101a20", "#1d4a57", "#2f7f86", "#5fb3a1", "#b3d68c", "#f7f0b2"),
-}
 
 
 class Shown(StrEnum):
@@ -239,44 +231,12 @@ class FlowOverlay(QObject):
 
     def paint_legend(self, painter: QPainter, area: QRectF, palette: Palette) -> QRectF:
         """Paint what the colours mean, along the upper rim; returns the box it takes."""
-        title, remark = self._title(), self._remark and f"   {self._remark}"
         texts = [] if self._shown is Shown.STREAMLINES else self._level_texts()
-        bar_width = min(_BAND_PX * max(len(texts) - 1, 0), area.width() - 6.0 * SPACING.medium)
-        ends = text_size("00000").width()
-        width = max(text_size(title + remark).width(), bar_width + ends) + 2.0 * SPACING.small
-        height = _ROW_PX * (2 if texts else 1) + (_BAR_PX if texts else 0.0) + 2.0 * SPACING.hair
-        box = QRectF(area.left() + SPACING.medium, area.top() + SPACING.small, width, height)
-        painter.setPen(Qt.PenStyle.NoPen)
-        painter.setBrush(veil(palette))
-        painter.drawRoundedRect(box, SPACING.corner, SPACING.corner)
-        painter.setFont(font("small"))
-        line = QRectF(box.left() + SPACING.small, box.top() + SPACING.hair, width, _ROW_PX)
-        for text, colour in ((title, palette.ink), (remark, palette.warning)):
-            painter.setPen(QColor(colour))
-            painter.drawText(line, Qt.AlignmentFlag.AlignVCenter, text)
-            line.setLeft(line.left() + text_size(text).width())
-        if texts:
-            self._paint_bar(painter, QPointF(box.left() + ends / 2.0, line.bottom()), bar_width, texts, palette)
-        return box
+        return draw_flow_legend(painter, area, palette, title=self._title(), remark=self._remark, texts=texts)
 
     def _level_texts(self) -> list[str]:
         self._nodal()
         return [number_text(float(level), 3) for level in self._levels]
-
-    def _paint_bar(
-        self, painter: QPainter, top_left: QPointF, width: float, texts: Sequence[str], palette: Palette
-    ) -> None:
-        """Paint the bands from left to right, each limit with its value below."""
-        colours = band_colours(palette, len(texts) - 1)
-        band = width / max(len(texts) - 1, 1)
-        for number, text in enumerate(texts):
-            x = top_left.x() + number * band
-            if number < len(texts) - 1:
-                painter.fillRect(QRectF(x, top_left.y(), band, _BAR_PX), QColor(colours[number]))
-            painter.setPen(line_pen(palette.ink))
-            painter.drawLine(QPointF(x, top_left.y()), QPointF(x, top_left.y() + _BAR_PX + 3.0))
-            place = QRectF(x - 50.0, top_left.y() + _BAR_PX + 2.0, 100.0, _ROW_PX)
-            painter.drawText(place, Qt.AlignmentFlag.AlignCenter, text)
 
     def _title(self) -> str:
         if self._shown is Shown.STREAMLINES:
@@ -287,19 +247,6 @@ class FlowOverlay(QObject):
 def height_text(height_share: float) -> str:
     """Return a height over the floor in words."""
     return "at mid-depth" if height_share == 0.5 else f"at {100 * height_share:.0f} % of the depth"
-
-
-def band_colours(palette: Palette, count: int) -> list[str]:
-    """Return so many colours from little to much, evenly along the ramp of a palette."""
-    ramp = [QColor(name) for name in _RAMPS["dark" if palette.is_dark else "light"]]
-    places = np.linspace(0.0, len(ramp) - 1.0, max(count, 1))
-    made = []
-    for place in places.tolist():
-        first = min(int(place), len(ramp) - 2)
-        share = place - first
-        pair = zip(ramp[first].getRgbF()[:3], ramp[first + 1].getRgbF()[:3], strict=True)
-        made.append(QColor.fromRgbF(*((1.0 - share) * a + share * b for a, b in pair)).name())
-    return made
 
 
 def _path_of(lines: Sequence[np.ndarray]) -> QPainterPath:

@@ -83,6 +83,11 @@ def draw_channel(
     else:
         painter.fillPath(path, QColor(palette.fluid))
     painter.restore()
+    draw_walls(painter, path, camera, palette)
+
+
+def draw_walls(painter: QPainter, path: QPainterPath, camera: Camera, palette: Palette) -> None:
+    """Draw the walls of a valid channel."""
     for dx, dy in _EDGE_PASSES_PX:
         painter.save()
         painter.translate(dx, dy)

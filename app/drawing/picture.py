@@ -9,24 +9,22 @@ from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter, QPainterPath
 
 from app.drawing import layers, signs
+from app.drawing.beside import Beside
 from app.drawing.dimensions import Dimension, dimensions_of, length_text, value_text
+from app.drawing.finding_marks import NO_FINDING, FindingMarks
 from app.drawing.labels import draw_dimensions, free_box, place_dimensions
 from app.drawing.paths import merged, ring_paths, strokes_path
 from app.look import LIGHT, SPACING, Palette, font
-from app.shown_values import screen_words
-from core.findings import Severity
 from core.parameters import CHANNEL_FIELDS
 
 if TYPE_CHECKING:
     from app.drawing.camera import Camera
     from app.drawing.flow_overlay import FlowOverlay
     from app.drawing.labels import Line
-    from core.findings import Finding
     from core.geometry.shape import ChannelShape
 
     Bounds = tuple[float, float, float, float]
 
-NO_FINDING = -1
 _INSET_PX = 6.0  # labels keep this far from the rim
 
 
@@ -39,8 +37,10 @@ class Picture:
         Colours.
     field : str or None
         Parameter whose dimension is stressed.
-    finding : int
-        Index of the finding that is picked, ``NO_FINDING`` for none.
+    marks : FindingMarks
+        The findings, and which of them is picked.
+    beside : Beside
+        The walls on the mask and those that come out.
     shares : tuple of two float, or None
         Loop shares forward and reverse, 0 to 1, to be written beside loop and bypass.
     has_centrelines, has_dimensions : bool
@@ -54,7 +54,8 @@ class Picture:
     def __init__(self) -> None:
         self.palette: Palette = LIGHT
         self.field: str | None = None
-        self.finding = NO_FINDING
+        self.marks = FindingMarks()
+        self.beside = Beside()
         self.shares: tuple[float, float] | None = None
         self.has_centrelines = False
         self.has_dimensions = True
@@ -81,11 +82,6 @@ class Picture:
         self._unit, self._dimensions = unit, None
 
     @property
-    def findings(self) -> tuple[Finding, ...]:
-        """Findings of the shape."""
-        return self._shape.findings if self._shape else ()
-
-    @property
     def bounds_um(self) -> Bounds | None:
         """Extent of all that is drawn: the area, and centre lines that have none [um]."""
         if self._shape is None:
@@ -107,26 +103,8 @@ class Picture:
         if self._shape.outline is not None:
             x_min, y_min, x_max, y_max = self._shape.outline.bounds_um
             words.append(f"{length_text(x_max - x_min, self._unit)} by {length_text(y_max - y_min, self._unit)}")
-        words += [self.message(index) for index in range(len(self.findings))]
+        words += [self.marks.message(index) for index in range(len(self.marks.findings))]
         return "; ".join(words) + "."
-
-    def message(self, index: int) -> str:
-        """Return what a finding says, in the words of the screen."""
-        text = screen_words(self.findings[index].message).rstrip(".")
-        return text[:1].upper() + text[1:]
-
-    def finding_boxes(self, camera: Camera) -> dict[int, QRectF]:
-        """Return where the marks of findings are, by index [px]."""
-        boxes: dict[int, QRectF] = {}
-        for index, finding in enumerate(self.findings):
-            if finding.x_um is None or finding.y_um is None:
-                continue
-            box = QRectF(0.0, 0.0, signs.MARK_PX, signs.MARK_PX)
-            box.moveCenter(camera.to_px((finding.x_um, finding.y_um)))
-            while any(box.intersects(other) for other in boxes.values()):
-                box.translate(signs.MARK_PX + 4.0, 0.0)
-            boxes[index] = box
-        return boxes
 
     def paint(self, painter: QPainter, area: QRectF, camera: Camera) -> None:
         """Paint all layers, from the paper up.
@@ -160,6 +138,9 @@ class Picture:
             layers.draw_channel(painter, self._path, self._rings, camera, self.palette)
             if self.overlay is not None:
                 self.overlay.paint(painter, area, camera, self.palette, at_once=self.is_kept)
+            if self.beside.is_shown:
+                self.beside.paint(painter, camera, self.palette)
+                layers.draw_walls(painter, self._path, camera, self.palette)  # whatever is equal shows one line
         else:
             layers.draw_last_good(painter, self._path, camera, self.palette)
         if self.has_centrelines or not shape.is_usable:
@@ -167,9 +148,9 @@ class Picture:
 
     def _paint_signs(self, painter: QPainter, area: QRectF, camera: Camera, shape: ChannelShape) -> None:
         """Paint what is written on the drawing; ``taken`` keeps the texts off one another."""
-        marks = self.finding_boxes(camera)
+        marks = self.marks.boxes(camera)
         taken = list(marks.values())
-        told = self._told_finding()
+        told = self.marks.told
         banner = signs.banner_box(self._banner_text(told), area) if told != NO_FINDING else QRectF()
         taken.append(banner)
         self._paint_scale(painter, area, camera, shape, taken)
@@ -177,25 +158,19 @@ class Picture:
             if self.overlay is not None and self.overlay.is_shown:
                 taken.append(self.overlay.paint_legend(painter, area, self.palette))
             self._paint_directions(painter, area, camera, shape, taken)
+            if self.beside.is_shown:
+                clear = [*taken, *self.marks.rings(camera)]
+                taken.append(self.beside.paint_legend(painter, area, self.palette, taken=clear))
             inner = area.adjusted(_INSET_PX, _INSET_PX, -_INSET_PX, -_INSET_PX)
             self._paint_stage_signs(painter, inner, camera, shape, taken)
-        for index, box in marks.items():
-            severity, is_picked = self.findings[index].severity, index == self.finding
-            signs.draw_mark(painter, box, index + 1, severity, self.palette, is_selected=is_picked)
+        self.marks.paint(painter, marks, camera, self.palette, self._unit)
         if told != NO_FINDING:
-            severity = self.findings[told].severity
+            severity = self.marks.findings[told].severity
             text = self._banner_text(told)
             signs.draw_banner(painter, banner, text, number=told + 1, severity=severity, palette=self.palette)
 
-    def _told_finding(self) -> int:
-        """Return which finding is told at length: the one picked, or the first that spoils the shape."""
-        if self.finding != NO_FINDING:
-            return self.finding
-        errors = (index for index, finding in enumerate(self.findings) if finding.severity is Severity.ERROR)
-        return next(errors, NO_FINDING)
-
     def _banner_text(self, index: int) -> str:
-        text = f"{self.message(index)}."
+        text = f"{self.marks.message(index)}."
         if self._last_good is None or self._shape is None or self._shape.is_usable:
             return text
         return f"{text} Hatched: the last shape that worked. Dash-dotted: what was asked for."
@@ -217,7 +192,7 @@ class Picture:
             for end, is_forward in ends
         ]
         taken += [box for box in boxes if box is not None]
-        if None in boxes and self._told_finding() == NO_FINDING:
+        if None in boxes and self.marks.told == NO_FINDING:
             corner = area.topLeft() + QPointF(SPACING.medium, SPACING.medium)
             taken.append(layers.draw_direction_key(painter, corner, self.palette))
 

@@ -8,9 +8,10 @@ from PySide6.QtCore import QEasingCurve, QEvent, QPointF, QRectF, Qt, QVariantAn
 from PySide6.QtWidgets import QPinchGesture, QSizePolicy, QStyle, QWidget
 
 from app.drawing.camera import Camera
+from app.drawing.signs import line_pen
 
 if TYPE_CHECKING:
-    from PySide6.QtGui import QKeyEvent, QMouseEvent, QNativeGestureEvent, QResizeEvent, QWheelEvent
+    from PySide6.QtGui import QKeyEvent, QMouseEvent, QNativeGestureEvent, QPainter, QResizeEvent, QWheelEvent
     from PySide6.QtWidgets import QGestureEvent
 
     Bounds = tuple[float, float, float, float]
@@ -20,6 +21,8 @@ _ZOOM_PER_KEY = 1.4
 _PAN_PER_KEY_PX = 60.0
 _ANIMATION_MS = 160
 _CLICK_PX = 4.0
+_SEEN_PX = 70.0  # as long as a length should be on the screen to be looked at
+_NEAR_ENOUGH = 2.0  # it may be shorter by this
 # room kept around a fitted drawing for arrows, dimensions and the scale bar: left, top, right, bottom
 MARGINS_PX = (88.0, 58.0, 88.0, 84.0)
 
@@ -74,6 +77,11 @@ class ZoomArea(QWidget):
         """True until the user chooses a view; true again after a fit."""
         return self._is_following
 
+    @property
+    def is_gliding(self) -> bool:
+        """True while the view is on its way to where it was sent."""
+        return self._camera != self._goal
+
     def set_animated(self, is_animated: bool) -> None:
         """Let zoom and fit glide (the default, unless the system asks for less motion), or jump."""
         self._is_animated = is_animated
@@ -93,6 +101,11 @@ class ZoomArea(QWidget):
         self._is_following = True
         if self._bounds_um is not None:
             self._go_to(Camera.fitting(self._bounds_um, self._fit_area()), animated=animated)
+
+    def show_part(self, bounds_um: Bounds) -> None:
+        """Show a part of the drawing as large as it fits."""
+        self._is_following = False
+        self._go_to(Camera.fitting(bounds_um, self._fit_area()), animated=True)
 
     def zoom_in(self) -> None:
         """Come closer to the middle of the view."""
@@ -116,10 +129,15 @@ class ZoomArea(QWidget):
         """Whether a place is shown, once the view has come to rest."""
         return QRectF(self.rect()).contains(self._goal.to_px((x_um, y_um)))
 
-    def centre_on(self, x_um: float, y_um: float) -> None:
-        """Bring a place to the middle of the view."""
-        off = QRectF(self.rect()).center() - self._goal.to_px((x_um, y_um))
-        self.pan(off.x(), off.y(), animated=True)
+    def come_near(self, x_um: float, y_um: float, *, length_um: float | None = None) -> None:
+        """Bring a place into view, and close enough to see a length there; a view that shows both stays."""
+        middle = QRectF(self.rect()).center()
+        factor = 1.0 if not length_um else max(1.0, _SEEN_PX * self._goal.um_per_px / length_um)
+        if self.is_in_view(x_um, y_um) and factor < _NEAR_ENOUGH:
+            return
+        off = middle - self._goal.to_px((x_um, y_um))
+        self._is_following = False
+        self._go_to(self._goal.moved(off.x(), off.y()).zoomed(factor, middle), animated=True)
 
     def _fit_area(self) -> QRectF:
         left, top, right, bottom = MARGINS_PX
@@ -150,6 +168,13 @@ class ZoomArea(QWidget):
         self._camera = camera
         self.view_changed.emit()
         self.update()
+
+    def paint_focus(self, painter: QPainter, colour: str) -> None:
+        """Paint a frame while the keys go here."""
+        if self.hasFocus():
+            painter.setPen(line_pen(colour, width_px=2.0))
+            painter.setBrush(Qt.BrushStyle.NoBrush)
+            painter.drawRect(QRectF(self.rect()).adjusted(1, 1, -1, -1))
 
     def clicked_at(self, point_px: QPointF) -> None:
         """Take a click that was no drag."""

@@ -5,6 +5,9 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from core.fabrication.process import ProcessKind
+from core.fabrication.shipped import cautions_of
+
 if TYPE_CHECKING:
     from collections.abc import Callable
 
@@ -82,35 +85,6 @@ CAUTIONS: tuple[Caution, ...] = (
         "chip and tubing withstand it.",
         applies=lambda operating, _assessment: operating.fluid == "own",
     ),
-    Caution(
-        title="Laser cutting",
-        text="Never cut PVC, vinyl or other chlorinated plastics: the fumes attack lungs, optics and the machine. "
-        "Keep away from fluoropolymers, ABS and polycarbonate too. Extract and filter the fumes of acrylic, and "
-        "never leave a running laser alone.",
-    ),
-    Caution(
-        title="Hydrofluoric acid",
-        text="Only for trained people in a laboratory equipped for it, with face shield, suitable gloves and apron, "
-        "calcium gluconate at hand, and never alone. A burn may not hurt at first and still be dangerous.",
-    ),
-    Caution(
-        title="Photoresist and developer",
-        text="Epoxy resists and their developers are flammable, irritate, and can make the skin allergic: fume hood, "
-        "gloves, no sources of ignition, collect the waste. Protect eyes and skin from ultraviolet lamps.",
-    ),
-    Caution(
-        title="Plasma and corona treatment",
-        text="They make ozone and work at high voltage. Keep solvents away from them and ventilate.",
-    ),
-    Caution(
-        title="Solvents for bonding",
-        text="Chloroform, dichloromethane and acetone harm health, and acetone burns easily: ventilate, wear "
-        "suitable gloves, keep sparks away.",
-    ),
-    Caution(
-        title="Milling",
-        text="Chips, dust and broken small tools fly: wear eye protection and extract the dust.",
-    ),
 )
 
 
@@ -120,6 +94,10 @@ def applying(operating: OperatingPoint, assessment: Assessment) -> tuple[Caution
 
 
 def cautions_page() -> str:
-    """Return the page of all cautions as simple rich text."""
-    parts = "".join(f"<h4>{caution.title}</h4><p>{caution.text}</p>" for caution in CAUTIONS)
-    return f"<h3>Cautions</h3><p>{LEAD_TEXT}</p>{parts}"
+    """Return the page of all cautions as simple rich text: those of use, then those of every way of making."""
+    of_use = "".join(f"<h4>{caution.title}</h4><p>{caution.text}</p>" for caution in CAUTIONS)
+    of_making = "".join(
+        f"<h4>{str(kind).capitalize()}</h4><ul>{''.join(f'<li>{text}</li>' for text in cautions_of(kind))}</ul>"
+        for kind in ProcessKind
+    )
+    return f"<h3>Cautions</h3><p>{LEAD_TEXT}</p>{of_use}<h3>In making</h3>{of_making}"

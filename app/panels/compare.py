@@ -18,7 +18,7 @@ from PySide6.QtWidgets import (
 from app.assessment import score_of, shape_of
 from app.drawing.thumbnail import set_thumbnail
 from app.look import SPACING, font
-from app.shown_values import ShownUnits, diodicity_text, number_text, value_text
+from app.shown_values import DIFFERENT, ShownUnits, diodicity_text, number_text, value_text
 from core.parameters import CHANNEL_FIELDS
 
 if TYPE_CHECKING:
@@ -32,7 +32,6 @@ if TYPE_CHECKING:
     from core.hydraulics.estimate import Score
     from core.project import ParameterSet
 
-DIFFERENT = "\N{NOT EQUAL TO}"
 _PICTURE = QSize(190, 70)
 _NOTHING = "\N{EM DASH}"
 
@@ -142,7 +141,8 @@ class ComparePanel(QWidget):
 
     def _score_rows(self, sets: tuple[ParameterSet, ...]) -> list[tuple[str, list[str], bool]]:
         units = ShownUnits.of(self._settings)
-        scores = [score_of(each.channel, self._document.operating) for each in sets]
+        process, operating = self._document.process, self._document.operating
+        scores = [score_of(each.channel, process, operating) for each in sets]
         return [
             (title, [_NOTHING if score is None else text(score, units) for score in scores], False)
             for title, text in _SCORE_ROWS

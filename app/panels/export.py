@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import json
 import time
+from datetime import date
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -18,26 +19,23 @@ from PySide6.QtWidgets import (
     QVBoxLayout,
 )
 
-from app.assessment import shape_of
-from app.background import BackgroundJob, Ending, Reporter, sentence_of
+from app.background import BackgroundJob, Ending, sentence_of
 from app.look import SPACING, font, set_role
 from app.panels.export_choices import ExportChoices
 from app.panels.export_pages import proof_page, summary_page
+from app.panels.export_work import Prospect, prospect_of, written
 from app.progress_line import time_left_text
 from app.shown_values import screen_words
 from core.errors import CoreError
-from core.masks.mask_set import mask_summary, write_mask_set
-from core.masks.report import MaskSetReport, MaskSummary
+from core.masks.report import MaskSetReport
 
 if TYPE_CHECKING:
     from PySide6.QtWidgets import QWidget
 
     from app.document import Document
     from app.panels.ask import Ask
+    from app.panels.export_work import ExportTask
     from app.settings import Settings
-    from core.geometry.shape import ChannelShape
-    from core.masks.options import MaskOptions
-    from core.project import ParameterSet
 
 _REMEMBERED = "masks"
 
@@ -50,7 +48,7 @@ class ExportDialog(QDialog):
     parent : QWidget
         Window above which it opens.
     document : Document
-        Whose sets are written, as they stand when the dialog opens.
+        Whose chip is written, as it stands when the dialog opens.
     settings : Settings
         Remembers the choices.
     ask : Ask
@@ -60,9 +58,12 @@ class ExportDialog(QDialog):
     -------
     summary_shown()
         What would be written, or why it cannot be, is on the screen.
+    process_requested()
+        The dialog has closed because the user wants to change the process.
     """
 
     summary_shown = Signal()
+    process_requested = Signal()
 
     def __init__(self, parent: QWidget, *, document: Document, settings: Settings, ask: Ask) -> None:
         super().__init__(parent)
@@ -73,16 +74,17 @@ class ExportDialog(QDialog):
         self._job: BackgroundJob | None = None
         self._summary_job: BackgroundJob | None = None
         self._is_summary_stale = False
+        self._prospect = Prospect()
         self._began_s = 0.0
         self.report: MaskSetReport | None = None
-        self.choices = ExportChoices(
-            self._project.sets, in_hand=document.index, folder=_first_folder(document), ask=ask
-        )
+        self.choices = ExportChoices(self._project, in_hand=document.index, folder=_first_folder(document), ask=ask)
         self.choices.take_remembered(_remembered(settings))
         self._summarise = QTimer(self, singleShot=True, interval=0)
         self._summarise.timeout.connect(self.show_summary)
         self._build()
         self.choices.changed.connect(self._on_choices_changed)
+        self.choices.forced_changed.connect(self._show_whether_ready)
+        self.choices.process_requested.connect(self._go_to_process)
         self.show_summary()
 
     def _build(self) -> None:
@@ -129,16 +131,19 @@ class ExportDialog(QDialog):
         """
         if self._job is not None or self._summary_job is not None:
             return
+        self.choices.show_errors(0)
         self.write_button.setEnabled(False)
         self.heading.setText("What will be written")
         try:
-            named, options, chip_name = self._named_shapes(), self.choices.options(), self._project.name
+            task = self.choices.task()
         except CoreError as error:
             self._show_obstacle(error)
             return
         self._say("Looking at what will be written\N{HORIZONTAL ELLIPSIS}", "soft")
         self._is_summary_stale = False
-        self._summary_job = BackgroundJob(lambda _report: mask_summary(named, options, chip_name=chip_name), self)
+        self._summary_job = BackgroundJob(
+            lambda report: (task, prospect_of(task, day=date.today(), report=report)), self
+        )
         self._summary_job.ended.connect(self._on_summary_job_ended)
         self._summary_job.start()
 
@@ -152,21 +157,37 @@ class ExportDialog(QDialog):
         self._summary_job = None
         if self._is_summary_stale:
             self._summarise.start()
-        elif isinstance(outcome, MaskSummary):
-            self.page.setHtml(summary_page(outcome, folder=self.choices.folder))
-            self._say("", "")
-            self.write_button.setEnabled(True)
-            self.summary_shown.emit()
+        elif isinstance(outcome, tuple):
+            self._show_prospect(*outcome)
         else:
             self._show_obstacle(outcome)
 
-    def _show_obstacle(self, error: object) -> None:
-        self.page.setHtml("")
-        self._say(screen_words(sentence_of(error)), "error")
+    def _show_prospect(self, task: ExportTask, prospect: Prospect) -> None:
+        self._prospect = prospect
+        self.page.setHtml(summary_page(prospect, task, folder=self.choices.folder))
+        self.choices.show_errors(0 if prospect.obstacle else prospect.errors)
+        self._show_whether_ready()
         self.summary_shown.emit()
 
-    def _named_shapes(self) -> list[tuple[str, ChannelShape]]:
-        return [(each.name, shape_of(each.channel)) for each in self.choices.chosen_sets()]
+    def _show_whether_ready(self) -> None:
+        """Let the user write, or say what stands in the way."""
+        found, is_forced = self._prospect, self.choices.is_forced
+        self.write_button.setEnabled(not found.obstacle and (is_forced or not found.errors))
+        if found.obstacle:
+            self._say(f"\N{BLACK DIAMOND} {screen_words(found.obstacle)}", "error")
+        elif found.errors and not is_forced:
+            findings = "A finding blocks" if found.errors == 1 else f"{found.errors} findings block"
+            self._say(f"\N{BLACK DIAMOND} {findings} the order; cure what is told above.", "error")
+        elif is_forced:
+            self._say("\N{WHITE UP-POINTING TRIANGLE} The order sheet will name what is passed over.", "warning")
+        else:
+            self._say("", "")
+
+    def _show_obstacle(self, error: object) -> None:
+        self._prospect = Prospect(obstacle=sentence_of(error))
+        self.page.setHtml("")
+        self._show_whether_ready()
+        self.summary_shown.emit()
 
     def _say(self, text: str, role: str) -> None:
         self.message.setText(text)
@@ -177,10 +198,9 @@ class ExportDialog(QDialog):
     def write(self) -> None:
         """Write the chosen masks in the background."""
         self._settings.set_choices(_REMEMBERED, json.dumps(self.choices.to_remember()))
-        options, folder, sets = self.choices.options(), self.choices.folder, self.choices.chosen_sets()
-        chip_name = self._project.name
+        task, folder, is_forced = self.choices.task(), self.choices.folder, self.choices.is_forced
         self._job = BackgroundJob(
-            lambda report: _written(report, sets, folder=folder, chip_name=chip_name, options=options), self
+            lambda report: written(task, folder=folder, day=date.today(), is_forced=is_forced, report=report), self
         )
         self._job.progressed.connect(self._on_job_progressed)
         self._job.ended.connect(self._on_job_ended)
@@ -208,13 +228,18 @@ class ExportDialog(QDialog):
         if isinstance(outcome, MaskSetReport):
             self.report = outcome
             self.heading.setText("Written, read back and compared")
-            self.page.setHtml(proof_page(self.report))
+            forced = self._prospect.errors if self.choices.is_forced else 0
+            self.page.setHtml(proof_page(self.report, self._project.process, forced=forced))
             self._say(f"\N{CHECK MARK} All files are in {self.report.folder}.", "good")
             self.close_button.setFocus()
         elif ending is Ending.CANCELLED:
             self._say("Stopped; no file was written.", "warning")
         else:
             self._say(f"\N{BLACK DIAMOND} {sentence_of(outcome)}", "error")
+
+    def _go_to_process(self) -> None:
+        self.reject()
+        self.process_requested.emit()
 
     def reject(self) -> None:
         """Close; while files are being written, ask the work to stop instead."""
@@ -225,6 +250,7 @@ class ExportDialog(QDialog):
         self._summarise.stop()
         if self._summary_job is not None:
             self._summary_job.ended.disconnect(self._on_summary_job_ended)
+            self._summary_job.cancel()
             self._summary_job.wait()
         super().reject()
 
@@ -234,18 +260,6 @@ def _clear_away(job: BackgroundJob | None) -> None:
     if job is not None:
         job.wait()
         job.deleteLater()
-
-
-def _written(
-    report: Reporter, sets: list[ParameterSet], *, folder: Path, chip_name: str, options: MaskOptions
-) -> MaskSetReport:
-    steps = len(sets)
-    named = []
-    for step, each in enumerate(sets):
-        report(step, steps, f"Drawing {each.name}")
-        named.append((each.name, shape_of(each.channel)))
-    # All or nothing: the files are put in place together at the end, or none is.
-    return write_mask_set(named, folder=folder, chip_name=chip_name, options=options, report=report)
 
 
 def _first_folder(document: Document) -> Path:

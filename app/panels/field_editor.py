@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QEvent, QObject, QSize, Qt, Signal
@@ -10,16 +11,18 @@ from PySide6.QtWidgets import QComboBox, QGridLayout, QLabel, QLineEdit, QToolBu
 
 from app.look import SPACING, font, set_role
 from app.panels.field_slider import FieldSlider
-from app.shown_values import ShownUnits, entry_text, value_text, word_for
+from app.panels.still_box import StillComboBox
+from app.shown_values import DIFFERENT, ShownUnits, entry_text, screen_words, value_text, word_for
 from core.errors import DesignValueError
 from core.units import unit_symbol
 
 if TYPE_CHECKING:
     from collections.abc import Callable
 
-    from PySide6.QtGui import QWheelEvent
-
     from core.fields import Field, Value
+
+_LONGEST_NAME = 18  # letters of a name that stands in one line beside its entry
+_LONGEST_BESIDE = 22  # letters of a choice that still fits beside the field's name
 
 
 class FieldEditor(QWidget):
@@ -48,10 +51,12 @@ class FieldEditor(QWidget):
         self.field = field
         self.value: Value = field.default
         self.units = ShownUnits()
+        self._source = ""
         self._new_gesture = new_gesture
         self._gesture: int | None = None
         self.setObjectName(field.name)
         self.name_label = QLabel(field.label)
+        self.name_label.setWordWrap(len(field.label) > _LONGEST_NAME)
         self.reset_button = self._made_reset_button()
         self.problem_label = QLabel()
         self.problem_label.setWordWrap(True)
@@ -81,6 +86,18 @@ class FieldEditor(QWidget):
         button.hide()
         return button
 
+    def set_default(self, value: Value, *, source: str) -> None:
+        """Go back to another value than the field's own from now on, and mark whatever differs from it.
+
+        Parameters
+        ----------
+        value : float, int or str
+            Where the way back leads.
+        source : str
+            Where that value comes from, for the tool tip.
+        """
+        self.field, self._source = replace(self.field, default=value), source
+
     def watch(self, *widgets: QWidget) -> None:
         """Tell when one of the row's own widgets has the focus."""
         for widget in widgets:
@@ -91,10 +108,16 @@ class FieldEditor(QWidget):
         if value != self.value:
             self.show_problem("")
         self.value, self.units = value, units
-        self.reset_button.setVisible(value != self.field.default)
+        is_changed = value != self.field.default
+        self.reset_button.setVisible(is_changed)
         default = value_text(self.field, self.field.default, units)
         self.reset_button.setToolTip(f"Back to {default}")
-        self.setToolTip(f"{self.field.help}\nAllowed: {self.limit_text()}. Default: {default}.\n{self.key_hint()}")
+        source = f" ({self._source})" if self._source else ""
+        self.setToolTip(
+            f"{self.field.help}\nAllowed: {self.limit_text()}. Default: {default}{source}.\n{self.key_hint()}"
+        )
+        if self._source:
+            self.name_label.setText(f"{DIFFERENT} {self.field.label}" if is_changed else self.field.label)
         self.show_in_widgets()
 
     def show_problem(self, text: str) -> None:
@@ -111,10 +134,10 @@ class FieldEditor(QWidget):
     def refuse(self, error: DesignValueError) -> None:
         """Tell why a value cannot be used and show the old one again."""
         kept = value_text(self.field, self.value, self.units)
-        story = str(error).removeprefix(error.field)
+        story = screen_words(str(error).removeprefix(error.field))
         is_own = error.field == self.field.name
         self.show_in_widgets()
-        self.show_problem(f"{self.field.label if is_own else error.field}{story}. {kept} stays.")
+        self.show_problem(f"{self.field.label if is_own else screen_words(error.field)}{story}. {kept} stays.")
 
     def request(self, value: Value, gesture: int | None = None) -> None:
         """Ask for a value in stored units."""
@@ -174,6 +197,11 @@ class NumberEditor(FieldEditor):
         self.slider.slid.connect(self._on_slid)
         self.slider.stepped.connect(self._on_stepped)
         self.slider.end_requested.connect(lambda is_top: self.request(field.maximum if is_top else field.minimum))
+
+    def set_default(self, value: Value, *, source: str) -> None:
+        """Move the notch of the slider along."""
+        super().set_default(value, source=source)
+        self.slider.show_default(float(value))
 
     def show_in_widgets(self) -> None:
         """Show the value in entry and slider."""
@@ -237,12 +265,16 @@ class ChoiceEditor(FieldEditor):
 
     def __init__(self, field: Field, new_gesture: Callable[[], int]) -> None:
         super().__init__(field, new_gesture)
-        self.box = _StillComboBox()
+        self.box = StillComboBox()
         self.box.setAccessibleName(field.label)
         for choice in field.choices:
             self.box.addItem(word_for(choice), choice)
         self.name_label.setBuddy(self.box)
-        self.grid.addWidget(self.box, 0, 1, 1, 2)
+        is_long = max(len(word_for(choice)) for choice in field.choices) > _LONGEST_BESIDE
+        self.grid.addWidget(self.box, *((1, 0, 1, 4) if is_long else (0, 1, 1, 2)))
+        if is_long:  # it may be as narrow as the column
+            self.box.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon)
+            self.box.setMinimumContentsLength(_LONGEST_BESIDE)
         self.watch(self.box)
         self.box.activated.connect(lambda index: self.request(self.box.itemData(index)))
 
@@ -253,13 +285,6 @@ class ChoiceEditor(FieldEditor):
     def key_hint(self) -> str:
         """Return which keys change the value."""
         return "Arrow keys choose."
-
-
-class _StillComboBox(QComboBox):
-    """A box that leaves the wheel to the column, so that scrolling never changes a design."""
-
-    def wheelEvent(self, event: QWheelEvent) -> None:
-        event.ignore()
 
 
 def editor_for(field: Field, new_gesture: Callable[[], int]) -> FieldEditor:

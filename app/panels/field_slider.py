@@ -52,6 +52,11 @@ class FieldSlider(QSlider):
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.valueChanged.connect(lambda tick: self.slid.emit(self._scale.value(tick)))
 
+    def show_default(self, value: float) -> None:
+        """Put the notch of the default elsewhere."""
+        self._default_tick = self._scale.tick(value)
+        self.update()
+
     def show_value(self, value: float) -> None:
         """Put the handle where a value sits; a handle under the hand is left alone."""
         if not self.isSliderDown():

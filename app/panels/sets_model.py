@@ -138,5 +138,5 @@ class SetsModel(QAbstractListModel):
         return self._pictures[each.channel]
 
     def _verdict(self, each: ParameterSet) -> str:
-        score = score_of(each.channel, self._document.operating)
+        score = score_of(each.channel, self._document.process, self._document.operating)
         return "no score" if score is None else diodicity_text(score)

@@ -7,7 +7,6 @@ from typing import TYPE_CHECKING
 
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import (
-    QComboBox,
     QFrame,
     QGridLayout,
     QLabel,
@@ -17,28 +16,16 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.drawing.flow_overlay import Shown, height_text
 from app.look import SPACING, font, set_role
-from app.panels.field_slider import FieldSlider
+from app.panels.flow_picture import FlowPictureChoice
 from app.panels.verdict import FORWARD, REVERSE
 from app.shown_values import number_text, screen_words
-from core.fields import Field
 
 if TYPE_CHECKING:
     from app.shown_values import ShownUnits
     from core.project.solved import SolvedResult
 
 _NOTHING = "\N{EM DASH}"
-_HEIGHT = Field(
-    name="height_percent", label="Height over the floor", group="Flow picture", default=50.0, unit="%",
-    minimum=5.0, maximum=95.0, step=1.0, help="Height at which the flow is shown, in percent of the depth.",
-)  # fmt: skip
-_SHOWN_WORDS = {
-    Shown.NOTHING: "No flow picture",
-    Shown.SPEED: "Speed",
-    Shown.PRESSURE: "Pressure",
-    Shown.STREAMLINES: "Streamlines",
-}
 
 
 class Standing(StrEnum):
@@ -63,8 +50,6 @@ class SolvePanel(QFrame):
     -------
     solve_requested(), curve_requested(), cancel_requested()
         Solve at the operating flow, along the curve; stop.
-    view_changed()
-        Another picture is wanted: see ``shown``, ``is_forward``, ``height_share``.
     picture_requested(), numbers_requested()
         Save the drawing as a picture, the results as a table.
     """
@@ -72,7 +57,6 @@ class SolvePanel(QFrame):
     solve_requested = Signal()
     curve_requested = Signal()
     cancel_requested = Signal()
-    view_changed = Signal()
     picture_requested = Signal()
     numbers_requested = Signal()
 
@@ -98,7 +82,9 @@ class SolvePanel(QFrame):
         self.progress_label = _label("small")
         layout.addWidget(self.progress)
         layout.addWidget(self.progress_label)
-        layout.addWidget(self._built_picture())
+        self.picture = FlowPictureChoice()
+        layout.addWidget(self.picture)
+        layout.addWidget(self._built_saving())
         self.show_running(False)
         self.show_nothing()
 
@@ -141,70 +127,20 @@ class SolvePanel(QFrame):
         grid.addWidget(self.cancel_button, 0, 0, 1, 2)
         return box
 
-    def _built_picture(self) -> QWidget:
+    def _built_saving(self) -> QWidget:
         box = QWidget()
         grid = QGridLayout(box)
         grid.setContentsMargins(0, 0, 0, 0)
         grid.setSpacing(SPACING.hair)
-        self.shown_box, self.direction_box = QComboBox(), QComboBox()
-        for shown, words in _SHOWN_WORDS.items():
-            self.shown_box.addItem(words, shown)
-        self.direction_box.addItems(["Reverse", "Forward"])
-        for choice in (self.shown_box, self.direction_box):
-            choice.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon)
-            choice.setMinimumContentsLength(6)
-        self.shown_box.setAccessibleName("What the drawing shows of the flow")
-        self.direction_box.setAccessibleName("Direction of the flow shown")
-        self.height_slider = FieldSlider(_HEIGHT)
-        self._height = float(_HEIGHT.default)
-        self.height_slider.show_value(self._height)
-        self.height_label = _label("small", height_text(0.5))
         self.picture_button = _button(
             "P&icture\N{HORIZONTAL ELLIPSIS}", "Save the drawing as it is seen, PNG or SVG", self.picture_requested
         )
         self.numbers_button = _button(
             "&Numbers\N{HORIZONTAL ELLIPSIS}", "Save the solved figures, CSV", self.numbers_requested
         )
-        for place, widget in enumerate(
-            (self.shown_box, self.direction_box, self.height_slider, self.height_label, self.picture_button,
-             self.numbers_button)
-        ):  # fmt: skip
-            grid.addWidget(widget, *divmod(place, 2))
-        self.hint_label = _label("small")
-        set_role(self.hint_label, "warning")
-        grid.addWidget(self.hint_label, 3, 0, 1, 2)
-        self.shown_box.currentIndexChanged.connect(self.view_changed)
-        self.direction_box.currentIndexChanged.connect(self.view_changed)
-        self.height_slider.slid.connect(self.show_height)
-        self.height_slider.stepped.connect(lambda steps, _held: self.show_height(self._height + steps * _HEIGHT.step))
-        self.height_slider.end_requested.connect(
-            lambda is_last: self.show_height(_HEIGHT.maximum if is_last else _HEIGHT.minimum)
-        )
+        grid.addWidget(self.picture_button, 0, 0)
+        grid.addWidget(self.numbers_button, 0, 1)
         return box
-
-    # --- what is wanted -------------------------------------------------------------------
-
-    @property
-    def shown(self) -> Shown:
-        """What of the flow the drawing should show."""
-        return Shown(self.shown_box.currentData())
-
-    @property
-    def is_forward(self) -> bool:
-        """Whether the forward flow should be shown."""
-        return self.direction_box.currentIndex() == 1
-
-    @property
-    def height_share(self) -> float:
-        """Height at which the flow should be shown: 0 floor, 1 roof."""
-        return self._height / 100.0
-
-    def show_height(self, percent: float) -> None:
-        """Show the flow at another height over the floor [% of the depth]."""
-        self._height = min(max(percent, _HEIGHT.minimum), _HEIGHT.maximum)
-        self.height_slider.show_value(self._height)
-        self.height_label.setText(height_text(self.height_share))
-        self.view_changed.emit()
 
     # --- showing --------------------------------------------------------------------------
 
@@ -270,10 +206,6 @@ class SolvePanel(QFrame):
     def show_failure(self, text: str) -> None:
         """Say why the last solve gave no answer; empty when it gave one."""
         _show_text(self.remark_label, text)
-
-    def show_picture_hint(self, text: str) -> None:
-        """Say why the drawing shows no picture of the flow; empty when it does or need not."""
-        _show_text(self.hint_label, text)
 
 
 def _with_band(value: float | None, digits: int, band: str | None, *, unit: str = "") -> str:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QRectF, QSize, Qt, Signal
+from PySide6.QtCore import QRectF, QSize, Qt
 from PySide6.QtGui import QColor, QPainter
 from PySide6.QtWidgets import QFrame, QGridLayout, QLabel, QScrollArea, QSizePolicy, QVBoxLayout, QWidget
 
@@ -57,15 +57,7 @@ class ShareBar(QWidget):
 
 
 class VerdictPanel(QScrollArea):
-    """Shows the score at the operating flow, its trust, cautions and the findings.
-
-    Signals
-    -------
-    field_requested(str)
-        Take the user to the field that cures a finding.
-    """
-
-    field_requested = Signal(str)
+    """Shows the score at the operating flow, its trust and cautions; holds the list of findings, which others fill."""
 
     def __init__(self, document: Document, settings: Settings) -> None:
         super().__init__()
@@ -75,9 +67,7 @@ class VerdictPanel(QScrollArea):
         self.setFocusPolicy(Qt.FocusPolicy.NoFocus)
         self.setMinimumWidth(270)
         self.findings = FindingsPanel()
-        self.findings.field_requested.connect(self.field_requested)
         self._build()
-        document.channel_changed.connect(lambda shape: self.findings.show_findings(shape.findings))
         document.estimate_changed.connect(self.show_assessment)
         settings.units_changed.connect(self.refresh)
         self.refresh()
@@ -90,16 +80,16 @@ class VerdictPanel(QScrollArea):
         layout.setContentsMargins(SPACING.small, SPACING.small, SPACING.small, SPACING.small)
         layout.setSpacing(SPACING.small)
         layout.addWidget(self._built_score())
-        layout.addWidget(self._built_trust())
         layout.addWidget(self.findings)
+        layout.addWidget(self._built_trust())
         layout.addStretch(1)
         self.setWidget(column)
 
     def add_part(self, part: QWidget) -> None:
-        """Put a part under the score, above what says how far to trust it."""
+        """Put a part under score and findings, above what says how far to trust them."""
         layout = self.widget().layout()
         assert isinstance(layout, QVBoxLayout)
-        layout.insertWidget(1, part)
+        layout.insertWidget(2, part)
 
     def _built_score(self) -> QFrame:
         frame, layout = _framed()
@@ -153,7 +143,6 @@ class VerdictPanel(QScrollArea):
 
     def refresh(self) -> None:
         """Show what the document holds."""
-        self.findings.show_findings(self._document.shape.findings)
         self.show_assessment(self._document.assessment)
 
     def show_assessment(self, assessment: Assessment) -> None:
@@ -164,13 +153,16 @@ class VerdictPanel(QScrollArea):
             self._show_obstacle(assessment.obstacle)
         else:
             self._show_score(assessment.score, units)
+        notes = (*assessment.making.notes, *(assessment.score.notes if assessment.score else ()))
+        _show_lines(self.notes_label, [f"\N{BULLET} {_sentence(note)}" for note in notes])
         cautions = applying(self._document.operating, assessment)
         _show_lines(self.caution_label, [f"\N{WARNING SIGN} {each.title}: {each.text}" for each in cautions])
 
     def _condition(self, assessment: Assessment, units: ShownUnits) -> str:
         operating = self._document.operating
         flow = f"{entry_text(units.shown(assessment.flow_ul_min, 'uL/min'))} {unit_symbol(units.flow)}"
-        return f"At {flow}, {word_for(operating.fluid)}, {operating.temperature_c:g} \N{DEGREE SIGN}C"
+        conditions = f"At {flow}, {word_for(operating.fluid)}, {operating.temperature_c:g} \N{DEGREE SIGN}C"
+        return f"{conditions}\nAs it will be made: {word_for(self._document.process.kind)}"
 
     def _show_obstacle(self, obstacle: str) -> None:
         self.diodicity_label.setText(f"Di {_NOTHING}")
@@ -182,7 +174,6 @@ class VerdictPanel(QScrollArea):
             bar.show_share(0.0)
         self._say_trust("\N{BLACK DIAMOND} No score", "error")
         self.method_label.setText(screen_words(obstacle))
-        _show_lines(self.notes_label, [])
 
     def _show_score(self, score: Score, units: ShownUnits) -> None:
         self.diodicity_label.setText(diodicity_text(score))
@@ -208,12 +199,16 @@ class VerdictPanel(QScrollArea):
             if score.valid
             else "Estimate: the formulas are used beyond the range they were found for. Take it as a hint only."
         )
-        _show_lines(self.notes_label, [f"\N{BULLET} {screen_words(note)}" for note in score.notes])
 
     def _say_trust(self, text: str, role: str) -> None:
         if self.trust_label.text() != text:  # dressing a label anew takes time
             self.trust_label.setText(text)
             set_role(self.trust_label, role)
+
+
+def _sentence(note: str) -> str:
+    text = screen_words(note)
+    return text[:1].upper() + text[1:]
 
 
 def _show_lines(label: QLabel, lines: list[str]) -> None:

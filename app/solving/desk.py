@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QObject
 
+from app.assessment import shape_of
 from app.background import Ending
 from app.drawing.flow_overlay import FlowOverlay, Shown
 from app.panels.solve import SolvePanel, Standing
@@ -81,7 +82,7 @@ class SolveDesk(QObject):
         panel.solve_requested.connect(self.solve_here)
         panel.curve_requested.connect(self.solve_curve)
         panel.cancel_requested.connect(self.cancel)
-        panel.view_changed.connect(self._show_picture)
+        panel.picture.changed.connect(self._show_picture)
         panel.picture_requested.connect(self.save_picture)
         panel.numbers_requested.connect(self.save_numbers)
         document.channel_changed.connect(self.refresh)
@@ -108,7 +109,7 @@ class SolveDesk(QObject):
             return
         request = SolveRequest(
             set_name=document.current_set.name,
-            channel=document.channel,
+            channel=document.making.flow,
             operating=document.operating,
             flows_ul_min=flows_ul_min,
         )
@@ -158,14 +159,14 @@ class SolveDesk(QObject):
     def refresh(self) -> None:
         """Show what is known about what is in hand."""
         document, store = self._document, self._document.solved
-        current = store.at(document.channel, document.operating)
+        current = store.at(document.making.flow, document.operating)
         self._show_figures(current)
         score = document.assessment.score
         for each in (current, score):
             if each is not None and each.loop_share_forward is not None and each.loop_share_reverse is not None:
                 self._parts.drawing.show_shares(each.loop_share_forward, each.loop_share_reverse)
                 break
-        along = store.along(document.channel, document.operating)
+        along = store.along(document.making.flow, document.operating)
         points = [each for each in along if each.diodicity is not None]
         if points != self._points:  # painting curves takes time
             self._points = points
@@ -184,10 +185,10 @@ class SolveDesk(QObject):
             self.panel.show_failure(self._failure)
 
     def _stale(self) -> SolvedResult | None:
-        """Return what comes nearest: the design in hand at the nearest flow, else what its set once was."""
+        """Return what comes nearest: what is made of the set at the nearest flow, else what was made of it once."""
         document, store = self._document, self._document.solved
         flow = document.operating.flow_ul_min
-        along = store.along(document.channel, document.operating)
+        along = store.along(document.making.flow, document.operating)
         nearest = min(along, key=lambda each: abs(each.flow_ul_min - flow), default=None)
         return nearest or store.stale_of(document.current_set.name)
 
@@ -199,8 +200,8 @@ class SolveDesk(QObject):
         return Standing.CURRENT if result.valid else Standing.DOUBTFUL
 
     def _what_changed(self, channel: ChannelParameters, operating: OperatingPoint) -> str:
-        if channel != self._document.channel:
-            return "These figures belong to earlier parameters of this set; solve again."
+        if channel != self._document.making.flow:
+            return "These figures belong to earlier parameters of this set, or of its process; solve again."
         return f"These figures were solved at {self._condition(operating)}; solve again."
 
     def _condition(self, operating: OperatingPoint) -> str:
@@ -209,11 +210,12 @@ class SolveDesk(QObject):
         return f"{flow}, {word_for(operating.fluid)}, {operating.temperature_c:g} \N{DEGREE SIGN}C"
 
     def _show_picture(self) -> None:
-        """Show the picture that belongs to the channel in hand; never another channel's."""
-        document, panel = self._document, self.panel
-        key = (document.channel, document.operating)
+        """Show the picture that belongs to what is made of the channel in hand; never another channel's."""
+        document, panel = self._document, self.panel.picture
+        solved = document.making.flow  # what is made of the set in hand, not what is wanted
+        key = (solved, document.operating)
         if key not in self._fields:
-            key = next((each for each in reversed(self._fields) if each[0] == document.channel), key)
+            key = next((each for each in reversed(self._fields) if each[0] == solved), key)
         direction = "forward" if panel.is_forward else "reverse"
         field = self._fields.get(key, {}).get(direction)
         is_stale = field is not None and key[1] != document.operating
@@ -222,13 +224,13 @@ class SolveDesk(QObject):
             self._shown_field = field
             self.overlay.set_field(
                 field,
-                seeds_um=streamline_seeds_um(document.shape, is_forward=panel.is_forward),
-                cell_um=document.channel.channel_width_um / _CELLS_PER_WIDTH,
+                seeds_um=streamline_seeds_um(shape_of(solved), is_forward=panel.is_forward),
+                cell_um=solved.channel_width_um / _CELLS_PER_WIDTH,
                 caption=f"{direction} flow",
             )
         self.overlay.set_view(panel.shown, height_share=panel.height_share)
         self.overlay.set_remark(f"Stale: solved at {self._condition(key[1])}" if is_stale else "")
-        panel.show_picture_hint(_hint(panel.shown, has_field=field is not None))
+        panel.show_hint(_hint(panel.shown, has_field=field is not None))
 
     def text_at(self, x_um: float, y_um: float) -> str:
         """Return the value of the flow picture at a place, for the read-out; empty where there is none."""
@@ -246,7 +248,7 @@ class SolveDesk(QObject):
         """Ask for a file and save the results of the design in hand, or the stale ones of its set."""
         document, store = self._document, self._document.solved
         name = document.current_set.name
-        results = store.along(document.channel, document.operating) or tuple(
+        results = store.along(document.making.flow, document.operating) or tuple(
             each for each in store.results if each.set_name == name
         )
         if results:

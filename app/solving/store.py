@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QObject, Signal
 
+from app.assessment import making_by
 from core.project.solved import SolvedResult, kept_results
 
 if TYPE_CHECKING:
@@ -58,8 +59,9 @@ class SolvedStore(QObject):
         self.changed.emit()
 
     def kept_with(self, project: ChipProject) -> tuple[SolvedResult, ...]:
-        """Return the results that belong to a project: to one of its sets, by name or by design."""
-        names, channels = {each.name for each in project.sets}, {each.channel for each in project.sets}
+        """Return the results that belong to a project: to one of its sets, by name or by what is made of it."""
+        names = {each.name for each in project.sets}
+        channels = {making_by(each.channel, project.process).flow for each in project.sets}
         return tuple(each for each in self._results if each.set_name in names or each.channel in channels)
 
     def at(self, channel: ChannelParameters, operating: OperatingPoint) -> SolvedResult | None:

@@ -5,13 +5,18 @@ from __future__ import annotations
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
+from core.errors import DesignValueError, did_you_mean
 from core.fields import CheckedValues, Field, table_of
+from core.parameters import CHANNEL_FIELDS
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
-CHIP, PORTS, FURNITURE, PLATE = "Chip", "Ports", "Marks and words", "Plate"
+CHIP, PORTS, FURNITURE, PLATE, PLACE, SERIES = "Chip", "Ports", "Marks and words", "Plate", "Place", "Stepped series"
 YES_NO = ("yes", "no")
+MOST_CHANNELS = 200
+MOST_SERIES = 2
+LONGEST_WORDS = 60  # signs of a label or of a set's name
 
 
 def _um(
@@ -57,9 +62,28 @@ CHIP_FIELDS: dict[str, Field] = table_of(
 )  # fmt: skip
 
 
+PLACE_FIELDS: dict[str, Field] = table_of(
+    _um("x_um", "Across", PLACE, 0.0, (-500000.0, 500000.0), 100.0, "Middle of the channel, from the chip's middle."),
+    _um("y_um", "Up", PLACE, 0.0, (-500000.0, 500000.0), 100.0, "Middle of the channel, from the chip's middle."),
+    Field(name="turn_deg", label="Turn", group=PLACE, default=0.0, unit="deg", minimum=-360.0, maximum=360.0, step=1.0,
+          help="Turn from the drawing of the set, counter-clockwise."),
+    Field(name="rows", label="Rows", group=PLACE, default=1, minimum=1, maximum=20, step=1, whole=True,
+          help="Rows into which a long chain is folded; 1 leaves it whole."),
+)  # fmt: skip
+
+SERIES_FIELDS: dict[str, Field] = table_of(
+    Field(name="first", label="First", group=SERIES, default=0.0, minimum=-1e6, maximum=1e6,
+          help="Value of the first chip, in the field's own unit."),
+    Field(name="last", label="Last", group=SERIES, default=0.0, minimum=-1e6, maximum=1e6,
+          help="Value of the last chip, in the field's own unit."),
+    Field(name="steps", label="Steps", group=SERIES, default=5, minimum=2, maximum=50, step=1, whole=True,
+          help="Number of values, first and last included."),
+)  # fmt: skip
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
-class ChipChannel:
-    """One channel on the chip.
+class ChipChannel(CheckedValues):
+    """One channel on the chip; numbers are described in ``PLACE_FIELDS``.
 
     Attributes
     ----------
@@ -73,6 +97,11 @@ class ChipChannel:
         Rows into which a long chain is folded; 1 leaves it whole.
     is_control : bool
         True: the plain straight channel of the same section and leads, to measure against.
+
+    Raises
+    ------
+    DesignValueError
+        If a value cannot be used.
     """
 
     set_name: str
@@ -82,15 +111,78 @@ class ChipChannel:
     rows: int = 1
     is_control: bool = False
 
+    @classmethod
+    def table(cls) -> Mapping[str, Field]:
+        """Return the table that describes the numbers."""
+        return PLACE_FIELDS
+
+    def __post_init__(self) -> None:
+        """Check the numbers, the name and the choice."""
+        CheckedValues.__post_init__(self)
+        _check_line("set_name", self.set_name, least=1)
+        if not isinstance(self.is_control, bool):
+            raise DesignValueError(
+                field="is_control", value=self.is_control, limit="true or false", way_out="give one of them"
+            )
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class SteppedField:
-    """A field of the channel that varies in equal steps from chip to chip of a plate."""
+class SteppedField(CheckedValues):
+    """A number of the channel that varies in equal steps from chip to chip of a plate.
+
+    Attributes
+    ----------
+    name : str
+        A numeric field of ``CHANNEL_FIELDS``; it is set in every channel of the chip.
+    first, last : float
+        Values at both ends, in the field's own unit and bounds.
+    steps : int
+        Number of values, 2 to 50.
+
+    Raises
+    ------
+    DesignValueError
+        If a value cannot be used.
+    """
 
     name: str
     first: float
     last: float
     steps: int
+
+    @classmethod
+    def table(cls) -> Mapping[str, Field]:
+        """Return the table that describes the numbers."""
+        return SERIES_FIELDS
+
+    def __post_init__(self) -> None:
+        """Check the numbers by their own bounds and by those of the field that is stepped."""
+        numbers = [name for name, field in CHANNEL_FIELDS.items() if not field.choices]
+        if self.name not in numbers:
+            raise DesignValueError(
+                field="series name", value=self.name, limit="a number of the channel",
+                way_out=did_you_mean(str(self.name), numbers),
+            )  # fmt: skip
+        CheckedValues.__post_init__(self)
+        for end in ("first", "last"):
+            object.__setattr__(self, end, self.field.checked(getattr(self, end)))
+        if len(set(self.values)) < self.steps:
+            raise DesignValueError(
+                field="steps", value=self.steps, limit=f"values of {self.name} that all differ",
+                way_out="move first and last apart, or lower steps",
+            )  # fmt: skip
+
+    @property
+    def field(self) -> Field:
+        """The field that is stepped."""
+        return CHANNEL_FIELDS[self.name]
+
+    @property
+    def values(self) -> tuple[float | int, ...]:
+        """All values in order, rounded to the nearest whole number where the field counts."""
+        step = (self.last - self.first) / (self.steps - 1)
+        exact = [self.first + step * n for n in range(self.steps - 1)] + [self.last]
+        return tuple(round(value) if self.field.whole else float(f"{value:.9g}") for value in exact)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -102,7 +194,7 @@ class ChipPlan(CheckedValues):
     label : str
         Words drawn on the chip; empty for the chip's name.
     channels : tuple of ChipChannel
-        What is placed; empty lets every set be packed, and the chip grow to hold them.
+        What is placed, at most 200; empty lets every set be packed, and the chip grow to hold them.
     series : tuple of SteppedField
         At most two fields that vary over the plate: the first along x, the second along y.
 
@@ -140,3 +232,36 @@ class ChipPlan(CheckedValues):
     def table(cls) -> Mapping[str, Field]:
         """Return the table that describes the fields."""
         return CHIP_FIELDS
+
+    def __post_init__(self) -> None:
+        """Check every number and word, what is placed, and what is stepped."""
+        CheckedValues.__post_init__(self)
+        _check_line("label", self.label)
+        object.__setattr__(self, "channels", _checked_list("channels", self.channels, ChipChannel, MOST_CHANNELS))
+        object.__setattr__(self, "series", _checked_list("series", self.series, SteppedField, MOST_SERIES))
+        names = [each.name for each in self.series]
+        if len(set(names)) < len(names):
+            raise DesignValueError(
+                field="series", value=names[0], limit="a field that no other series steps",
+                way_out="step another field, or keep one series",
+            )  # fmt: skip
+
+
+def _check_line(name: str, value: object, *, least: int = 0) -> None:
+    if not (isinstance(value, str) and value.isprintable() and least <= len(value) <= LONGEST_WORDS):
+        raise DesignValueError(
+            field=name, value=value, limit=f"{least} to {LONGEST_WORDS} printable characters in one line",
+            way_out="shorten it, or leave out what cannot be printed",
+        )  # fmt: skip
+
+
+def _checked_list(name: str, values: object, kind: type[CheckedValues], most: int) -> tuple[CheckedValues, ...]:
+    if not isinstance(values, tuple | list) or not all(isinstance(value, kind) for value in values):
+        raise DesignValueError(
+            field=name, value=values, limit=f"a list of {kind.__name__}", way_out="give each of its parts by name"
+        )
+    if len(values) > most:
+        raise DesignValueError(
+            field=name, value=len(values), limit=f"at most {most}", way_out="use fewer, or more than one chip"
+        )
+    return tuple(values)

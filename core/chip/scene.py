@@ -27,6 +27,16 @@ class Layer(StrEnum):
     CUT = "cut"
 
 
+class BlockKind(StrEnum):
+    """What a block draws."""
+
+    PLATE = "plate"
+    CHIP = "chip"
+    CHANNEL = "channel"
+    MARKS = "marks"
+    SIGN = "sign"
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Figure:
     """One closed area on a layer; only channels may have holes."""
@@ -42,7 +52,9 @@ class Block:
     Attributes
     ----------
     name : str
-        Safe name, unique in its scene.
+        Short name, to be made safe and unique by whoever writes files.
+    kind : BlockKind
+        What it draws.
     title : str
         What it is, in the user's words.
     body : ChannelBody or None
@@ -54,6 +66,7 @@ class Block:
     """
 
     name: str
+    kind: BlockKind
     title: str = ""
     body: ChannelBody | None = None
     figures: tuple[Figure, ...] = ()
@@ -62,11 +75,22 @@ class Block:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class PlacedBlock:
-    """A block at its place: its origin shifted by whole nanometres [um]."""
+    """A block at its place: its origin shifted by whole nanometres [um].
+
+    Attributes
+    ----------
+    block : Block
+        What is placed.
+    dx_um, dy_um : float
+        Shift [um].
+    channel : int or None
+        For a channel on a chip: its place in the plan's list of channels.
+    """
 
     block: Block
     dx_um: float = 0.0
     dy_um: float = 0.0
+    channel: int | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)

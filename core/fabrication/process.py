@@ -7,7 +7,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from enum import StrEnum
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, NoReturn
 
 from core.errors import DesignValueError
 from core.fields import CheckedValues, Field, table_of
@@ -34,6 +34,15 @@ class ProcessKind(StrEnum):
     KNIFE_FILM = "knife-cut film"
 
 
+MASK_KINDS = frozenset({ProcessKind.CAST_FILM, ProcessKind.CAST_CHROME, ProcessKind.WET_GLASS, ProcessKind.DRY_SILICON})
+ETCHED_KINDS = frozenset({ProcessKind.WET_GLASS, ProcessKind.DRY_SILICON})
+MILLED_KINDS = frozenset({ProcessKind.MILLED_CHANNEL, ProcessKind.MILLED_MOULD})
+CUT_KINDS = frozenset({ProcessKind.LASER_ACRYLIC, ProcessKind.LASER_FILM, ProcessKind.KNIFE_FILM})
+
+_CUT_TONE = "drawn lines are CUT"
+_TOOL_SIDE = "as seen from the side where the tool enters"
+
+
 def _um(
     name: str, label: str, group: str, default: float, bounds: tuple[float, float], step: float, text: str
 ) -> Field:
@@ -54,12 +63,12 @@ PROCESS_FIELDS: dict[str, Field] = table_of(
         "Narrowest solid between two walls of one channel, an island's neck for instance."),
     _um("min_wall_um", "Smallest wall", LIMITS, 200.0, (0.1, 10000.0), 50.0,
         "Narrowest solid between two channels, or between a channel and a foreign port, that keeps tight."),
-    _um("min_drawn_um", "Smallest drawn feature", LIMITS, 50.0, (0.1, 5000.0), 5.0,
+    _um("min_drawn_um", "Smallest drawn feature", LIMITS, 48.0, (0.1, 5000.0), 5.0,
         "Narrowest line or gap on the mask or tool path itself, after all compensation."),
-    _um("min_radius_um", "Smallest radius", LIMITS, 10.0, (0.0, 5000.0), 1.0,
+    _um("min_radius_um", "Smallest radius", LIMITS, 8.0, (0.0, 5000.0), 1.0,
         "Corners come out at least this round, whatever is drawn."),
     _um("min_depth_um", "Smallest depth", DEPTHS, 5.0, (0.1, 10000.0), 5.0, "Shallowest channel."),
-    _um("max_depth_um", "Largest depth", DEPTHS, 500.0, (0.1, 10000.0), 10.0, "Deepest channel."),
+    _um("max_depth_um", "Largest depth", DEPTHS, 200.0, (0.1, 10000.0), 10.0, "Deepest channel."),
     Field(name="max_depth_to_width", label="Depth to width at most", group=DEPTHS, default=2.0, unit="",
           minimum=0.01, maximum=100.0, step=0.1,
           help="Channels deeper, or solids taller, than this many times their width lean, break off or stay closed."),
@@ -82,7 +91,7 @@ PROCESS_FIELDS: dict[str, Field] = table_of(
           "In the channel when it is milled straight into the part; outside when a raised mould is milled."),
     _word("allowance", "Allowance", CHANGES, ("in the drawing", "by the shop", "not at all"),
           "Who allows for bias, undercut, kerf and tool: the drawing, the shop, or nobody. Never both."),
-    Field(name="shrink_percent", label="Shrinkage", group=CHANGES, default=0.0, unit="%",
+    Field(name="shrink_percent", label="Shrinkage", group=CHANGES, default=1.5, unit="%",
           minimum=0.0, maximum=20.0, step=0.1,
           help="How much smaller the part comes out than its mould, along the plane."),
     Field(name="wall_lean_deg", label="Wall lean", group=CHANGES, default=0.0, unit="deg",
@@ -127,10 +136,10 @@ class Process(CheckedValues):
     min_width_um: float = 50.0
     min_gap_um: float = 50.0
     min_wall_um: float = 200.0
-    min_drawn_um: float = 50.0
-    min_radius_um: float = 10.0
+    min_drawn_um: float = 48.0
+    min_radius_um: float = 8.0
     min_depth_um: float = 5.0
-    max_depth_um: float = 500.0
+    max_depth_um: float = 200.0
     max_depth_to_width: float = 2.0
     max_width_to_depth: float = 10.0
     collapse_width_to_depth: float = 20.0
@@ -140,7 +149,7 @@ class Process(CheckedValues):
     tool_diameter_um: float = 0.0
     tool_runs: str = "in the channel"
     allowance: str = "in the drawing"
-    shrink_percent: float = 0.0
+    shrink_percent: float = 1.5
     wall_lean_deg: float = 0.0
     bond_limit_kpa: float = 200.0
     safety_factor: float = 2.0
@@ -163,12 +172,50 @@ class Process(CheckedValues):
         CheckedValues.__post_init__(self)
         self._in_order("min_depth_um", "max_depth_um")
         self._in_order("max_width_to_depth", "collapse_width_to_depth")
+        if self.max_depth_to_width * self.max_width_to_depth < 1.0:
+            limit = 1.0 / self.max_width_to_depth
+            self._refuse("max_depth_to_width", f"at least {limit:g}, which is 1/max_width_to_depth",
+                         "raise it or max_width_to_depth, or no section at all passes both")  # fmt: skip
+        self._changes_suit_the_kind()
+        self._files_suit_the_kind()
+
+    def _changes_suit_the_kind(self) -> None:
+        """Refuse changes by means that this kind of making does not use."""
+        kind = ProcessKind(self.kind)
+        for name, kinds in (
+            ("undercut_ratio", ETCHED_KINDS),
+            ("kerf_um", CUT_KINDS),
+            ("tool_diameter_um", MILLED_KINDS),
+        ):
+            if getattr(self, name) > 0.0 and kind not in kinds:
+                self._refuse(name, f"0 for {kind}", f"set it to 0, or choose one of {', '.join(sorted(kinds))}")
+        if self.wall_lean_deg > 0.0 and kind is ProcessKind.WET_GLASS and self.undercut_ratio > 0.0:
+            self._refuse("wall_lean_deg", f"0 for {kind}, whose walls are round",
+                         "set it to 0, or undercut_ratio to 0 and give the shift as bias_um")  # fmt: skip
+        if kind in MILLED_KINDS:
+            runs = "outside the channel" if kind is ProcessKind.MILLED_MOULD else "in the channel"
+            self._must_be("tool_runs", (runs,))
+
+    def _files_suit_the_kind(self) -> None:
+        """Refuse words for a mask where lines are cut or milled, and the other way round."""
+        choices = {name: PROCESS_FIELDS[name].choices for name in ("tone", "reading", "islands")}
+        if self.kind in MASK_KINDS:
+            self._must_be("tone", tuple(word for word in choices["tone"] if word != _CUT_TONE))
+            self._must_be("reading", tuple(word for word in choices["reading"] if word != _TOOL_SIDE))
+            self._must_be("islands", tuple(word for word in choices["islands"] if word != "nested"))
+            return
+        self._must_be("tone", (_CUT_TONE,))
+        self._must_be("reading", (_TOOL_SIDE,))
+        self._must_be("islands", ("nested",))
+        self._must_be("formats", ("DXF",))
+
+    def _must_be(self, name: str, words: tuple[str, ...]) -> None:
+        if getattr(self, name) not in words:
+            self._refuse(name, f"for {self.kind}: {' or '.join(words)}", f"choose {words[0]}, or another kind")
 
     def _in_order(self, low: str, high: str) -> None:
         if getattr(self, low) > getattr(self, high):
-            raise DesignValueError(
-                field=low,
-                value=getattr(self, low),
-                limit=f"at most {high}, which is {getattr(self, high):g}",
-                way_out=f"lower {low} or raise {high}",
-            )
+            self._refuse(low, f"at most {high}, which is {getattr(self, high):g}", f"lower {low} or raise {high}")
+
+    def _refuse(self, name: str, limit: str, way_out: str) -> NoReturn:
+        raise DesignValueError(field=name, value=getattr(self, name), limit=limit, way_out=way_out)

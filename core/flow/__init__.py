@@ -6,11 +6,10 @@ drop of a long chain. Heavy libraries are imported when a solve starts.
 """
 
 from core.flow.chains import ExtendedDrop, extend_settled
-from core.flow.curve import solve_curve
 from core.flow.domain import FlowDomain
 from core.flow.newton import FlowStopped
 from core.flow.result import DirectionResult, FlowField, FlowResult
-from core.flow.solve import solve
+from core.flow.solve import solve, solve_curve
 
 __all__ = [
     "DirectionResult",

@@ -62,113 +62,72 @@ class Assembler:
         self._slope = np.einsum("rdeq,raq->deqa", self._turn, self._steep)  # (2, cells, points, 6)
         self._pairs = np.einsum("aq,bq->qab", self._shape, self._shape).reshape(self._shape.shape[1], 36)
         hat = np.array([ElementTriP1().lbasis(points, i)[0] + 0.0 * points[0] for i in range(3)])
-        self._square = Scatter(self.dofs, self.dofs, self.layout.nodes, self.layout.nodes)
-        self._mixed = Scatter(corner_dofs, self.dofs, self.layout.corners, self.layout.nodes)
+        self.square = Scatter(self.dofs, self.dofs, self.layout.nodes, self.layout.nodes)
+        self.mixed = Scatter(corner_dofs, self.dofs, self.layout.corners, self.layout.nodes)
         self._constant_blocks(hat, corner_dofs)
-        self._lay_out()
+        self._constant_tables()
 
     def _constant_blocks(self, hat: np.ndarray, corner_dofs: np.ndarray) -> None:
         """Compute the scalar matrices that do not depend on the flow."""
         w = self._weight
         stiff = np.einsum("eq,deqa,deqb->eab", w, self._slope, self._slope, optimize=True)
         mass = w @ self._pairs
-        self._stiffness = self._square(stiff.reshape(len(w), 36))
-        self._mass = self._square(mass)
+        self._stiffness = self.square(stiff.reshape(len(w), 36))
+        self._mass = self.square(mass)
         self._gradient = [
-            self._mixed(np.einsum("eq,aq,eqb->eab", w, hat, self._slope[d], optimize=True).reshape(len(w), 18))
+            self.mixed(np.einsum("eq,aq,eqb->eab", w, hat, self._slope[d], optimize=True).reshape(len(w), 18))
             for d in (0, 1)
         ]
         self._lumped = np.bincount(corner_dofs.ravel(), np.einsum("eq,aq->ea", w, hat).ravel(), self.layout.corners)
-        self._hat_shape = self._mixed(
+        self._hat_shape = self.mixed(
             np.einsum("eq,aq,bq->eab", w, hat, self._shape, optimize=True).reshape(len(w), 18)
         )
 
-    def _lay_out(self) -> None:
-        """Fix where every stored value of the whole matrix stands: velocity blocks, then pressure."""
-        lay, n = self.layout, self.layout.nodes
-        rows, columns = [], []
-        for i in range(lay.fields):
-            for j in range(lay.fields):
-                rows.append(self._square.rows + i * n)
-                columns.append(self._square.columns + j * n)
-        for k, j in self._pressure_blocks():
-            r = self._mixed.rows + lay.fields * n + k * lay.corners
-            c = self._mixed.columns + j * n
-            rows += [r, c]
-            columns += [c, r]
-        rows.append(np.arange(lay.fields * n, lay.size))
-        columns.append(rows[-1])
-        self.rows, self.columns = np.concatenate(rows), np.concatenate(columns)
-        self._viscous = self._viscous_values()
-
-    def _pressure_blocks(self) -> list[tuple[int, int]]:
-        """Return the (pressure mode, velocity field) pairs that continuity couples."""
+    def _constant_tables(self) -> None:
+        """Combine the scalar matrices of creeping flow with the mode tables."""
         t, lay = self.tensors, self.layout
-        pairs = []
-        for k in range(lay.pressure):
-            for i in range(lay.in_plane):
-                if abs(t.divergence[k, i]) > 1e-12:
-                    pairs += [(k, i), (k, lay.in_plane + i)]
-            for i in range(lay.vertical):
-                if abs(t.vertical_divergence[k, i]) > 1e-12:
-                    pairs.append((k, 2 * lay.in_plane + i))
-        return pairs
-
-    def _viscous_values(self) -> np.ndarray:
-        """Return the values of the creeping-flow matrix in block order."""
-        t, lay = self.tensors, self.layout
-        blocks = np.zeros((lay.fields, lay.fields, self._square.nnz))
-        for c in (0, lay.in_plane):
-            for i in range(lay.in_plane):
-                blocks[c + i, c + i] += self._stiffness
-                for j in range(lay.in_plane):
-                    blocks[c + i, c + j] += t.friction[i, j] * self._mass
         c = 2 * lay.in_plane
-        for i in range(lay.vertical):
-            blocks[c + i, c + i] += self._stiffness
-            for j in range(lay.vertical):
-                blocks[c + i, c + j] += t.vertical_friction[i, j] * self._mass
-        values = [blocks.ravel()]
-        for k, j in self._pressure_blocks():
-            if j < c:
-                block = -t.divergence[k, j % lay.in_plane] * self._gradient[j // lay.in_plane]
-            else:
-                block = -t.vertical_divergence[k, j - c] * self._hat_shape
-            values += [block, block]
-        values.append(np.zeros(lay.pressure * lay.corners))
-        return np.concatenate(values)
+        self._friction = np.zeros((lay.fields, lay.fields))
+        for begin in (0, lay.in_plane):
+            self._friction[begin : begin + lay.in_plane, begin : begin + lay.in_plane] = t.friction
+        self._friction[c:, c:] = t.vertical_friction
+        self.continuity = np.zeros((lay.pressure, lay.fields, self.mixed.nnz))
+        for axis in (0, 1):
+            begin = axis * lay.in_plane
+            self.continuity[:, begin : begin + lay.in_plane] = -t.divergence[:, :, None] * self._gradient[axis]
+        self.continuity[:, c:] = -t.vertical_divergence[:, :, None] * self._hat_shape
+        self.softening = -_SOFTENING * self._lumped
+        self._plane_matrices = [self.square.matrix(self._stiffness), self.square.matrix(self._mass)]
+        self._divergences = [self.mixed.matrix(each) for each in (*self._gradient, self._hat_shape)]
 
     def blank(self) -> np.ndarray:
         """Return a state of zeros."""
         return np.zeros(self.layout.size)
 
-    def viscous(self) -> csr_array:
-        """Return the creeping-flow matrix; symmetric."""
-        from scipy.sparse import coo_array
-
-        size = self.layout.size
-        return coo_array((self._viscous, (self.rows, self.columns)), shape=(size, size)).tocsr()
+    def creeping(self, state: np.ndarray) -> np.ndarray:
+        """Return the residual without convection; linear and symmetric in the state."""
+        t, lay = self.tensors, self.layout
+        out = np.zeros(lay.size)
+        stiffness, mass = self._plane_matrices
+        velocity, pressure = lay.all_velocities(state), lay.pressures(state)
+        momentum, balance = lay.all_velocities(out), lay.pressures(out)
+        momentum[:] = (stiffness @ velocity.T).T + self._friction @ (mass @ velocity.T).T
+        c = 2 * lay.in_plane
+        groups = (slice(0, lay.in_plane), slice(lay.in_plane, c), slice(c, None))
+        tables = (t.divergence, t.divergence, t.vertical_divergence)
+        for fields, table, matrix in zip(groups, tables, self._divergences, strict=True):
+            momentum[fields] -= table.T @ (matrix.T @ pressure.T).T
+            balance -= table @ (matrix @ velocity[fields].T).T
+        return out
 
     def mass(self) -> csr_array:
         """Return the mass matrix of the velocities, with zero rows for pressures."""
         from scipy.sparse import coo_array
 
-        lay, one = self.layout, self._square
+        lay, one = self.layout, self.square
         shift = np.repeat(np.arange(lay.fields) * lay.nodes, one.nnz)
         rows, columns = np.tile(one.rows, lay.fields) + shift, np.tile(one.columns, lay.fields) + shift
         return coo_array((np.tile(self._mass, lay.fields), (rows, columns)), shape=(lay.size, lay.size)).tocsr()
-
-    def node_graph(self) -> tuple[np.ndarray, np.ndarray]:
-        """Return row and column of every coupling between nodes; corners as pressure nodes come last."""
-        r, c = self._mixed.rows + self.layout.nodes, self._mixed.columns
-        return np.concatenate([self._square.rows, r, c]), np.concatenate([self._square.columns, c, r])
-
-    def node_of_unknowns(self) -> np.ndarray:
-        """Return the node, as numbered in ``node_graph``, of every unknown."""
-        lay = self.layout
-        velocity = np.tile(np.arange(lay.nodes), lay.fields)
-        pressure = lay.nodes + np.tile(np.arange(lay.corners), lay.pressure)
-        return np.concatenate([velocity, pressure])
 
     def _sampled(self, fields: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
         """Return values (m, cells, q) and slopes (2, m, cells, q) of nodal fields (m, nodes)."""
@@ -213,8 +172,8 @@ class Assembler:
         flat = self.dofs.ravel()
         return np.array([np.bincount(flat, part.ravel(), self.layout.nodes) for part in local])
 
-    def jacobian_values(self, state: np.ndarray, reynolds: float) -> np.ndarray:
-        """Return the derivative of the residual by the state.
+    def momentum_slopes(self, state: np.ndarray, reynolds: float) -> np.ndarray:
+        """Return the derivative of the momentum balances by the velocities.
 
         Parameters
         ----------
@@ -224,19 +183,26 @@ class Assembler:
 
         Returns
         -------
-        ndarray
-            Values that belong to ``rows`` and ``columns``; places that occur twice add up.
+        ndarray, shape (fields, fields, entries)
+            Test field, trial field, entry of ``square``.
         """
-        values = self._viscous.copy()
-        values[-len(self._lumped) * self.layout.pressure :] = np.tile(-_SOFTENING * self._lumped, self.layout.pressure)
-        if reynolds == 0:
-            return values
+        lay = self.layout
+        blocks = np.zeros((lay.fields, lay.fields, self.square.nnz))
+        if reynolds:
+            self._add_convection_slopes(blocks, state)
+            blocks *= reynolds
+        for i in range(lay.fields):
+            blocks[i, i] += self._stiffness
+        for i, j in zip(*np.nonzero(self._friction), strict=True):
+            blocks[i, j] += self._friction[i, j] * self._mass
+        return blocks
+
+    def _add_convection_slopes(self, blocks: np.ndarray, state: np.ndarray) -> None:
         t, lay = self.tensors, self.layout
         plane, vertical = lay.velocity(state)
         u = [self._sampled(plane[c]) for c in (0, 1)]
         w, dw = self._sampled(vertical)
         nu, c3 = lay.in_plane, 2 * lay.in_plane
-        blocks = np.zeros((lay.fields, lay.fields, self._square.nnz))
         carry = self._carried_by(u[0][0], u[1][0]) + self._reaction((u[0][1][0] + u[1][1][1]) / 2)
         by_w = self._reaction(w)
         advect = _by_carrier(t.uuu, carry) + _by_carrier(t.uwu, by_w)
@@ -253,20 +219,18 @@ class Assembler:
             for d in (0, 1):
                 moved = self._reaction(dw[d]) + self._spread(w, d)
                 blocks[c3:, d * nu : (d + 1) * nu] += _by_carried(t.wuw, moved)
-        values[: blocks.size] += reynolds * blocks.ravel()
-        return values
 
     def _reaction(self, fields: np.ndarray) -> np.ndarray:
         """Return values of the matrices of (test, field x trial), one row for each field."""
         if not len(fields):
-            return np.zeros((0, self._square.nnz))
+            return np.zeros((0, self.square.nnz))
         local = (fields * self._weight) @ self._pairs
-        return self._square(local)
+        return self.square(local)
 
     def _spread(self, fields: np.ndarray, axis: int) -> np.ndarray:
         """Return values of half the matrices of (test x field, slope of trial), one row for each field."""
         rows = [self._shape @ (f[..., None] * self._slope[axis]) for f in fields * self._weight / 2]
-        return self._square(np.array(rows).reshape(len(rows), len(self.dofs), 36))
+        return self.square(np.array(rows).reshape(len(rows), len(self.dofs), 36))
 
     def _carried_by(self, x: np.ndarray, y: np.ndarray) -> np.ndarray:
         """Return values of the matrices of (test, carrier . grad trial), one row for each carrier."""
@@ -274,7 +238,7 @@ class Assembler:
         for cx, cy in zip(x * self._weight, y * self._weight, strict=True):
             along = cx[..., None] * self._slope[0] + cy[..., None] * self._slope[1]
             rows.append((self._shape @ along).reshape(len(cx), 36))
-        return self._square(np.array(rows))
+        return self.square(np.array(rows))
 
 
 def _contracted(table: np.ndarray, products: np.ndarray) -> np.ndarray:

@@ -1,31 +1,29 @@
-"""Both directions solved on finer and finer levels, each started from the one before."""
+"""Both directions at one flow or several, on finer and finer levels, each started from the one before."""
 
 from __future__ import annotations
 
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
-from core.flow.newton import Branch, FlowStopped, correct, creeping_branch, follow
-from core.flow.quality import (
-    Band,
-    band_of_step,
-    check_memory,
-    check_size,
-    first_levels,
-    good_enough,
-    least_band,
-    needed_memory_mb,
-    next_level,
-)
+from core.errors import SolveError
+from core.flow.following import follow_direction
+from core.flow.levels import Levels
+from core.flow.newton import FlowStopped
+from core.flow.quality import Band, band_of_step, first_levels, good_enough, least_band, next_level
+from core.flow.side_by_side import Companion
 
 if TYPE_CHECKING:
-    from collections.abc import Callable
+    from collections.abc import Callable, Sequence
+    from types import TracebackType
+    from typing import Self
 
     from core.flow.domain import FlowDomain
-    from core.flow.problem import FlowProblem
+    from core.flow.following import Found
     from core.flow.quality import Level, Quality
 
 DIRECTIONS = ("forward", "reverse")
+_WORTH_A_PROCESS = 1e7  # entries of factors, below which another process takes longer to start than it saves
+_MOST_MISSES = 2  # levels on which a flow could not be reached, after which it is given up
 
 
 class Progress:
@@ -46,10 +44,19 @@ class Progress:
     ) -> None:
         self._step, self._total, self._report, self._should_stop = 0, total, report, should_stop
 
-    def tick(self, text: str, *, advance: bool = True) -> None:
-        """Report one step; raises FlowStopped if the caller wants to stop."""
+    def pause(self) -> None:
+        """Raise FlowStopped if the caller wants to stop."""
         if self._should_stop is not None and self._should_stop():
             raise FlowStopped("the flow solve was stopped")
+
+    def skip(self, steps: int) -> None:
+        """Count steps that need not be done."""
+        self._step += steps
+        self._total = max(self._total, self._step)
+
+    def tick(self, text: str, advance: bool = True) -> None:
+        """Report one step; raises FlowStopped if the caller wants to stop."""
+        self.pause()
         if advance:
             self._step += 1
             self._total = max(self._total, self._step)
@@ -57,87 +64,89 @@ class Progress:
             self._report(self._step, self._total, text)
 
 
-@dataclass(slots=True, eq=False)
+@dataclass(frozen=True, slots=True, eq=False)
 class Answer:
-    """Both directions on one level.
+    """Both directions at one flow on one level.
 
     Attributes
     ----------
-    level : Level
-    problems : dict of FlowProblem
+    found : dict of Found
         By direction.
     memory_mb : float
         Estimated need [MB].
-    branches : dict of Branch
-        Solution of each direction, at the flow asked for or the highest reached.
-    reached : dict of bool
-        Whether the flow asked for was reached.
     """
 
-    level: Level
-    problems: dict[str, FlowProblem]
+    found: dict[str, Found]
     memory_mb: float
-    branches: dict[str, Branch] = field(default_factory=dict)
-    reached: dict[str, bool] = field(default_factory=dict)
 
-    def drop(self, direction: str) -> float:
-        """Return a pressure drop in units of the solve."""
-        branch = self.branches[direction]
-        return float(self.problems[direction].pressure_drop(branch.state, branch.reynolds))
+    @property
+    def level(self) -> Level:
+        """Where it was found."""
+        return self.found["forward"].level
 
     @property
     def complete(self) -> bool:
         """Whether both directions reached the flow asked for."""
-        return all(self.reached.values())
+        return all(each.reached for each in self.found.values())
 
     @property
     def diodicity(self) -> float:
         """Reverse over forward drop."""
-        return self.drop("reverse") / self.drop("forward")
+        return self.found["reverse"].drop / self.found["forward"].drop
 
 
 @dataclass(slots=True)
 class Climb:
-    """The answers of a ladder so far, and the errors left by modes and by mesh.
+    """The answers of a ladder so far at one flow, and the errors left by modes and by mesh.
 
     Attributes
     ----------
     quality : Quality
-    last : Answer or None
+    reynolds : float
+        On channel width.
+    answers : list of Answer
+        The coarsest first.
     by_modes, by_size : Band or None
         None as long as nothing is known.
-    memory_mb : float
-        Largest need of a level so far.
     """
 
     quality: Quality
-    last: Answer | None = None
+    reynolds: float
+    answers: list[Answer] = field(default_factory=list)
     by_modes: Band | None = None
     by_size: Band | None = None
-    memory_mb: float = 0.0
 
     @property
     def answer(self) -> Answer:
         """The last answer; there is one as soon as a level has been solved."""
-        if self.last is None:
-            raise AssertionError("no level of the ladder has been solved")
-        return self.last
+        return self.answers[-1]
+
+    @property
+    def is_given_up(self) -> bool:
+        """Whether the flow was not reached on the last levels."""
+        return len(self.answers) >= _MOST_MISSES and not any(each.complete for each in self.answers[-_MOST_MISSES:])
 
     @property
     def band(self) -> Band | None:
         """Error of the last answer, or None if no two answers can be compared."""
-        if self.last is None or not self.last.complete or (self.by_modes is None and self.by_size is None):
+        if not self.answers or not self.answer.complete or (self.by_modes is None and self.by_size is None):
             return None
-        least = least_band(self.quality, self.last.diodicity, self.last.branches["forward"].reynolds)
+        least = least_band(self.quality, self.answer.diodicity, self.reynolds)
         return (self.by_modes or Band()) + (self.by_size or Band()) + least
+
+    @property
+    def is_poor(self) -> bool:
+        """Whether there is a band, and it is wider than the quality wants."""
+        band = self.band
+        return band is not None and not good_enough(self.quality, band, self.answer.diodicity)
 
     def add(self, answer: Answer) -> None:
         """Take the next answer and compare it with the one before."""
-        before, self.last = self.last, answer
-        self.memory_mb = max(self.memory_mb, answer.memory_mb)
+        before = self.answers[-1] if self.answers else None
+        self.answers.append(answer)
         if before is None or not (before.complete and answer.complete):
             return
-        drops = [(before.drop(d), answer.drop(d)) for d in DIRECTIONS]
+        drops = [(before.found[d].drop, answer.found[d].drop) for d in DIRECTIONS]
         band = band_of_step(before.level, answer.level, drops, (before.diodicity, answer.diodicity))
         if before.level.size == answer.level.size:
             self.by_modes = band
@@ -145,127 +154,128 @@ class Climb:
             self.by_size = band
 
 
-def climb(
-    domain: FlowDomain, reynolds: float, quality: Quality, progress: Progress, *, memory_limit_mb: float
-) -> Climb:
-    """Solve levels until the tolerance is met, the ladder ends, or a flow cannot be reached twice.
+class Ladder:
+    """Solves one domain at one quality after another; levels that were solved once are not solved again.
 
     Parameters
     ----------
     domain : FlowDomain
-    reynolds : float
-        On channel width.
-    quality : Quality
-    progress : Progress
     memory_limit_mb : float
-        Most memory to use [MB]; levels beyond the first ones are left out rather than refused.
-
-    Returns
-    -------
-    Climb
-
-    Raises
-    ------
-    SolveError
-        If the domain cannot be meshed or its first levels do not fit the memory.
-    FlowStopped
-        If the caller stopped.
+        Most memory to use [MB]. Levels beyond the first ones of a quality are left out rather than refused.
+    processes : int
+        With 2, reverse flow is solved in a process of its own as far as the memory allows. Scripts that
+        ask for it must be importable without side effects.
     """
-    state, misses = Climb(quality), 0
-    for level in first_levels(quality, domain.depth_to_width):
-        state.add(solve_level(domain, level, state.last, reynolds, quality, progress, memory_limit_mb))
-        misses = 0 if state.answer.complete else misses + 1
-        if misses == 2:
-            return state
-    while state.band is not None and not good_enough(quality, state.band, state.answer.diodicity):
-        finer = next_level(
-            quality, state.answer.level, domain.depth_to_width, state.by_modes or Band(), state.by_size or Band()
-        )
-        if finer is None or _too_large(state.answer, finer, memory_limit_mb):
-            break
-        answer = solve_level(domain, finer, state.last, reynolds, quality, progress, memory_limit_mb)
-        if not answer.complete:
-            break
-        state.add(answer)
-    return state
+
+    def __init__(self, domain: FlowDomain, *, memory_limit_mb: float, processes: int = 1) -> None:
+        self.domain, self.levels = domain, Levels(domain, memory_limit_mb)
+        self._companion = Companion(domain, memory_limit_mb) if processes > 1 else None
+        self._known: dict[tuple[float, Level], Answer] = {}
+
+    def __enter__(self) -> Self:
+        """Return the ladder itself."""
+        return self
+
+    def __exit__(
+        self, kind: type[BaseException] | None, error: BaseException | None, trace: TracebackType | None
+    ) -> None:
+        """End the other process."""
+        self.end()
+
+    def end(self) -> None:
+        """End the other process, if there is one."""
+        if self._companion is not None:
+            self._companion.end()
+
+    def climb(self, reynolds: Sequence[float], quality: Quality, progress: Progress) -> list[Climb]:
+        """Solve levels until the tolerance is met, the ladder ends, or a flow cannot be reached twice.
+
+        Parameters
+        ----------
+        reynolds : sequence of float
+            Flows, rising, as Reynolds numbers on channel width.
+        quality : Quality
+        progress : Progress
+
+        Returns
+        -------
+        list of Climb
+            One for each flow.
+
+        Raises
+        ------
+        SolveError
+            If the domain cannot be meshed or its first levels do not fit the memory.
+        FlowStopped
+            If the caller stopped.
+        """
+        climbs = [Climb(quality, each) for each in reynolds]
+        for level in first_levels(quality, self.domain.depth_to_width):
+            todo = [each for each in climbs if not each.is_given_up]
+            for each, answer in zip(todo, self._solved(level, todo, progress), strict=True):
+                each.add(answer)
+        while poor := [each for each in climbs if each.is_poor]:
+            finer = _next_for(poor, self.domain.depth_to_width)
+            if finer is None or _too_large(poor[0].answer, finer, self.levels.memory_limit_mb):
+                break
+            try:
+                answers = self._solved(finer, poor, progress)
+            except SolveError as error:
+                if isinstance(error, FlowStopped):
+                    raise
+                break  # the finer level would not fit; the answers so far stand, with their bands
+            for each, answer in zip(poor, answers, strict=True):
+                if answer.complete:
+                    each.add(answer)
+            if not any(answer.complete for answer in answers):
+                break
+        return climbs
+
+    def _solved(self, level: Level, climbs: list[Climb], progress: Progress) -> list[Answer]:
+        """Return the answers of one level at the flows of some climbs."""
+        new = [each for each in climbs if (each.reynolds, level) not in self._known]
+        if new:
+            memory = self.levels.at(level, progress.tick).memory_mb
+            found = self._both_directions(level, new, memory, progress)
+            for each, forward, reverse in zip(new, found["forward"], found["reverse"], strict=True):
+                self._known[each.reynolds, level] = Answer({"forward": forward, "reverse": reverse}, memory)
+        else:
+            progress.skip(1 + 2 * len(climbs))
+        return [self._known[each.reynolds, level] for each in climbs]
+
+    def _both_directions(
+        self, level: Level, climbs: list[Climb], memory_mb: float, progress: Progress
+    ) -> dict[str, list[Found]]:
+        def work(direction: str) -> dict[str, object]:
+            starts = [each.answer.found[direction] if each.answers else None for each in climbs]
+            flows = [each.reynolds for each in climbs]
+            tolerance = climbs[0].quality.newton_tolerance
+            return {"level": level, "reynolds": flows, "starts": starts, "tolerance": tolerance}
+
+        def here(direction: str) -> list[Found]:
+            return follow_direction(self.levels, direction, tell=progress.tick, **work(direction))  # type: ignore[arg-type]
+
+        is_small = self.levels.at(level).problems["forward"].fill * len(climbs) < _WORTH_A_PROCESS
+        if self._companion is None or is_small or 2 * memory_mb > self.levels.memory_limit_mb:
+            return {direction: here(direction) for direction in DIRECTIONS}
+        self._companion.ask("reverse", work("reverse"))
+        forward = here("forward")
+        for _ in climbs:
+            progress.tick(f"reverse flow, triangles of {level.size:.2g} widths, {level.modes} depth modes")
+        reverse = self._companion.answer(progress.pause)
+        if reverse is None:  # it died, perhaps for want of memory: one direction after the other needs less
+            self._companion = None
+            reverse = here("reverse")
+        return {"forward": forward, "reverse": reverse}
+
+
+def _next_for(poor: list[Climb], depth_to_width: float) -> Level | None:
+    """Return the level that should help the flow with the widest band most."""
+    worst = max(poor, key=lambda each: (each.band or Band()).diodicity)
+    finest = min((each.answer.level for each in poor), key=lambda level: (level.size, -level.modes))
+    return next_level(worst.quality, finest, depth_to_width, worst.by_modes or Band(), worst.by_size or Band())
 
 
 def _too_large(last: Answer, level: Level, memory_limit_mb: float) -> bool:
     growth = ((last.level.size / level.size) * (level.modes / last.level.modes)) ** 2
     return last.memory_mb * growth > memory_limit_mb
-
-
-def solve_level(
-    domain: FlowDomain,
-    level: Level,
-    before: Answer | None,
-    reynolds: float,
-    quality: Quality,
-    progress: Progress,
-    memory_limit_mb: float,
-) -> Answer:
-    """Return the answer of one level, started from a coarser one where there is one."""
-    answer = prepared(domain, level, progress, memory_limit_mb)
-    for direction in DIRECTIONS:
-        progress.tick(f"{direction} flow, triangles of {level.size:.2g} widths, {level.modes} depth modes")
-        _solve_direction(answer, before, direction, reynolds, quality.newton_tolerance, progress)
-    return answer
-
-
-def prepared(domain: FlowDomain, level: Level, progress: Progress, memory_limit_mb: float) -> Answer:
-    """Return a level with its mesh and equations, not yet solved."""
-    from core.flow.assembly import Assembler
-    from core.flow.mesh import channel_mesh, plan_for_depth
-    from core.flow.modes import depth_tensors
-    from core.flow.problem import both_directions
-
-    check_size(domain, level, memory_limit_mb)
-    progress.tick(f"meshing, triangles of {level.size:.2g} widths")
-    mesh = channel_mesh(domain, plan_for_depth(level.size, domain.depth_to_width))
-    assembler = Assembler(mesh, depth_tensors(level.modes, domain.depth_to_width))
-    problems = both_directions(assembler)
-    memory = needed_memory_mb(max(p.fill for p in problems.values()), assembler.layout.size)
-    check_memory(memory, domain.stages, memory_limit_mb)
-    return Answer(level, problems, memory)
-
-
-def _solve_direction(
-    answer: Answer, before: Answer | None, direction: str, reynolds: float, tolerance: float, progress: Progress
-) -> None:
-    problem = answer.problems[direction]
-
-    def pause(now: float) -> None:
-        progress.tick(f"{direction} flow, at {100 * now / reynolds:.0f} % of the speed", advance=False)
-
-    branch = None
-    if before is not None:
-        branch = carried_over(before, answer, direction)
-        if not correct(problem, branch, branch.state, branch.reynolds, tolerance=tolerance, pause=pause):
-            branch = None
-        before.branches[direction].factor = None
-    if branch is None:
-        branch = creeping_branch(problem)
-    answer.reached[direction] = follow(problem, branch, reynolds, tolerance=tolerance, pause=pause)
-    branch.factor = None  # large, and of no use to the next level
-    answer.branches[direction] = branch
-
-
-def carried_over(before: Answer, answer: Answer, direction: str) -> Branch:
-    """Return a branch that starts from the field of another level at the same Reynolds number."""
-    from core.flow.sampling import Sampler
-
-    old, new = before.problems[direction], answer.problems[direction]
-    old_state = before.branches[direction].state
-    sampler = Sampler(old.assembler.mesh)
-    source, target = old.assembler.layout, new.assembler.layout
-    state, points = new.assembler.blank(), new.assembler.positions
-    plane, vertical = target.velocity(state)
-    old_plane, old_vertical = source.velocity(old_state)
-    shared = min(source.in_plane, target.in_plane)
-    for c in (0, 1):
-        plane[c, :shared] = sampler.quadratic(old_plane[c], points)[:shared]
-    shared = min(source.vertical, target.vertical)
-    vertical[:shared] = sampler.quadratic(old_vertical, points)[:shared]
-    shared = min(source.pressure, target.pressure)
-    target.pressures(state)[:shared] = sampler.linear(source.pressures(old_state), points[: target.corners])[:shared]
-    return Branch(new.with_prescribed(state), before.branches[direction].reynolds)

@@ -3,8 +3,12 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 import numpy as np
+
+if TYPE_CHECKING:
+    from scipy.sparse import csr_array
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -41,6 +45,10 @@ class Layout:
         plane = state[:cut].reshape(2, self.in_plane, self.nodes)
         return plane, state[cut:end].reshape(self.vertical, self.nodes)
 
+    def all_velocities(self, state: np.ndarray) -> np.ndarray:
+        """Return all velocity fields (fields, nodes) as a view of a state."""
+        return state[: self.fields * self.nodes].reshape(self.fields, self.nodes)
+
     def pressures(self, state: np.ndarray) -> np.ndarray:
         """Return the pressure modes (n_p, corners) as a view of a state."""
         return state[self.fields * self.nodes :].reshape(self.pressure, self.corners)
@@ -74,6 +82,14 @@ class Scatter:
         self.rows, self.columns = keys // n_columns, keys % n_columns
         ones = np.ones(len(place))
         self._sum = csr_array((ones, (place, np.arange(len(place)))), shape=(self.nnz, len(place)))
+        self._shape = (n_rows, n_columns)
+        self._starts = np.searchsorted(self.rows, np.arange(n_rows + 1))
+
+    def matrix(self, values: np.ndarray) -> csr_array:
+        """Return the sparse matrix of stored values."""
+        from scipy.sparse import csr_array
+
+        return csr_array((values, self.columns, self._starts), shape=self._shape)
 
     def __call__(self, local: np.ndarray) -> np.ndarray:
         """Return stored values (..., nnz) of cell matrices (..., cells, entries)."""

@@ -28,6 +28,8 @@ _NOSE_WINDOW = 0.15  # ... within this length of wall, in channel widths
 _END_DIVISION = (0.11, 0.28, 0.5, 0.72, 0.89)  # of each open end, however coarse the rest may be
 _NOSE_SIZE = 0.2  # size at a nose as a share of the size elsewhere
 
+_GRADING = 0.3  # how fast the size of triangles may change, 0 (slow) to 1
+_START_SIZE, _START_GRADING = 0.6, 0.6  # larger triangles than this only begin a solve: fewer do
 _WALL_PER_DEPTH = 1.4  # edge length at walls over mesh size, for each unit of depth / width
 _THINNEST_WALL = 0.25
 
@@ -51,7 +53,7 @@ class MeshPlan:
     size: float
     nose: float = _NOSE_SIZE
     wall: float = 1.0
-    grading: float = 0.3
+    grading: float = _GRADING
 
 
 def plan_for_depth(size: float, depth_to_width: float) -> MeshPlan:
@@ -71,7 +73,8 @@ def plan_for_depth(size: float, depth_to_width: float) -> MeshPlan:
     -------
     MeshPlan
     """
-    return MeshPlan(size, wall=min(1.0, max(_THINNEST_WALL, _WALL_PER_DEPTH * depth_to_width)))
+    wall = min(1.0, max(_THINNEST_WALL, _WALL_PER_DEPTH * depth_to_width))
+    return MeshPlan(size, wall=wall, grading=_START_GRADING if size > _START_SIZE else _GRADING)
 
 
 def channel_mesh(domain: FlowDomain, plan: MeshPlan) -> MeshTri2:

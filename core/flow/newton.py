@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -15,7 +15,10 @@ if TYPE_CHECKING:
     from core.flow.problem import FlowProblem
 
 _TOLERANCE = 1e-9  # size of the last correction against the size of the state
-_KEEP_FACTOR = 0.3  # corrections must shrink at least this much for a factor to be used again
+_ROUGH = 3e-3  # the same on the way to a Reynolds number
+_CORRECTIONS_PER_FACTOR = 10  # that take as long as a new factor
+_MIXED = 4  # corrections remembered
+_MOST_CORRECTIONS = 60
 _MOST_FACTORS = 6  # for one Reynolds number
 _MOST_IN_ALL = 50  # for one flow
 _FIRST_STEP = 25.0
@@ -38,8 +41,6 @@ class Branch:
         On channel width.
     factor : object
         Factor of a nearby Jacobian on the free unknowns, or None.
-    creeping : ndarray
-        State at Reynolds number 0.
     factorisations : int
         Counted for the record.
     """
@@ -47,9 +48,7 @@ class Branch:
     state: np.ndarray
     reynolds: float = 0.0
     factor: Any = None
-    creeping: np.ndarray | None = None
     factorisations: int = 0
-    history: list[float] = field(default_factory=list)
 
 
 def creeping_branch(problem: FlowProblem) -> Branch:
@@ -66,9 +65,9 @@ def creeping_branch(problem: FlowProblem) -> Branch:
     """
     state = problem.start()
     factor = problem.factorised(state, 0.0)
-    state[problem.free] -= factor.solve(problem.residual(state, 0.0))
-    state[problem.free] -= factor.solve(problem.residual(state, 0.0))
-    return Branch(state, 0.0, factor, state.copy(), 1)
+    state -= factor.solve(problem.residual(state, 0.0))
+    state -= factor.solve(problem.residual(state, 0.0))
+    return Branch(state, 0.0, factor, 1)
 
 
 def follow(
@@ -109,7 +108,8 @@ def follow(
         aim = branch.reynolds + away
         guess = _predicted(problem, branch, aim)
         before = branch.factorisations
-        if correct(problem, branch, guess, aim, tolerance=tolerance, pause=pause):
+        near = tolerance if aim == target else max(tolerance, _ROUGH)
+        if correct(problem, branch, guess, aim, tolerance=near, pause=pause):
             step = abs(away) * (2.0 if branch.factorisations - before <= 2 else 1.2)
             continue
         step = abs(away) / 2.5
@@ -149,8 +149,8 @@ def correct(
         Whether it converged.
     """
     state, factor, last, fresh = guess.copy(), branch.factor, np.inf, False
-    spent, scale = 0, 1.0
-    for _ in range(60):
+    spent, mixer = 0, _Mixer(problem.assembler.layout.all_velocities)
+    for _ in range(_MOST_CORRECTIONS):
         pause(reynolds)
         if factor is None:
             if spent == _MOST_FACTORS:
@@ -158,26 +158,53 @@ def correct(
             branch.factor = None  # two factors at once would double the memory
             factor, fresh, spent = problem.factorised(state, reynolds), True, spent + 1
             branch.factorisations += 1
+            last, mixer = np.inf, _Mixer(problem.assembler.layout.all_velocities)
         change = factor.solve(problem.residual(state, reynolds))
-        size = problem.norm(change)
-        scale = problem.norm(state[problem.free])
+        size, scale = problem.norm(change), problem.norm(state)
         if not np.isfinite(size) or size > 1e3 * scale:
             if fresh:
                 return False
             factor = None
             continue
-        if not fresh and size > _KEEP_FACTOR * last and not (last == np.inf and size < 0.05 * scale):
-            factor, last = None, np.inf
+        if not fresh and _is_slow(size / last if last < np.inf else size / scale, size / (tolerance * scale)):
+            factor = None
             continue
-        if fresh and size > 1.5 * last and size > 1e-3 * scale and spent > 3:
-            return False
-        state[problem.free] -= change
+        state = mixer.next(state, change)
         last, fresh = size, False
         if size <= tolerance * scale:
             branch.state, branch.reynolds, branch.factor = state, reynolds, factor
-            branch.history.append(reynolds)
             return True
     return False
+
+
+def _is_slow(ratio: float, above: float) -> bool:
+    """Return whether a new factor takes less time than corrections that shrink by a ratio until they are small."""
+    if above <= 1.0:
+        return False
+    return ratio >= 1.0 or np.log(above) > _CORRECTIONS_PER_FACTOR * -np.log(ratio)
+
+
+class _Mixer:
+    """Next state from the last corrections with one factor (D. G. Anderson, J. ACM 12, 1965, 547)."""
+
+    def __init__(self, velocities: Callable[[np.ndarray], np.ndarray]) -> None:
+        self._velocities = velocities  # alone measured: the pressure has another scale
+        self._before: tuple[np.ndarray, np.ndarray] | None = None
+        self._moves: list[np.ndarray] = []
+        self._gains: list[np.ndarray] = []
+
+    def next(self, state: np.ndarray, change: np.ndarray) -> np.ndarray:
+        """Return the state after a correction that is to be subtracted from it."""
+        out = state - change
+        if self._before is not None:
+            self._moves = [*self._moves, state - self._before[0]][-_MIXED:]
+            self._gains = [*self._gains, change - self._before[1]][-_MIXED:]
+            gains = np.array([self._velocities(each).ravel() for each in self._gains])
+            shares = np.linalg.lstsq(gains @ gains.T, gains @ self._velocities(change).ravel(), rcond=1e-12)[0]
+            for share, move, gain in zip(shares, self._moves, self._gains, strict=True):
+                out -= share * (move - gain)
+        self._before = (state, change)
+        return out
 
 
 def _predicted(problem: FlowProblem, branch: Branch, aim: float) -> np.ndarray:
@@ -186,6 +213,6 @@ def _predicted(problem: FlowProblem, branch: Branch, aim: float) -> np.ndarray:
     if branch.factor is None:  # lost in a step that failed
         branch.factor = problem.factorised(branch.state, branch.reynolds)
         branch.factorisations += 1
-    slope = branch.factor.solve(problem.convection(branch.state)[problem.free])
-    guess[problem.free] -= (aim - branch.reynolds) * slope
+    slope = branch.factor.solve(problem.convection(branch.state))
+    guess -= (aim - branch.reynolds) * slope
     return guess

@@ -31,32 +31,28 @@ class FlowProblem:
         Mesh and modes; shared by both directions.
     inlet, outlet : str
         Names of the boundaries.
-    half_width : float
-        Half the width of the inlet, in channel widths.
+    elimination : Elimination
+        Order of elimination; shared by both directions.
     """
 
-    def __init__(self, assembler: Assembler, *, inlet: str, outlet: str, half_width: float = 0.5) -> None:
+    def __init__(self, assembler: Assembler, *, inlet: str, outlet: str, elimination: Elimination) -> None:
         self.assembler, self.inlet, self.outlet = assembler, inlet, outlet
-        lay, mesh = assembler.layout, assembler.mesh
-        boundary = mesh.boundary_facets()
-        wall = _nodes(mesh, np.setdiff1d(boundary, np.concatenate([mesh.boundaries[inlet], mesh.boundaries[outlet]])))
-        self.inlet_nodes = np.setdiff1d(_nodes(mesh, mesh.boundaries[inlet]), wall)
-        fixed = np.zeros(lay.size, dtype=bool)
-        everywhere = np.union1d(wall, self.inlet_nodes)
-        for number in range(lay.fields):
-            fixed[number * lay.nodes + everywhere] = True
-        self.free = np.flatnonzero(~fixed)
-        self.inflow = self._inflow(half_width)
-        self._viscous = assembler.viscous()
-        self._elimination = Elimination(assembler, self.free)
+        mesh = assembler.mesh
+        self.inlet_nodes = np.setdiff1d(_nodes(mesh, mesh.boundaries[inlet]), elimination.wall)
+        self.is_free = np.ones(assembler.layout.size, dtype=bool)
+        assembler.layout.all_velocities(self.is_free)[:, np.union1d(elimination.wall, self.inlet_nodes)] = False
+        self._moving = int(assembler.layout.all_velocities(self.is_free).sum())
+        self.inflow = self._inflow()
+        self._elimination = elimination
 
-    def _inflow(self, half_width: float) -> np.ndarray:
+    def _inflow(self) -> np.ndarray:
         """Return a state that is zero but for the prescribed inflow, scaled to flow exactly 1 per depth."""
         assembler, lay = self.assembler, self.assembler.layout
         state = np.zeros(lay.size)
         plane, _ = lay.velocity(state)
         points = assembler.positions[self.inlet_nodes]
         start, stop = _ends(assembler.mesh, self.inlet)
+        half_width = float(np.hypot(*(stop - start))) / 2
         middle, along = (start + stop) / 2, (stop - start) / np.hypot(*(stop - start))
         inward = _inward(assembler.mesh, self.inlet)
         profile = developed_profile(assembler.tensors, (points - middle) @ along, half_width)
@@ -71,13 +67,14 @@ class FlowProblem:
 
     def with_prescribed(self, state: np.ndarray) -> np.ndarray:
         """Return a state with the prescribed values put in."""
-        out = self.inflow.copy()
-        out[self.free] = state[self.free]
-        return out
+        return np.where(self.is_free, state, self.inflow)
 
     def mass(self) -> csr_array:
-        """Return the mass matrix of the free unknowns; zero for pressures."""
-        return self.assembler.mass()[self.free][:, self.free]
+        """Return the mass matrix; zero for pressures and prescribed values."""
+        from scipy.sparse import diags_array
+
+        free = diags_array(self.is_free.astype(float))
+        return (free @ self.assembler.mass() @ free).tocsr()
 
     @property
     def fill(self) -> int:
@@ -85,26 +82,26 @@ class FlowProblem:
         return self._elimination.fill
 
     def convection(self, state: np.ndarray) -> np.ndarray:
-        """Return the derivative of the whole residual by the Reynolds number."""
-        return self.assembler.convection(state)
+        """Return the derivative of the residual by the Reynolds number, zero where values are prescribed."""
+        return self.assembler.convection(state) * self.is_free
 
     def full_residual(self, state: np.ndarray, reynolds: float) -> np.ndarray:
         """Return the residual at all unknowns, prescribed ones included."""
-        out = self._viscous @ state
+        out = self.assembler.creeping(state)
         return out + reynolds * self.assembler.convection(state) if reynolds else out
 
     def residual(self, state: np.ndarray, reynolds: float) -> np.ndarray:
-        """Return the residual at the free unknowns."""
-        return self.full_residual(state, reynolds)[self.free]
+        """Return the residual, zero where values are prescribed."""
+        return self.full_residual(state, reynolds) * self.is_free
 
     def factorised(self, state: np.ndarray, reynolds: float) -> Factor:
-        """Return the sparse factor of the Jacobian at the free unknowns."""
-        return self._elimination.factorised(self.assembler.jacobian_values(state, reynolds))
+        """Return the factor of the Jacobian; it solves for corrections that keep the prescribed values."""
+        return self._elimination.factorised(self.assembler.momentum_slopes(state, reynolds), self.inlet_nodes)
 
     def norm(self, change: np.ndarray) -> float:
-        """Return the root mean square of the velocity part of free unknowns."""
-        cut = np.searchsorted(self.free, self.assembler.layout.fields * self.assembler.layout.nodes)
-        return float(np.sqrt(np.mean(change[:cut] ** 2)))
+        """Return the root mean square of the velocities that are not prescribed."""
+        free = self.assembler.layout.all_velocities(change * self.is_free)
+        return float(np.sqrt(np.sum(free**2) / self._moving))
 
     def pressure_drop(self, state: np.ndarray, reynolds: float) -> float:
         """Return the static pressure drop between the open ends, in viscosity x speed / width.
@@ -139,10 +136,12 @@ class FlowProblem:
 def both_directions(assembler: Assembler) -> dict[str, FlowProblem]:
     """Return the forward and the reverse problem on one assembler."""
     enter, leave = OPEN_ENDS
-    wide = {name: np.hypot(*np.subtract(*_ends(assembler.mesh, name))) for name in OPEN_ENDS}
+    mesh = assembler.mesh
+    ends = np.concatenate([mesh.boundaries[name] for name in OPEN_ENDS])
+    elimination = Elimination(assembler, _nodes(mesh, np.setdiff1d(mesh.boundary_facets(), ends)))
     return {
-        "forward": FlowProblem(assembler, inlet=enter, outlet=leave, half_width=wide[enter] / 2),
-        "reverse": FlowProblem(assembler, inlet=leave, outlet=enter, half_width=wide[leave] / 2),
+        "forward": FlowProblem(assembler, inlet=enter, outlet=leave, elimination=elimination),
+        "reverse": FlowProblem(assembler, inlet=leave, outlet=enter, elimination=elimination),
     }
 
 

@@ -84,32 +84,32 @@ QUALITIES = {
             excess_floor=0.02,
             smallest_size=0.5,
             most_modes=-1,
-            newton_tolerance=1e-6,
+            newton_tolerance=1e-5,
             least_pressure_percent=2.0,
             least_excess_percent=15.0,
             excess_growth_percent=35.0,
         ),
         Quality(
             name="normal",
-            steps=((-1, 0.5), (0, 0.5), (0, 0.33)),
+            steps=((-2, 0.75), (-1, 0.5), (0, 0.5), (0, 0.33)),
             pressure_tolerance_percent=1.0,
             excess_tolerance_percent=5.0,
             excess_floor=0.003,
             smallest_size=0.2,
             most_modes=1,
-            newton_tolerance=1e-8,
+            newton_tolerance=1e-6,
             least_pressure_percent=0.25,
             least_excess_percent=2.5,
         ),
         Quality(
             name="fine",
-            steps=((-1, 0.5), (0, 0.5), (0, 0.3), (0, 0.2)),
+            steps=((-2, 0.75), (-1, 0.5), (0, 0.5), (0, 0.3), (0, 0.2)),
             pressure_tolerance_percent=0.3,
             excess_tolerance_percent=2.0,
             excess_floor=0.001,
             smallest_size=0.13,
             most_modes=2,
-            newton_tolerance=1e-9,
+            newton_tolerance=1e-7,
             least_pressure_percent=0.2,
             least_excess_percent=1.5,
         ),
@@ -261,8 +261,8 @@ def check_size(domain: FlowDomain, level: Level, memory_limit_mb: float) -> None
 
 
 def needed_memory_mb(entries: int, unknowns: int) -> float:
-    """Return the memory of one level [MB]: two factors of known fill, matrices and work space."""
-    return float(250 + (2 * entries * 14 + unknowns * 8000) / 1e6)
+    """Return the memory of one level [MB]: a factor of known size, matrices and work space."""
+    return float(250 + (entries * 10 + unknowns * 4000) / 1e6)
 
 
 def check_memory(megabytes: float, stages: int, memory_limit_mb: float) -> None:

@@ -7,9 +7,10 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 if TYPE_CHECKING:
+    from scipy.sparse import csr_array
     from skfem import MeshTri2
 
-_NEAR = 12  # triangles tried first; points that fall outside all of them try many more
+_NEAR = 6  # triangles tried first; points that fall outside all of them try many more
 
 
 class Sampler:
@@ -57,14 +58,27 @@ class Sampler:
 
     def quadratic(self, fields: np.ndarray, points: np.ndarray) -> np.ndarray:
         """Return fields given on all nodes (m, nodes) at points (n, 2); shape (m, n)."""
-        cells, b = self.locate(points)
-        weights = np.concatenate([b * (2 * b - 1), 4 * b[:, [0, 1, 0]] * b[:, [1, 2, 2]]], axis=1)
-        return np.einsum("mna,na->mn", fields[:, self._cells[cells]], weights)
+        nodes, weights = self._quadratic_weights(points)
+        return np.einsum("mna,na->mn", fields[:, nodes], weights)
 
     def linear(self, fields: np.ndarray, points: np.ndarray) -> np.ndarray:
         """Return fields given on corners (m, corners) at points (n, 2); shape (m, n)."""
         cells, b = self.locate(points)
         return np.einsum("mna,na->mn", fields[:, self._cells[cells, :3]], b)
+
+    def matrices(self, points: np.ndarray, corners: int) -> tuple[csr_array, csr_array]:
+        """Return what takes values on all nodes to points (n, 2), and values on corners to the first of the points."""
+        nodes, weights = self._quadratic_weights(points)
+        cells, shares = self.locate(points[:corners])
+        return _matrix(nodes, weights, int(self._cells.max()) + 1), _matrix(
+            self._cells[cells, :3], shares, int(self._cells[:, :3].max()) + 1
+        )
+
+    def _quadratic_weights(self, points: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+        """Return the nodes (n, 6) of the triangle of each point, and their weights."""
+        cells, b = self.locate(points)
+        weights = np.concatenate([b * (2 * b - 1), 4 * b[:, [0, 1, 0]] * b[:, [1, 2, 2]]], axis=1)
+        return self._cells[cells], weights
 
     def _best(self, points: np.ndarray, near: int) -> tuple[np.ndarray, np.ndarray]:
         near = min(near, len(self._corner))
@@ -79,3 +93,10 @@ class Sampler:
         best = np.argmax(shares.min(axis=-1), axis=1)
         rows = np.arange(len(points))
         return candidates[rows, best], shares[rows, best]
+
+
+def _matrix(columns: np.ndarray, weights: np.ndarray, width: int) -> csr_array:
+    from scipy.sparse import csr_array
+
+    starts = np.arange(len(columns) + 1) * columns.shape[1]
+    return csr_array((weights.ravel(), columns.ravel(), starts), shape=(len(columns), width))

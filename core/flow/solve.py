@@ -1,22 +1,21 @@
-"""Steady flow through a domain in both directions at one volume flow."""
+"""Steady flow through a domain in both directions, at one volume flow or several."""
 
 from __future__ import annotations
 
 import time
 from typing import TYPE_CHECKING
 
-from core.flow.ladder import DIRECTIONS, Climb, Progress, climb
-from core.flow.quality import good_enough, quality_named
-from core.flow.readings import direction_result
-from core.flow.result import FlowResult
+from core.errors import SolveError
+from core.flow.ladder import Ladder, Progress
+from core.flow.quality import quality_named
+from core.flow.reporting import as_result
 from core.flow.scales import scales
 
 if TYPE_CHECKING:
-    from collections.abc import Callable
+    from collections.abc import Callable, Sequence
 
     from core.flow.domain import FlowDomain
-    from core.flow.quality import Quality
-    from core.flow.scales import Scales
+    from core.flow.result import FlowResult
 
 MEMORY_LIMIT_MB = 4000.0
 
@@ -32,6 +31,7 @@ def solve(
     should_stop: Callable[[], bool] | None = None,
     memory_limit_mb: float = MEMORY_LIMIT_MB,
     check_steady: bool = False,
+    processes: int = 1,
 ) -> FlowResult:
     """Solve steady laminar flow forward and reverse at one volume flow.
 
@@ -52,9 +52,12 @@ def solve(
     should_stop : callable, optional
         Asked between steps; the solve ends with FlowStopped when it answers True.
     memory_limit_mb : float
-        Most memory to use [MB].
+        Most memory to use [MB], all processes together.
     check_steady : bool
         Whether to look for growing disturbances of both flows; costs a few seconds.
+    processes : int
+        With 2, the directions are solved side by side as far as the memory allows. Scripts that ask for
+        it must be importable without side effects.
 
     Returns
     -------
@@ -74,97 +77,97 @@ def solve(
     developed flow at the ends. Source of the depth expansion: derived here; compare Ding, Wang and
     Roper, arXiv 2511.03956.
     """
-    began = time.perf_counter()
-    unit = scales(domain, flow_m3_s=flow_m3_s, density_kg_m3=density_kg_m3, viscosity_pa_s=viscosity_pa_s)
-    wanted = quality_named(quality)
-    progress = Progress(3 * len(wanted.steps) + 1, report, should_stop)
-    ladder = climb(domain, unit.width_reynolds, wanted, progress, memory_limit_mb=memory_limit_mb)
-    result = as_result(
-        domain,
-        unit,
-        ladder,
-        flow_m3_s=flow_m3_s,
-        quality=wanted,
-        began=began,
-        check_steady=check_steady,
-        progress=progress,
-    )
-    progress.tick("done")
+    with Ladder(domain, memory_limit_mb=memory_limit_mb, processes=processes) as ladder:
+        (result,) = solve_on(
+            ladder,
+            flows_m3_s=[flow_m3_s],
+            density_kg_m3=density_kg_m3,
+            viscosity_pa_s=viscosity_pa_s,
+            quality=quality,
+            report=report,
+            should_stop=should_stop,
+            check_steady=check_steady,
+        )
     return result
 
 
-def as_result(
+def solve_curve(
     domain: FlowDomain,
-    unit: Scales,
-    ladder: Climb,
     *,
-    flow_m3_s: float,
-    quality: Quality,
-    began: float,
-    progress: Progress,
-    check_steady: bool = False,
-) -> FlowResult:
-    """Return the last answer of a ladder in units, with bands and notes."""
-    last, band = ladder.answer, ladder.band
-    notes, steady = _notes(ladder, unit, quality), True
-    if check_steady:
-        steady, remark = _steadiness(ladder, progress)
-        notes.append(remark)
-    results = {
-        d: direction_result(domain, unit, last.problems[d], last.branches[d], last.reached[d]) for d in DIRECTIONS
-    }
-    assembler = last.problems["forward"].assembler
-    return FlowResult(
-        flow_m3_s=flow_m3_s,
-        reynolds=unit.reynolds,
-        forward=results["forward"],
-        reverse=results["reverse"],
-        error_band_percent=band.pressure_percent if band else None,
-        diodicity_band=band.diodicity if band else None,
-        modes=last.level.modes,
-        unknowns=int(assembler.layout.size),
-        triangles=int(assembler.mesh.t.shape[1]),
-        seconds=time.perf_counter() - began,
-        memory_mb=ladder.memory_mb,
-        quality=quality.name,
-        valid=last.complete and steady and band is not None,
-        notes=tuple(notes),
-    )
+    flows_m3_s: Sequence[float],
+    density_kg_m3: float,
+    viscosity_pa_s: float,
+    quality: str = "normal",
+    report: Callable[[int, int, str], None] | None = None,
+    should_stop: Callable[[], bool] | None = None,
+    memory_limit_mb: float = MEMORY_LIMIT_MB,
+    processes: int = 1,
+) -> list[FlowResult]:
+    """Solve both directions at several flows, each started from the flow before.
 
+    Parameters
+    ----------
+    domain : FlowDomain
+        Outline, depth, open ends, sections.
+    flows_m3_s : sequence of float
+        Volume flows [m^3/s], in any order.
+    density_kg_m3, viscosity_pa_s : float
+        Of the liquid [kg/m^3], [Pa s].
+    quality, report, should_stop, memory_limit_mb, processes
+        As for ``solve``.
 
-def _notes(ladder: Climb, unit: Scales, quality: Quality) -> list[str]:
-    last, band = ladder.answer, ladder.band
-    notes = [f"flow solve, {last.level.modes} depth modes, triangles of {last.level.size:.2g} channel widths"]
-    for direction in DIRECTIONS:
-        if not last.reached[direction]:
-            top = unit.on_hydraulic_diameter(last.branches[direction].reynolds)
-            notes.append(
-                f"no steady {direction} flow was found at Reynolds number {unit.reynolds:.4g}; "
-                f"the highest reached is {top:.4g}"
-            )
-    if last.complete and band is None:
-        notes.append("no error band: the coarser answer that it is taken from was not found")
-    if band and not good_enough(quality, band, last.diodicity):
-        notes.append("the tolerance of this quality is not met; see the error band, or choose a finer quality")
-    return notes
+    Returns
+    -------
+    list of FlowResult
+        In the order of ``flows_m3_s``. Beyond the highest flow with a steady answer the results are
+        not valid and say how far the branch went.
 
-
-def _steadiness(ladder: Climb, progress: Progress) -> tuple[bool, str]:
-    """Return whether no disturbance of either flow grows, and a sentence that says so."""
-    from core.flow.steadiness import growth_rate
-
-    last = ladder.answer
-    if not last.complete:
-        return False, "growth of disturbances was not looked for because no steady flow was found"
-    rates = {}
-    for direction in DIRECTIONS:
-        progress.tick(f"{direction} flow, growth of disturbances", advance=False)
-        rates[direction] = growth_rate(last.problems[direction], last.branches[direction])
-    worst = max(rates, key=rates.__getitem__)
-    measure = "per channel width travelled at mean speed (leading eigenvalue of the linearised flow)"
-    if rates[worst] > 0:
-        return (
-            False,
-            f"the {worst} flow would not stay steady: a small disturbance grows by {rates[worst]:.3g} {measure}",
+    Raises
+    ------
+    SolveError
+        As for ``solve``, or if no flow is given.
+    FlowStopped
+        If ``should_stop`` answered True.
+    """
+    with Ladder(domain, memory_limit_mb=memory_limit_mb, processes=processes) as ladder:
+        return solve_on(
+            ladder,
+            flows_m3_s=flows_m3_s,
+            density_kg_m3=density_kg_m3,
+            viscosity_pa_s=viscosity_pa_s,
+            quality=quality,
+            report=report,
+            should_stop=should_stop,
         )
-    return True, f"steady: the most persistent disturbance decays by {-rates[worst]:.3g} {measure}"
+
+
+def solve_on(
+    ladder: Ladder,
+    *,
+    flows_m3_s: Sequence[float],
+    density_kg_m3: float,
+    viscosity_pa_s: float,
+    quality: str,
+    report: Callable[[int, int, str], None] | None = None,
+    should_stop: Callable[[], bool] | None = None,
+    check_steady: bool = False,
+) -> list[FlowResult]:
+    """Solve several flows on a ladder; what it knows from a coarser quality is used.
+
+    Parameters and results are those of ``solve_curve``.
+    """
+    if not len(flows_m3_s):
+        raise SolveError("flows_m3_s is empty; give at least one flow")
+    began, wanted, ascending = time.perf_counter(), quality_named(quality), sorted(set(flows_m3_s))
+    liquid = {"density_kg_m3": density_kg_m3, "viscosity_pa_s": viscosity_pa_s}
+    units = [scales(ladder.domain, flow_m3_s=flow, **liquid) for flow in ascending]
+    progress = Progress(len(wanted.steps) * (1 + 2 * len(ascending)) + 1, report, should_stop)
+    climbs = ladder.climb([unit.width_reynolds for unit in units], wanted, progress)
+    solved = {}
+    for flow, unit, climb in zip(ascending, units, climbs, strict=True):
+        share = (time.perf_counter() - began) / len(ascending)
+        solved[flow] = as_result(
+            ladder, climb, unit, flow_m3_s=flow, seconds=share, progress=progress, check_steady=check_steady
+        )
+    progress.tick("done")
+    return [solved[flow] for flow in flows_m3_s]

@@ -41,12 +41,12 @@ def growth_rate(problem: FlowProblem, branch: Branch) -> float:
 
     factor = problem.factorised(branch.state, branch.reynolds)
     mass = problem.mass()
-    size = len(problem.free)
+    size = problem.assembler.layout.size
 
     def apply(vector: np.ndarray) -> np.ndarray:
         return -branch.reynolds * factor.solve(mass @ vector)
 
-    start = np.random.default_rng(1).normal(size=size)
+    start = np.random.default_rng(1).normal(size=size) * problem.is_free
     found = eigs(
         LinearOperator((size, size), matvec=apply, dtype=float),
         k=_WANTED,

@@ -162,9 +162,12 @@ def arc_data(contour: Contour) -> tuple[Floats, Floats, Floats, Floats]:
 
     Straight edges have radius infinity, centre and angles zero.
     """
-    a = contour.vertices_um
-    d = np.roll(a, -1, axis=0) - a
-    b = contour.bulges
+    return arcs_between(contour.vertices_um, np.roll(contour.vertices_um, -1, axis=0), contour.bulges)
+
+
+def arcs_between(start_um: Floats, end_um: Floats, bulges: Floats) -> tuple[Floats, Floats, Floats, Floats]:
+    """Return what ``arc_data`` does for edges given by their ends, shape (n, 2), and bulges, shape (n,)."""
+    a, d, b = start_um, end_um - start_um, bulges
     curved = b != 0.0
     safe = np.where(curved, b, 1.0)
     # centre = middle of the chord + normal * chord * (1 - b^2) / (4 b), left of the chord for b > 0

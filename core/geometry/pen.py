@@ -220,7 +220,7 @@ def _caps(point: tuple[float, float], half: float, incident: list[tuple[float, f
 
     A stroke at least as wide and long enough covers the half of the circle on its own side.
     """
-    # cut angles: where the walls of strokes of this very width touch the circle
+    # where the walls of strokes of this very width touch the circle
     marks = sorted(
         {
             round((heading + quarter) % (2 * pi), 12)
@@ -296,5 +296,7 @@ def _rounded(ring: Ring, r: float) -> Ring:
             corner = ring.curves[index].end
             angle = atan2(curve.end[1] - corner[1], curve.end[0] - corner[0])
             to = atan2(following.start[1] - corner[1], following.start[0] - corner[0])
-            result.append(arc_curve(Wall(-1, "round"), corner, r, angle, -((angle - to) % (2 * pi))))
+            turn = (angle - to) % (2 * pi)
+            if turn < pi:  # else the walls go on smoothly, and missed one another by a hair
+                result.append(arc_curve(Wall(-1, "round"), corner, r, angle, -turn))
     return Ring(tuple(result))

@@ -22,7 +22,7 @@ if TYPE_CHECKING:
     from core.geometry.curves import Ring
     from core.geometry.shape import ChannelShape
 
-_SAME_UM = 1e-4  # pieces that differ by less than a tenth of the finest mask grid are one shape
+SAME_UM = 1e-4  # pieces that differ by less than a tenth of the finest mask grid are one shape
 
 
 @dataclass(frozen=True)
@@ -219,4 +219,4 @@ def _chord(above: Ring, upper: Spot, below: Ring, lower: Spot) -> Floats:
 
 def _is_same(contour: Contour, vertices: Floats) -> bool:
     old = contour.vertices_um
-    return old.shape == vertices.shape and bool(np.allclose(old, vertices, rtol=0.0, atol=_SAME_UM))
+    return old.shape == vertices.shape and bool(np.allclose(old, vertices, rtol=0.0, atol=SAME_UM))

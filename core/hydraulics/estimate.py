@@ -68,6 +68,11 @@ class Score:
     valid: bool
     notes: tuple[str, ...]
 
+    @property
+    def highest_pressure_pa(self) -> float:
+        """The larger of both drops at the upper end of its error band: what the chip may have to hold [Pa]."""
+        return max(self.forward_pressure_pa, self.reverse_pressure_pa) * (1.0 + self.error_band_percent / 100.0)
+
     def as_dict(self) -> dict[str, object]:
         """Return the score with the keys used in machine-readable output."""
         return {**asdict(self), "notes": list(self.notes)}

@@ -1,4 +1,4 @@
-"""How far an area that was read from a file is from the channels that were meant."""
+"""How far an area that was read from a file is from the outlines that were meant."""
 
 from __future__ import annotations
 
@@ -10,16 +10,17 @@ import numpy as np
 from core.geometry.contour import arc_data
 
 if TYPE_CHECKING:
+    from collections.abc import Sequence
+
     from numpy.typing import NDArray
     from shapely.geometry.base import BaseGeometry
 
-    from core.geometry.contour import Contour, Floats
-    from core.masks.drawing import MaskDrawing
+    from core.geometry.contour import Contour, Floats, Outline
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Agreement:
-    """Measured differences between a file and the drawing.
+    """Measured differences between what one block of a file holds on one layer and what was meant.
 
     Attributes
     ----------
@@ -33,7 +34,7 @@ class Agreement:
         Largest distance of a point of the drawn outline from the outline in the file [um].
     edge_length_um : float
         Length of all edges in the file [um].
-    channel_count, island_count : int
+    part_count, island_count : int
         Separate areas, and holes in them.
     """
 
@@ -42,19 +43,19 @@ class Agreement:
     corner_error_um: float
     gap_um: float
     edge_length_um: float
-    channel_count: int
+    part_count: int
     island_count: int
 
 
-def compared(area: BaseGeometry, drawing: MaskDrawing, *, sagitta_um: float) -> Agreement:
-    """Measure an area from a file against the channels of a mask.
+def compared(area: BaseGeometry, outlines: Sequence[Outline], *, sagitta_um: float) -> Agreement:
+    """Measure an area from a file against outlines.
 
     Parameters
     ----------
     area : shapely geometry
         Union of all figures, islands taken out [um].
-    drawing : MaskDrawing
-        What was meant.
+    outlines : sequence of Outline
+        What was meant, at least one.
     sagitta_um : float
         How closely points are set on the drawn arcs: largest distance of their chords [um].
 
@@ -67,7 +68,7 @@ def compared(area: BaseGeometry, drawing: MaskDrawing, *, sagitta_um: float) -> 
 
     parts = [part for part in shapely.get_parts(area) if part.geom_type == "Polygon"]
     found = [np.asarray(ring.coords) for part in parts for ring in (part.exterior, *part.interiors)]
-    meant = _Meant(drawing, sagitta_um)
+    meant = _Meant(outlines, sagitta_um)
     x0, y0, x1, y1 = (float(value) for value in area.bounds)
     return Agreement(
         area_um2=float(area.area),
@@ -75,7 +76,7 @@ def compared(area: BaseGeometry, drawing: MaskDrawing, *, sagitta_um: float) -> 
         corner_error_um=meant.largest_distance(np.concatenate(found)) if found else np.inf,
         gap_um=float(_nearest(_chords(found), meant.points)[1].max()) if found else np.inf,
         edge_length_um=float(area.length),
-        channel_count=len(parts),
+        part_count=len(parts),
         island_count=sum(len(part.interiors) for part in parts),
     )
 
@@ -85,22 +86,20 @@ class _Meant:
 
     Parameters
     ----------
-    drawing : MaskDrawing
-        Channels and their places.
+    outlines : sequence of Outline
+        Areas of lines and arcs.
     sagitta_um : float
         Chord tolerance at which the nearest edge is looked for [um].
     """
 
-    def __init__(self, drawing: MaskDrawing, sagitta_um: float) -> None:
+    def __init__(self, outlines: Sequence[Outline], sagitta_um: float) -> None:
         lines: list[Floats] = []
         centres, radii = [], []
-        for channel in drawing.channels:
-            shift = np.array([channel.dx_um, channel.dy_um])
-            for contour in channel.outline.contours:
-                centre, radius, _, _ = arc_data(contour)
-                centres.append(centre + shift)
-                radii.append(radius)
-                lines += [line + shift for line in _edge_lines(contour, sagitta_um)]
+        for contour in (ring for outline in outlines for ring in outline.contours):
+            centre, radius, _, _ = arc_data(contour)
+            centres.append(centre)
+            radii.append(radius)
+            lines += _edge_lines(contour, sagitta_um)
         self.points = np.concatenate(lines)
         owner = np.repeat(np.arange(len(lines)), [len(line) - 1 for line in lines])
         self._centre, self._radius = np.concatenate(centres)[owner], np.concatenate(radii)[owner]

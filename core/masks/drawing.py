@@ -1,186 +1,198 @@
-"""What goes on each mask: channels by name, each with its place."""
+"""One mask drawing: a scene whose blocks have names that every reader takes, and what stands where in it."""
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections import Counter
+from functools import cached_property
 from typing import TYPE_CHECKING
 
+import numpy as np
+
+from core.chip.scene import Layer
 from core.errors import ExportError, GeometryError, shown
-from core.findings import Severity
-from core.geometry.pieces import cut_pieces
-from core.masks.names import safe_name, unique_safe_names
+from core.masks.grid import NM_PER_UM, on_grid_nm
+from core.masks.layers import LAYER_NAMES
+from core.masks.names import LONGEST_CELL_NAME, safe_name, unique_safe_names
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Iterator
 
+    from core.chip.scene import Block, PlacedBlock, Scene
     from core.geometry.contour import Outline
     from core.geometry.pieces import ChannelPieces
-    from core.geometry.shape import ChannelShape
-    from core.masks.options import MaskOptions
+
+    Bounds = tuple[float, float, float, float]
 
 LONGEST_CHANNEL_NAME = 19  # leaves room for "__STEP_A" within a cell name
-LONGEST_CHIP_NAME = 24
+LONGEST_STEM = 24
 LARGEST_COORDINATE_UM = 2e6  # 2 m either way: what mask writers take, and nearly what 32-bit nanometres reach
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class PlacedChannel:
-    """One channel on a mask.
-
-    Attributes
-    ----------
-    title : str
-        Name as the user typed it.
-    name : str
-        Safe name, unique on the mask.
-    shape : ChannelShape
-        A usable shape.
-    dx_um, dy_um : float
-        Shift on the mask, a whole number of nanometres [um].
-    """
-
-    title: str
-    name: str
-    shape: ChannelShape
-    dx_um: float = 0.0
-    dy_um: float = 0.0
-
-    @property
-    def outline(self) -> Outline:
-        """Outline before the shift."""
-        assert self.shape.outline is not None  # arranged() lets no other shape through
-        return self.shape.outline
-
-    def pieces(self, *, link_um: float) -> ChannelPieces:
-        """Return the channel cut into pieces without holes, before the shift.
-
-        Parameters
-        ----------
-        link_um : float
-            Length left free along the path at every cut [um].
-
-        Raises
-        ------
-        ExportError
-            If there is no place to cut.
-        """
-        try:
-            return cut_pieces(self.shape, link_um=link_um)
-        except GeometryError as error:
-            raise ExportError(
-                f"parameter set {shown(self.title)} cannot be cut into pieces: {error}; "
-                "raise loop_radius_um, or write DXF with islands as loops"
-            ) from error
-
-    @property
-    def bounds_um(self) -> tuple[float, float, float, float]:
-        """(x_min, y_min, x_max, y_max) on the mask [um]."""
-        x0, y0, x1, y1 = self.outline.bounds_um
-        return x0 + self.dx_um, y0 + self.dy_um, x1 + self.dx_um, y1 + self.dy_um
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
 class MaskDrawing:
-    """Everything on one mask.
-
-    Attributes
-    ----------
-    stem : str
-        Name of its files without ending, also of the top cell.
-    channels : tuple of PlacedChannel
-        From the top of the mask downwards.
-    """
-
-    stem: str
-    channels: tuple[PlacedChannel, ...]
-
-    @property
-    def bounds_um(self) -> tuple[float, float, float, float]:
-        """(x_min, y_min, x_max, y_max) of all channels [um]."""
-        x0, y0, x1, y1 = zip(*(channel.bounds_um for channel in self.channels), strict=True)
-        return min(x0), min(y0), max(x1), max(y1)
-
-    @property
-    def area_um2(self) -> float:
-        """Exact area of all channels [um^2]."""
-        return sum(channel.outline.area_um2 for channel in self.channels)
-
-    @property
-    def island_count(self) -> int:
-        """Number of islands of all channels."""
-        return sum(len(channel.outline.islands) for channel in self.channels)
-
-
-def arranged(
-    named_shapes: Sequence[tuple[str, ChannelShape]], *, chip_name: str, options: MaskOptions
-) -> tuple[MaskDrawing, ...]:
-    """Return the masks of a chip: one for each set, or one for all.
+    """A scene that is about to be written.
 
     Parameters
     ----------
-    named_shapes : sequence of (str, ChannelShape)
-        Name of each parameter set, and its shape.
-    chip_name : str
-        Name of the chip as the user typed it.
-    options : MaskOptions
-        Whether sets share a mask, and their clearance.
-
-    Returns
-    -------
-    tuple of MaskDrawing
-        In the order given; channels of one mask lie below one another.
+    scene : Scene
+        What stands on the mask.
+    stem : str
+        Name of the files without ending, also of the top cell; made safe.
+    grid_nm : int
+        Shifts are rounded to multiples of this [nm].
 
     Raises
     ------
     ExportError
-        If there is no shape, one cannot be used, or the drawing is larger than a mask can be.
+        If nothing is drawn, it is larger than a mask can be, or a figure that may not has islands.
     """
-    if not named_shapes:
-        raise ExportError("no parameter set was chosen for the masks; choose at least one")
-    for title, shape in named_shapes:
-        _check_usable(title, shape)
-    chip = safe_name(chip_name, longest=LONGEST_CHIP_NAME, fallback="CHIP")
-    titles = [title for title, _ in named_shapes]
-    shapes = [shape for _, shape in named_shapes]
-    names = unique_safe_names(titles, longest=LONGEST_CHANNEL_NAME, taken=(chip,))
-    if options.one_file_per_set:
-        stems = unique_safe_names([f"{chip}_{name}" for name in names], longest=LONGEST_CHIP_NAME, taken=names)
-        drawings = tuple(
-            MaskDrawing(stem=stem, channels=(PlacedChannel(title=title, name=name, shape=shape),))
-            for stem, title, name, shape in zip(stems, titles, names, shapes, strict=True)
+
+    def __init__(self, scene: Scene, *, stem: str, grid_nm: int = 1) -> None:
+        self.scene = scene
+        self.stem = safe_name(stem, longest=LONGEST_STEM, fallback="CHIP")
+        self.grid_nm = grid_nm
+        self.blocks = scene.blocks()
+        self._names = self._safe_names()
+        self._check()
+
+    def _safe_names(self) -> dict[int, str]:
+        names = {id(self.scene.top): self.stem}
+        taken = [self.stem, *LAYER_NAMES]
+        for block in self.blocks[:-1]:
+            longest = LONGEST_CELL_NAME if block.body is None else LONGEST_CHANNEL_NAME
+            (name,) = unique_safe_names([block.name], longest=longest, taken=taken)
+            names[id(block)] = name
+            taken.append(name)
+        return names
+
+    def _check(self) -> None:
+        for block in self.blocks:
+            if any(figure.outline.islands for figure in block.figures):
+                raise ExportError(f"block {shown(block.name)} has a figure with a hole; only channels may have islands")
+        if not self.layers:
+            raise ExportError(f"nothing is drawn on mask {self.stem}; place a channel first")
+        reach = max(abs(value) for value in self.bounds_um)
+        if reach > LARGEST_COORDINATE_UM:
+            raise ExportError(
+                f"mask {self.stem} would reach {reach / 1000.0:.0f} mm from its origin; "
+                f"allowed: {LARGEST_COORDINATE_UM / 1000.0:.0f} mm; use fewer stages or shorter leads"
+            )
+
+    def name_of(self, block: Block) -> str:
+        """Return the safe name of a block, unique and unlike any layer; the top has the name of the files."""
+        return self._names[id(block)]
+
+    def shift_nm(self, placed: PlacedBlock) -> tuple[int, int]:
+        """Return where a block is placed, on the grid [nm]."""
+        dx, dy = on_grid_nm(np.array([placed.dx_um, placed.dy_um]), grid_nm=self.grid_nm)
+        return int(dx), int(dy)
+
+    def placings(self) -> Iterator[tuple[Block, int, int]]:
+        """Yield every block as often as it stands on the mask, with its place [nm]; the top first."""
+        pending = [(self.scene.top, 0, 0)]
+        while pending:
+            block, x, y = pending.pop()
+            yield block, x, y
+            for placed in reversed(block.placed):
+                dx, dy = self.shift_nm(placed)
+                pending.append((placed.block, x + dx, y + dy))
+
+    @cached_property
+    def _extents(self) -> dict[int, dict[Layer, Bounds]]:
+        """Bounds on each layer of everything in each block [um]."""
+        found: dict[int, dict[Layer, Bounds]] = {}
+        for block in self.blocks:
+            boxes: list[tuple[Layer, Bounds]] = [
+                (layer, outline.bounds_um) for layer in Layer for outline in own_outlines(block, layer)
+            ]
+            for placed in block.placed:
+                dx, dy = (value / NM_PER_UM for value in self.shift_nm(placed))
+                for layer, (x0, y0, x1, y1) in found[id(placed.block)].items():
+                    boxes.append((layer, (x0 + dx, y0 + dy, x1 + dx, y1 + dy)))
+            found[id(block)] = {
+                layer: around([box for other, box in boxes if other is layer])
+                for layer in dict.fromkeys(layer for layer, _ in boxes)
+            }
+        return found
+
+    def extents_of(self, block: Block) -> dict[Layer, Bounds]:
+        """Return the bounds of a block and all that stands in it, layer by layer [um]."""
+        return self._extents[id(block)]
+
+    @property
+    def layers(self) -> tuple[Layer, ...]:
+        """What is drawn on, in the order of ``Layer``."""
+        return tuple(layer for layer in Layer if layer in self.extents_of(self.scene.top))
+
+    @property
+    def bounds_um(self) -> Bounds:
+        """(x_min, y_min, x_max, y_max) of everything [um]."""
+        return around(list(self.extents_of(self.scene.top).values()))
+
+    @cached_property
+    def copies(self) -> dict[int, int]:
+        """How often each block stands on the mask, by its identity."""
+        counts: Counter[int] = Counter({id(self.scene.top): 1})
+        for block in reversed(self.blocks):
+            for placed in block.placed:
+                counts[id(placed.block)] += counts[id(block)]
+        return dict(counts)
+
+    def copies_of(self, block: Block) -> int:
+        """Return how often a block stands on the mask."""
+        return self.copies[id(block)]
+
+    @property
+    def channel_count(self) -> int:
+        """Number of channels on the mask, copies counted."""
+        return sum(self.copies_of(block) for block in self.blocks if block.body is not None)
+
+    @property
+    def island_count(self) -> int:
+        """Number of islands of all channels."""
+        return sum(self.copies_of(b) * len(b.body.outline.islands) for b in self.blocks if b.body is not None)
+
+    @property
+    def area_um2(self) -> float:
+        """Exact area of everything on the channels' layer [um^2]."""
+        return sum(
+            self.copies_of(block) * outline.area_um2
+            for block in self.blocks
+            for outline in own_outlines(block, Layer.CHANNELS)
         )
-    else:
-        drawings = (MaskDrawing(stem=chip, channels=_stacked(titles, names, shapes, options.clearance_um)),)
-    for drawing in drawings:
-        _check_size(drawing)
-    return drawings
 
 
-def _stacked(
-    titles: Sequence[str], names: Sequence[str], shapes: Sequence[ChannelShape], clearance_um: float
-) -> tuple[PlacedChannel, ...]:
-    channels: list[PlacedChannel] = []
-    for title, name, shape in zip(titles, names, shapes, strict=True):
-        channel = PlacedChannel(title=title, name=name, shape=shape)
-        if channels:
-            room = channels[-1].bounds_um[1] - clearance_um - channel.bounds_um[3]
-            channel = PlacedChannel(title=title, name=name, shape=shape, dy_um=float(room // 1.0))
-        channels.append(channel)
-    return tuple(channels)
+def own_outlines(block: Block, layer: Layer) -> tuple[Outline, ...]:
+    """Return what a block itself draws on a layer, without the blocks that stand in it."""
+    drawn = tuple(figure.outline for figure in block.figures if figure.layer is layer)
+    return (block.body.outline, *drawn) if block.body is not None and layer is Layer.CHANNELS else drawn
 
 
-def _check_usable(title: str, shape: ChannelShape) -> None:
-    if shape.outline is not None:
-        return
-    errors = [finding.message for finding in shape.findings if finding.severity is Severity.ERROR]
-    reason = errors[0] if errors else "its shape cannot be built; change its parameters"
-    raise ExportError(f"parameter set {shown(title)} cannot be put on a mask: {reason}")
+def around(boxes: list[Bounds]) -> Bounds:
+    """Return the bounds of several bounds, (x_min, y_min, x_max, y_max)."""
+    x0, y0, x1, y1 = zip(*boxes, strict=True)
+    return min(x0), min(y0), max(x1), max(y1)
 
 
-def _check_size(drawing: MaskDrawing) -> None:
-    reach = max(abs(value) for value in drawing.bounds_um)
-    if reach > LARGEST_COORDINATE_UM:
+def pieces_of(block: Block, *, link_um: float) -> ChannelPieces:
+    """Return the channel of a block cut into pieces without holes.
+
+    Parameters
+    ----------
+    block : Block
+        A block with a body.
+    link_um : float
+        Length left free along the path at every cut [um].
+
+    Raises
+    ------
+    ExportError
+        If there is no place to cut.
+    """
+    assert block.body is not None
+    try:
+        return block.body.pieces(link_um=link_um)
+    except GeometryError as error:
         raise ExportError(
-            f"mask {drawing.stem} would reach {reach / 1000.0:.0f} mm from its origin; "
-            f"allowed: {LARGEST_COORDINATE_UM / 1000.0:.0f} mm; use fewer stages or shorter leads"
-        )
+            f"channel {shown(block.title or block.name)} cannot be cut into pieces: {error}; "
+            "raise loop_radius_um, or write DXF with islands as loops"
+        ) from error

@@ -1,106 +1,34 @@
-"""DXF files with true arcs: closed polylines of zero width in the model space, in millimetres."""
+"""DXF files with true arcs: closed polylines of zero width, and inserts that only shift, in millimetres."""
 
 from __future__ import annotations
 
 from contextlib import contextmanager
-from dataclasses import dataclass
 from io import StringIO
 from typing import TYPE_CHECKING
 
 import numpy as np
 
-from core.geometry.contour import Contour
-from core.masks.arcs import with_short_arcs
-from core.masks.options import DxfVersion, IslandMode
+from core.masks.options import DxfVersion
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
     from ezdxf.document import Drawing
+    from ezdxf.layouts.base import BaseLayout
 
-    from core.geometry.contour import Floats
-    from core.masks.drawing import MaskDrawing, PlacedChannel
-    from core.masks.options import MaskOptions
+    from core.masks.dxf_blocks import DxfBlock
 
 MM_PER_UM = 1e-3
 _MILLIMETRES, _METRIC = 4, 1  # values of $INSUNITS and $MEASUREMENT
-_SHORTEST_EDGE_UM = 1e-6  # shorter ones are one point written twice
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class DxfRing:
-    """One closed polyline.
-
-    Attributes
-    ----------
-    layer : str
-        Name of its layer.
-    vertices_um : array, shape (n, 2)
-        Corners on the mask, the first not repeated [um].
-    bulges : array, shape (n,)
-        tan(sweep/4) of the edge that starts at each vertex.
-    """
-
-    layer: str
-    vertices_um: Floats
-    bulges: Floats
-
-
-def dxf_rings(drawing: MaskDrawing, options: MaskOptions) -> tuple[DxfRing, ...]:
-    """Return the closed polylines of a mask.
-
-    Parameters
-    ----------
-    drawing : MaskDrawing
-        Channels and their places.
-    options : MaskOptions
-        Whether islands are left out by cutting into pieces or drawn as loops on their own layer.
-    """
-    channel_layer, island_layer = options.channel_layer.dxf_name, options.island_layer.dxf_name
-    rings: list[DxfRing] = []
-    for channel in drawing.channels:
-        if options.islands is IslandMode.PIECES:
-            rings += [_ring(channel_layer, *piece) for piece in _butting_pieces(channel)]
-            continue
-        shift = np.array([channel.dx_um, channel.dy_um])
-        for k, contour in enumerate(channel.outline.contours):
-            rings.append(_ring(island_layer if k else channel_layer, contour.vertices_um + shift, contour.bulges))
-    return tuple(rings)
-
-
-def _butting_pieces(channel: PlacedChannel) -> list[tuple[Floats, Floats]]:
-    """Return (vertices, bulges) of each piece; neighbours share the very same corners."""
-    parts = channel.pieces(link_um=0.0)
-    shift = np.array([channel.dx_um, channel.dy_um])
-    found: list[tuple[Floats, Floats]] = []
-    leaving: list[Floats] = []
-    for placed in parts.placed:
-        piece = parts.pieces[placed.piece]
-        place = shift + np.array([placed.dx_um, placed.dy_um])
-        vertices = piece.contour.vertices_um + place
-        for arriving, left in zip(piece.entry, leaving, strict=True):
-            for corner in arriving:
-                nearest = left[np.argmin(np.hypot(*(left - corner - place).T))]
-                vertices[np.all(piece.contour.vertices_um == corner, axis=1)] = nearest
-        leaving = [chord + place for chord in piece.exit]
-        found.append((vertices, piece.contour.bulges))
-    return found
-
-
-def _ring(layer: str, vertices_um: Floats, bulges: Floats) -> DxfRing:
-    ahead = np.roll(vertices_um, -1, axis=0) - vertices_um
-    is_edge = np.hypot(ahead[:, 0], ahead[:, 1]) > _SHORTEST_EDGE_UM
-    short = with_short_arcs(Contour(vertices_um[is_edge], bulges[is_edge]))
-    return DxfRing(layer=layer, vertices_um=short.vertices_um, bulges=short.bulges)
-
-
-def dxf_text(rings: Sequence[DxfRing], *, bounds_um: tuple[float, float, float, float], version: DxfVersion) -> str:
+def dxf_text(blocks: Sequence[DxfBlock], *, bounds_um: tuple[float, float, float, float], version: DxfVersion) -> str:
     """Return a whole DXF file.
 
     Parameters
     ----------
-    rings : sequence of DxfRing
-        Everything that is drawn.
+    blocks : sequence of DxfBlock
+        Everything that is drawn, each block before those it stands in; the last is the model space.
     bounds_um : tuple of float
         (x_min, y_min, x_max, y_max) for the header [um].
     version : DxfVersion
@@ -114,16 +42,25 @@ def dxf_text(rings: Sequence[DxfRing], *, bounds_um: tuple[float, float, float, 
     stream = StringIO()
     with _fixed_stamps():
         document = _empty_document(version)
-        for layer in dict.fromkeys(ring.layer for ring in rings):
+        for layer in dict.fromkeys(ring.layer for block in blocks for ring in block.rings):
             document.layers.add(layer)
-        space = document.modelspace()
-        add = space.add_polyline2d if version is DxfVersion.R12 else space.add_lwpolyline
-        for ring in rings:
-            points = np.column_stack((ring.vertices_um * MM_PER_UM + 0.0, ring.bulges)).tolist()
-            add(points, format="xyb", close=True, dxfattribs={"layer": ring.layer})
+        *inner, top = blocks
+        for block in inner:
+            _fill(document.blocks.new(block.name), block, version)
+        _fill(document.modelspace(), top, version)
         _set_extents(document, bounds_um)
         document.write(stream)
     return stream.getvalue()
+
+
+def _fill(space: BaseLayout, block: DxfBlock, version: DxfVersion) -> None:
+    add = space.add_polyline2d if version is DxfVersion.R12 else space.add_lwpolyline
+    for ring in block.rings:
+        points = np.column_stack((ring.vertices_um * MM_PER_UM + 0.0, ring.bulges)).tolist()
+        add(points, format="xyb", close=True, dxfattribs={"layer": ring.layer})
+    for insert in block.inserts:
+        place = (insert.dx_um * MM_PER_UM, insert.dy_um * MM_PER_UM)
+        space.add_blockref(insert.name, place, dxfattribs={"layer": insert.layer})
 
 
 def _empty_document(version: DxfVersion) -> Drawing:

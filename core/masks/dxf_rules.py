@@ -1,24 +1,27 @@
-"""What a DXF mask must obey beyond its figures: version, units, extents, layers, kinds of entity."""
+"""What a DXF mask must obey beyond its figures: version, units, extents, layers, blocks, kinds of entity."""
 
 from __future__ import annotations
 
+import re
+from itertools import pairwise
 from math import pi, tan
 from typing import TYPE_CHECKING
 
-from core.masks.figure_rules import figure_problems
 from core.masks.layers import DXF_LAYER_PATTERN
 from core.masks.options import DxfVersion
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-    from core.masks.read_dxf import ReadDxf, ReadLoop
+    from core.masks.read_dxf import ReadDxf, ReadInsert
+    from core.masks.read_loop import ReadLoop
 
 MOST_VERTICES = 128_000
 LARGEST_BULGE = tan(pi / 8.0)  # a quarter turn; several readers draw arcs beyond a half turn wrongly
 _CODES = {DxfVersion.R2000: "AC1015", DxfVersion.R12: "AC1009"}
 _ALWAYS_THERE = {"0"}  # the format demands this layer; nothing may be drawn on it
-_GRAIN_MM = 1e-9
+MOST_BLOCKS, DEEPEST_INSERTS = 8192, 16
+BLOCK_NAME = re.compile(r"[A-Z0-9_]{1,31}")  # the longest that R12 takes
 _SLACK = 1e-9
 
 
@@ -28,9 +31,9 @@ def dxf_problems(
     version: DxfVersion,
     layers: Sequence[str],
     bounds_mm: tuple[float, float, float, float],
-    sagitta_mm: float,
+    is_flat: bool = False,
 ) -> list[str]:
-    """Return every broken rule of a DXF mask.
+    """Return every broken rule of a DXF mask but those of figures and what they cover.
 
     Parameters
     ----------
@@ -39,11 +42,11 @@ def dxf_problems(
     version : DxfVersion
         Version it should have.
     layers : sequence of str
-        Layers that may be drawn on.
+        Layers that must be drawn on, and no others.
     bounds_mm : tuple of float
         (x_min, y_min, x_max, y_max) that the header should give [mm].
-    sagitta_mm : float
-        Chord tolerance at which crossings are looked for [mm].
+    is_flat : bool
+        No blocks are allowed.
 
     Returns
     -------
@@ -51,18 +54,75 @@ def dxf_problems(
         One sentence for each kind of problem; empty when all rules are kept.
     """
     problems = _header_problems(read, version, bounds_mm)
-    problems += [f"entity {kind}; only closed polylines are allowed" for kind in read.others]
+    problems += [f"entity {kind}; only closed polylines and inserts are allowed" for kind in read.others]
+    drawn = {loop.layer for loop in read.loops}
     for name in read.layers:
         if name not in _ALWAYS_THERE and name not in layers:
             problems.append(f"layer {name!r} is not used")
+    problems += [f"layer {name}: nothing is drawn on the layer" for name in layers if name not in drawn]
     for loop in read.loops:
         problems += _loop_problems(loop, layers)
-    if problems:
-        return list(dict.fromkeys(problems))
-    for layer in layers:
-        rings = [loop.chords(sagitta_mm) for loop in read.loops if loop.layer == layer]
-        problems += [f"layer {layer}: {text}" for text in figure_problems(rings, grain=_GRAIN_MM)]
+    problems += _block_problems(read, layers, is_flat=is_flat)
+    return list(dict.fromkeys(problems))
+
+
+def order_problems(read: ReadDxf, order: Sequence[str]) -> list[str]:
+    """Return what is wrong with the order of layers in a flat file for a cutter.
+
+    Parameters
+    ----------
+    read : ReadDxf
+        The file, taken apart.
+    order : sequence of str
+        Layers in the order of working.
+    """
+    for first, second in pairwise(loop.layer for loop in read.model.loops):
+        if order.index(first) > order.index(second):
+            return [f"a figure of layer {first} comes before one of layer {second}"]
+    return []
+
+
+def _block_problems(read: ReadDxf, layers: Sequence[str], *, is_flat: bool) -> list[str]:
+    problems = [f"block {name} is defined twice" for name in read.repeated_names]
+    problems += [f"block {name} has the name of a layer" for name in read.blocks if name in read.layers]
+    problems += [
+        f"block name {name!r} is not safe everywhere" for name in read.blocks if not BLOCK_NAME.fullmatch(name)
+    ]
+    problems += [f"block {name} has a base point of its own" for name, b in read.blocks.items() if b.base != (0.0, 0.0)]
+    inserts = [insert for space in read.spaces for insert in space.inserts]
+    for insert in inserts:
+        problems += _insert_problems(insert, read, layers)
+    if is_flat and (read.blocks or inserts):
+        problems.append("blocks in a file that should be flat")
+    used = {insert.name for insert in inserts}
+    problems += [f"block {name} is not used" for name in read.blocks if name not in used]
+    if len(read.blocks) > MOST_BLOCKS:
+        problems.append(f"{len(read.blocks)} blocks, more than {MOST_BLOCKS}")
+    if not problems and _depth(read) > DEEPEST_INSERTS:
+        problems.append(f"inserts are more than {DEEPEST_INSERTS} levels deep")
     return problems
+
+
+def _insert_problems(insert: ReadInsert, read: ReadDxf, layers: Sequence[str]) -> list[str]:
+    problems = []
+    if insert.name not in read.blocks:
+        problems.append(f"insert of block {insert.name}, which is not in the file")
+    if not insert.is_plain:
+        problems.append(f"insert of {insert.name} that does more than shift")
+    if insert.layer not in layers:
+        problems.append(f"insert of {insert.name} on layer {insert.layer!r}; should be on {', '.join(layers)}")
+    if insert.in_paper_space:
+        problems.append("insert in paper space")
+    return problems
+
+
+def _depth(read: ReadDxf) -> int:
+    """Return the number of levels of inserts; one that leads back to itself counts as too deep."""
+    level, names = 0, {insert.name for insert in read.model.inserts}
+    while names and level <= DEEPEST_INSERTS:
+        level += 1
+        names = {insert.name for name in names for insert in read.blocks[name].inserts}
+    return level
 
 
 def _header_problems(read: ReadDxf, version: DxfVersion, bounds_mm: tuple[float, float, float, float]) -> list[str]:

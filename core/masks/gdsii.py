@@ -31,15 +31,13 @@ _STAMP = struct.pack(">12h", *(2000, 1, 1, 0, 0, 0) * 2)
 _NANOMETRES = bytes.fromhex("3E4189374BC6A7F0" + "3944B82FA09B5A54")
 
 
-def gdsii_bytes(cells: Sequence[GdsiiCell], *, layer: int, library: str) -> bytes:
+def gdsii_bytes(cells: Sequence[GdsiiCell], *, library: str) -> bytes:
     """Return a whole GDSII file.
 
     Parameters
     ----------
     cells : sequence of GdsiiCell
-        Cells in the order of the file.
-    layer : int
-        Layer of all polygons; the data type is 0.
+        Cells in the order of the file; the data type of every polygon is 0.
     library : str
         Name of the library, ASCII.
 
@@ -48,19 +46,20 @@ def gdsii_bytes(cells: Sequence[GdsiiCell], *, layer: int, library: str) -> byte
     ExportError
         If a coordinate does not fit into 32 bits.
     """
-    return b"".join(_records(cells, layer, library))
+    return b"".join(_records(cells, library))
 
 
-def _records(cells: Sequence[GdsiiCell], layer: int, library: str) -> Iterator[bytes]:
+def _records(cells: Sequence[GdsiiCell], library: str) -> Iterator[bytes]:
     yield _record(_HEADER, _VERSION)
     yield _record(_BGNLIB, _STAMP)
     yield _record(_LIBNAME, _text(library))
     yield _record(_UNITS, _NANOMETRES)
-    head = _record(_BOUNDARY) + _record(_LAYER, struct.pack(">h", layer)) + _record(_DATATYPE, b"\x00\x00")
+    boundary, datatype = _record(_BOUNDARY), _record(_DATATYPE, b"\x00\x00")
     for cell in cells:
         yield _record(_BGNSTR, _STAMP) + _record(_STRNAME, _text(cell.name))
-        for ring in cell.rings_nm:
-            yield head + _record(_XY, _pairs(np.concatenate((ring, ring[:1])), cell.name)) + _record(_ENDEL)
+        for layer, ring in cell.rings_nm:
+            yield boundary + _record(_LAYER, struct.pack(">h", layer)) + datatype
+            yield _record(_XY, _pairs(np.concatenate((ring, ring[:1])), cell.name)) + _record(_ENDEL)
         for name, x, y in cell.references:
             place = _pairs(np.array([[x, y]]), cell.name)
             yield _record(_SREF) + _record(_SNAME, _text(name)) + _record(_XY, place) + _record(_ENDEL)
@@ -79,5 +78,5 @@ def _text(text: str) -> bytes:
 
 def _pairs(points: Whole, name: str) -> bytes:
     if np.abs(points).max() > 2**31 - 1:
-        raise ExportError(f"cell {name} reaches beyond 2.1 m, which GDSII cannot hold; make the channel shorter")
+        raise ExportError(f"cell {name} reaches beyond 2.1 m, which GDSII cannot hold; make the drawing smaller")
     return points.astype(">i4").tobytes()

@@ -7,10 +7,11 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from core.masks.figure_rules import figure_problems
 from core.masks.read_gdsii import OPENING
 
 if TYPE_CHECKING:
+    from collections.abc import Collection
+
     from core.masks.read_gdsii import ReadElement, ReadGdsii
 
 CELL_NAME = re.compile(r"[A-Z0-9_]{1,27}")
@@ -21,8 +22,8 @@ FURTHEST_NM = 2_000_000_000
 _EXACT = 1e-12
 
 
-def gdsii_problems(read: ReadGdsii, *, top: str, layer: int) -> list[str]:
-    """Return every broken rule of a GDSII mask.
+def gdsii_problems(read: ReadGdsii, *, top: str, layers: Collection[int], grid_nm: int = 1) -> list[str]:
+    """Return every broken rule of a GDSII mask but those of figures and what they cover.
 
     Parameters
     ----------
@@ -30,8 +31,10 @@ def gdsii_problems(read: ReadGdsii, *, top: str, layer: int) -> list[str]:
         The file, taken apart.
     top : str
         Name that the one top cell should have.
-    layer : int
-        Layer that all figures should be on.
+    layers : collection of int
+        Layers that may be drawn on.
+    grid_nm : int
+        Every corner and place should be a multiple of it [nm].
 
     Returns
     -------
@@ -41,13 +44,22 @@ def gdsii_problems(read: ReadGdsii, *, top: str, layer: int) -> list[str]:
     problems = _library_problems(read) + _hierarchy_problems(read, top)
     for name, elements in read.cells.items():
         for element in elements:
-            problems += [f"cell {name}: {text}" for text in _element_problems(element, layer)]
-    if problems:
-        return list(dict.fromkeys(problems))
-    rings = read.figures(top)
-    if any(np.abs(ring).max(initial=0) > FURTHEST_NM for ring in rings):
-        return ["figures further than 2 m from the origin"]
-    return figure_problems([ring.astype(float) for ring in rings], grain=0.0)
+            problems += [f"cell {name}: {text}" for text in _element_problems(element, layers, grid_nm)]
+    if not problems and _reach_nm(read, top, {}) > FURTHEST_NM:
+        problems.append("figures further than 2 m from the origin")
+    return list(dict.fromkeys(problems))
+
+
+def _reach_nm(read: ReadGdsii, name: str, known: dict[str, int]) -> int:
+    """Return a bound on how far from its origin anything in a cell lies [nm]."""
+    if name not in known:
+        known[name] = 0
+        for element in read.cells[name]:
+            reach = int(np.abs(element.points_nm).max(initial=0))
+            if element.target:
+                reach += _reach_nm(read, element.target, known)
+            known[name] = max(known[name], reach)
+    return known[name]
 
 
 def _library_problems(read: ReadGdsii) -> list[str]:
@@ -79,15 +91,25 @@ def _hierarchy_problems(read: ReadGdsii, top: str) -> list[str]:
     return problems
 
 
-def _element_problems(element: ReadElement, layer: int) -> list[str]:
+def _element_problems(element: ReadElement, layers: Collection[int], grid_nm: int) -> list[str]:
+    problems = _kind_problems(element, layers)
+    if (element.points_nm % grid_nm).any():
+        problems.append(f"{element.kind} with a corner or place off the grid of {grid_nm} nm")
+    return problems
+
+
+def _kind_problems(element: ReadElement, layers: Collection[int]) -> list[str]:
     if element.kind == "SREF":
         problems = [f"reference with {change}; only shifts are allowed" for change in element.changes]
         return problems if len(element.points_nm) == 1 else [*problems, "reference without one place"]
     if element.kind != "BOUNDARY":
         return [f"element {element.kind}; only polygons and single references are allowed"]
     problems = []
-    if (element.layer, element.datatype) != (layer, 0):
-        problems.append(f"figure on layer {element.layer}, data type {element.datatype}; should be {layer}, 0")
+    if element.layer not in layers or element.datatype != 0:
+        problems.append(
+            f"figure on layer {element.layer}, data type {element.datatype}; "
+            f"should be {' or '.join(map(str, sorted(layers)))}, 0"
+        )
     pairs = element.points_nm
     if len(pairs) < 4 or (pairs[0] != pairs[-1]).any():
         problems.append("open figure")

@@ -1,4 +1,4 @@
-"""Rings on the 1 nm grid: rounded, tidied, and cut to the size old readers take."""
+"""Rings on the drawing grid: rounded, tidied, and cut to the size old readers take."""
 
 from __future__ import annotations
 
@@ -22,9 +22,9 @@ _BATCH = 64  # cuts looked at together
 _SHARE = 4  # a cut leaves at least a quarter of the vertices on either side
 
 
-def on_grid_nm(points_um: Floats) -> Whole:
-    """Return points rounded to whole nanometres, any shape."""
-    return np.rint(np.asarray(points_um) * NM_PER_UM).astype(np.int64)
+def on_grid_nm(points_um: Floats, *, grid_nm: int = 1) -> Whole:
+    """Return points rounded to multiples of the grid, any shape [nm]."""
+    return np.rint(np.asarray(points_um) * (NM_PER_UM / grid_nm)).astype(np.int64) * grid_nm
 
 
 def tidy_ring(ring_nm: Whole) -> Whole:
@@ -81,7 +81,7 @@ def split_ring(ring_nm: Whole, *, most_vertices: int = MOST_VERTICES) -> list[Wh
     from shapely import Polygon
 
     if len(ring_nm) < 3 or not Polygon(ring_nm).is_valid:
-        raise ExportError("touches itself on the 1 nm grid")
+        raise ExportError("touches itself on the drawing grid")
     pending, done = [ring_nm], []
     while pending:
         ring = pending.pop()

@@ -1,10 +1,11 @@
-"""The layers of a mask: how each is called in either format, and what is drawn on it."""
+"""The layers of the files: how each is called in either format, and what is drawn on it."""
 
 from __future__ import annotations
 
 import re
 from dataclasses import dataclass
 
+from core.chip.scene import Layer
 from core.errors import DesignValueError
 
 # The strictest mask shops take eight characters; this satisfies them all.
@@ -53,5 +54,16 @@ class MaskLayer:
             )
 
 
-CHANNEL_LAYER = MaskLayer(dxf_name="L1_CHAN", gdsii_number=1, meaning="the channel: what is to become a channel")
-ISLAND_LAYER = MaskLayer(dxf_name="L1_ISLE", gdsii_number=2, meaning="the islands, to be taken out of the channel")
+LAYERS: dict[Layer, MaskLayer] = {
+    Layer.CHANNELS: MaskLayer(dxf_name="L1_CHAN", gdsii_number=1, meaning="the channels: what is to become a channel"),
+    Layer.PORTS: MaskLayer(dxf_name="PORTS", gdsii_number=3, meaning="round holes for the tubing"),
+    Layer.MARKS: MaskLayer(dxf_name="MARKS", gdsii_number=4, meaning="alignment marks, corners, scale and test bars"),
+    Layer.TEXT: MaskLayer(dxf_name="TEXT", gdsii_number=5, meaning="lettering, as closed shapes"),
+    Layer.CUT: MaskLayer(dxf_name="CUT", gdsii_number=6, meaning="where the chip is cut out"),
+}
+CHANNEL_LAYER = LAYERS[Layer.CHANNELS]
+ISLAND_LAYER = MaskLayer(dxf_name="L1_ISLE", gdsii_number=2, meaning="the islands, to be taken out of the channels")
+LAYER_NAMES = tuple(layer.dxf_name for layer in (*LAYERS.values(), ISLAND_LAYER))
+NAME_OF_NUMBER = {layer.gdsii_number: layer.dxf_name for layer in (*LAYERS.values(), ISLAND_LAYER)}
+# What a cutter does first: writing on the sheet, then holes, then channels; the chip is cut free last.
+WORKING_ORDER = (Layer.TEXT, Layer.MARKS, Layer.PORTS, Layer.CHANNELS, Layer.CUT)

@@ -2,32 +2,95 @@
 
 from __future__ import annotations
 
-import hashlib
+from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from core.masks.drawing import LONGEST_CHIP_NAME, MaskDrawing, arranged
-from core.masks.dxf import dxf_rings, dxf_text
-from core.masks.gdsii import gdsii_bytes
-from core.masks.gdsii_cells import gdsii_cells
+from core.masks.bare import bare_drawings
+from core.masks.drawing import LONGEST_STEM, MaskDrawing
+from core.masks.mask_files import kept, planned_files, written_mask, written_picture
 from core.masks.names import safe_name
-from core.masks.note import note_text
-from core.masks.options import DxfVersion, IslandMode, MaskFormat, MaskOptions
-from core.masks.placing import put_in_place, told_plainly, workshop, write_durably
-from core.masks.preview import preview_svg
-from core.masks.proof import drawn_layers, prove_dxf, prove_gdsii
+from core.masks.options import CopyMode, IslandMode, MaskFormat, MaskOptions
+from core.masks.order_facts import SheetFacts
+from core.masks.package import archive_bytes, checksum_list, prove_archive
+from core.masks.placing import put_in_place, told_plainly, workshop
 from core.masks.report import MaskFile, MaskSetReport, MaskSummary, PlannedFile
+from core.masks.sheet import order_sheet
+from core.masks.sheet_pdf import sheet_pdf
+from core.masks.sheet_text import sheet_text
 
 if TYPE_CHECKING:
     import os
     from collections.abc import Callable, Sequence
 
+    from core.chip.scene import Scene
     from core.geometry.shape import ChannelShape
+
+    Report = Callable[[int, int, str], None]
 
 _ISLAND_WORDS = {
     IslandMode.PIECES: "the channel is cut into butting pieces without holes",
     IslandMode.LOOPS: "islands are loops on their own layer, to be taken out by NOT",
+    IslandMode.NESTED: "islands are loops within loops, inner ones first, for cutting",
 }
+_WHOLE_SET = (("_ORDER.txt", "text"), ("_ORDER.pdf", "PDF"), ("_SHA256.txt", "checksums"), (".zip", "ZIP"))
+
+
+def write_scene(
+    scene: Scene,
+    *,
+    folder: str | os.PathLike[str],
+    stem: str,
+    options: MaskOptions,
+    facts: SheetFacts,
+    report: Report | None = None,
+) -> MaskSetReport:
+    """Write the mask set of a chip or plate: mask files, pictures, order sheet, checksums and an archive.
+
+    Every mask is read back with readers that share nothing with the writers and compared with
+    the scene before any file gets its final name. Files of the same name are replaced.
+
+    Parameters
+    ----------
+    scene : Scene
+        What stands on the mask, already enlarged if at all.
+    folder : path
+        Where the files go; made if missing.
+    stem : str
+        Name of the files without ending, for instance project and revision; made safe.
+    options : MaskOptions
+        Formats, tone and the rest; see ``options_of``.
+    facts : SheetFacts
+        What the order sheet says besides.
+    report : callable, optional
+        Called before each piece of work with step, number of steps and what is being done. Whatever it
+        raises ends the work and leaves no file.
+
+    Returns
+    -------
+    MaskSetReport
+        Files with sizes, checksums and proofs.
+
+    Raises
+    ------
+    ExportError
+        If a shape cannot be held, a file cannot be written, or one does not read back as drawn.
+        The folder is then as it was before.
+    """
+    drawing = MaskDrawing(scene, stem=stem, grid_nm=options.grid_nm)
+    return _write([drawing], folder=Path(folder), stem=drawing.stem, options=options, facts=facts, report=report)
+
+
+def scene_summary(scene: Scene, *, stem: str, options: MaskOptions) -> MaskSummary:
+    """Return what ``write_scene`` would write, without writing it.
+
+    Raises
+    ------
+    ExportError
+        If a shape cannot be held.
+    """
+    drawing = MaskDrawing(scene, stem=stem, grid_nm=options.grid_nm)
+    return _summary([drawing], stem=drawing.stem, options=options)
 
 
 def write_mask_set(
@@ -36,12 +99,10 @@ def write_mask_set(
     folder: str | os.PathLike[str],
     chip_name: str,
     options: MaskOptions | None = None,
-    report: Callable[[int, int, str], None] | None = None,
+    facts: SheetFacts | None = None,
+    report: Report | None = None,
 ) -> MaskSetReport:
-    """Write the mask files of a chip, with a note and a preview; all of them or none.
-
-    Every mask is read back with readers that share nothing with the writers and compared with
-    the outline before any file gets its final name. Files of the same name are replaced.
+    """Write the mask set of bare channels; all files or none. See ``write_scene``.
 
     Parameters
     ----------
@@ -53,9 +114,10 @@ def write_mask_set(
         Name of the chip as the user typed it.
     options : MaskOptions, optional
         Formats and the rest; the defaults write DXF R2000 and GDSII, one of each per set.
+    facts : SheetFacts, optional
+        What the order sheet says besides.
     report : callable, optional
-        Called before each mask with step, number of steps and what is being done. Whatever it
-        raises ends the work and leaves no file.
+        As for ``write_scene``.
 
     Returns
     -------
@@ -65,22 +127,18 @@ def write_mask_set(
     Raises
     ------
     ExportError
-        If a shape cannot be used, a file cannot be written, or one does not read back as drawn.
-        The folder is then as it was before.
+        If a shape cannot be used, or as for ``write_scene``.
     """
-    options = options or MaskOptions()
-    folder = Path(folder)
-    drawings = arranged(named_shapes, chip_name=chip_name, options=options)
-    with told_plainly(folder), workshop(folder) as new:
-        files: list[MaskFile] = []
-        for step, drawing in enumerate(drawings):
-            if report is not None:
-                report(step, len(drawings), f"Writing, reading back and comparing {drawing.stem}")
-            files += _written(new, drawing, options)
-        note = note_text(drawings, files, chip_name=chip_name, options=options)
-        files.append(_kept(new / _note_name(chip_name), "text", note.encode()))
-        put_in_place(new, folder, [file.name for file in files])
-    return MaskSetReport(folder=folder, files=tuple(files))
+    options = _for_bare_channels(options)
+    drawings = bare_drawings(named_shapes, chip_name=chip_name, options=options)
+    return _write(
+        drawings,
+        folder=Path(folder),
+        stem=_set_stem(chip_name),
+        options=options,
+        facts=facts or SheetFacts(chip_title=chip_name),
+        report=report,
+    )
 
 
 def mask_summary(
@@ -89,7 +147,7 @@ def mask_summary(
     *,
     chip_name: str = "CHIP",
 ) -> MaskSummary:
-    """Return what would be written, without writing it.
+    """Return what ``write_mask_set`` would write, without writing it.
 
     Parameters
     ----------
@@ -110,10 +168,58 @@ def mask_summary(
     ExportError
         If a shape cannot be used.
     """
-    options = options or MaskOptions()
-    drawings = arranged(named_shapes, chip_name=chip_name, options=options)
-    files = [file for drawing in drawings for file in _planned(drawing, options)]
-    files.append(PlannedFile(name=_note_name(chip_name), format="text"))
+    options = _for_bare_channels(options)
+    drawings = bare_drawings(named_shapes, chip_name=chip_name, options=options)
+    return _summary(drawings, stem=_set_stem(chip_name), options=options)
+
+
+def _for_bare_channels(options: MaskOptions | None) -> MaskOptions:
+    """Return the choices for channels each of which stands there once: nothing is gained by inserts."""
+    return replace(options or MaskOptions(), copies=CopyMode.FLAT)
+
+
+def _set_stem(chip_name: str) -> str:
+    return safe_name(chip_name, longest=LONGEST_STEM, fallback="CHIP")
+
+
+def _write(
+    drawings: Sequence[MaskDrawing],
+    *,
+    folder: Path,
+    stem: str,
+    options: MaskOptions,
+    facts: SheetFacts,
+    report: Report | None,
+) -> MaskSetReport:
+    work = [(drawing, kind) for drawing in drawings for kind in options.formats]
+    with told_plainly(folder), workshop(folder) as new:
+        files: list[MaskFile] = []
+        for step, (drawing, kind) in enumerate(work):
+            _tell(report, step, len(work) + 1, f"Writing, reading back and comparing {drawing.stem}, {kind}")
+            files.append(written_mask(new, drawing, kind, options))
+            if kind is options.formats[-1] and options.has_preview:
+                files.append(written_picture(new, drawing, options))
+        _tell(report, len(work), len(work) + 1, "Writing the order sheet and packing everything")
+        sheet = order_sheet(drawings, files, facts=facts, options=options)
+        data = (sheet_text(sheet).encode(), sheet_pdf(sheet, drawings, tone=options.tone))
+        files += [kept(new / f"{stem}{end}", words, each) for (end, words), each in zip(_WHOLE_SET, data, strict=False)]
+        (end, words), (zip_end, zip_words) = _WHOLE_SET[2:]
+        files.append(kept(new / f"{stem}{end}", words, checksum_list(files).encode("ascii")))
+        archive = kept(new / f"{stem}{zip_end}", zip_words, archive_bytes(new, [file.name for file in files]))
+        prove_archive(new / archive.name, files)
+        files.append(replace(archive, proofs=(f"Read back: all {len(files)} files, each with its checksum.",)))
+        put_in_place(new, folder, [file.name for file in files])
+    return MaskSetReport(folder=folder, files=tuple(files))
+
+
+def _tell(report: Report | None, step: int, steps: int, text: str) -> None:
+    if report is not None:
+        report(step, steps, text)
+
+
+def _summary(drawings: Sequence[MaskDrawing], *, stem: str, options: MaskOptions) -> MaskSummary:
+    files = [file for drawing in drawings for file in planned_files(drawing, options)]
+    files += [PlannedFile(name=f"{stem}{end}", format=words) for end, words in _WHOLE_SET]
     return MaskSummary(
         files=tuple(files),
         islands=_ISLAND_WORDS[options.islands],
@@ -122,78 +228,15 @@ def mask_summary(
     )
 
 
-def _written(new: Path, drawing: MaskDrawing, options: MaskOptions) -> list[MaskFile]:
-    files = []
-    for kind in options.formats:
-        path = new / _mask_name(drawing, kind, options)
-        if kind is MaskFormat.DXF:
-            rings = dxf_rings(drawing, options)
-            data = dxf_text(rings, bounds_um=drawing.bounds_um, version=options.dxf_version).encode("ascii")
-            prove = prove_dxf
-        else:
-            cells = gdsii_cells(drawing, chord_tolerance_um=options.chord_tolerance_um)
-            data = gdsii_bytes(cells, layer=options.channel_layer.gdsii_number, library=drawing.stem)
-            prove = prove_gdsii
-        write_durably(path, data)
-        proof = prove(path, drawing, options)
-        files.append(
-            MaskFile(
-                name=path.name,
-                format=_format_words(kind, options),
-                size_bytes=len(data),
-                sha256=hashlib.sha256(data).hexdigest(),
-                area_um2=proof.area_um2,
-                bounds_um=proof.bounds_um,
-                island_count=proof.island_count,
-                proofs=proof.sentences,
-            )
-        )
-    if options.has_preview:
-        files.append(_kept(new / f"{drawing.stem}.svg", "SVG", preview_svg(drawing).encode("ascii")))
-    return files
-
-
-def _kept(path: Path, words: str, data: bytes) -> MaskFile:
-    write_durably(path, data)
-    return MaskFile(name=path.name, format=words, size_bytes=len(data), sha256=hashlib.sha256(data).hexdigest())
-
-
-def _planned(drawing: MaskDrawing, options: MaskOptions) -> list[PlannedFile]:
-    x0, y0, x1, y1 = drawing.bounds_um
-    files = []
-    for kind in options.formats:
-        if kind is MaskFormat.DXF:
-            counts = [len(ring.bulges) for ring in dxf_rings(drawing, options)]
-            layers = drawn_layers(drawing, options)
-        else:
-            cells = gdsii_cells(drawing, chord_tolerance_um=options.chord_tolerance_um)
-            counts = [len(ring) for cell in cells for ring in cell.rings_nm]
-            layers = (str(options.channel_layer.gdsii_number),)
-        files.append(
-            PlannedFile(
-                name=_mask_name(drawing, kind, options),
-                format=_format_words(kind, options),
-                layers=layers,
-                width_um=x1 - x0,
-                height_um=y1 - y0,
-                channel_count=len(drawing.channels),
-                island_count=drawing.island_count,
-                figure_count=len(counts),
-                vertex_count=sum(counts),
-            )
-        )
-    if options.has_preview:
-        files.append(PlannedFile(name=f"{drawing.stem}.svg", format="SVG"))
-    return files
-
-
 def _choices(options: MaskOptions) -> list[str]:
     sentences = []
     if MaskFormat.DXF in options.formats:
         sentences.append(f"DXF: millimetres, true arcs; {_ISLAND_WORDS[options.islands]}.")
     if MaskFormat.GDSII in options.formats:
-        sentences.append(f"GDSII: 1 nm grid; arcs become straight edges within {options.chord_tolerance_um:g} um.")
-    return sentences
+        sentences.append(
+            f"GDSII: {options.grid_nm} nm grid; arcs become straight edges within {options.chord_tolerance_um:g} um."
+        )
+    return [*sentences, f"Tone: {options.tone}; {options.reading}; nothing is mirrored."]
 
 
 def _planned_sentence(file: PlannedFile) -> str:
@@ -207,18 +250,3 @@ def _planned_sentence(file: PlannedFile) -> str:
         f"{file.island_count} island{'s' * (file.island_count != 1)}, "
         f"{file.figure_count} figures with {file.vertex_count} vertices."
     )
-
-
-def _format_words(kind: MaskFormat, options: MaskOptions) -> str:
-    return f"DXF {options.dxf_version}" if kind is MaskFormat.DXF else str(kind)
-
-
-def _mask_name(drawing: MaskDrawing, kind: MaskFormat, options: MaskOptions) -> str:
-    if kind is MaskFormat.GDSII:
-        return f"{drawing.stem}.gds"
-    # R12 cannot say its unit in the header, so that its name does
-    return f"{drawing.stem}_R12_MM.dxf" if options.dxf_version is DxfVersion.R12 else f"{drawing.stem}.dxf"
-
-
-def _note_name(chip_name: str) -> str:
-    return f"{safe_name(chip_name, longest=LONGEST_CHIP_NAME, fallback='CHIP')}_README.txt"

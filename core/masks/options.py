@@ -7,11 +7,13 @@ from enum import StrEnum
 from typing import TYPE_CHECKING, TypeVar
 
 from core.errors import DesignValueError, did_you_mean
+from core.fabrication.process import PROCESS_FIELDS
 from core.fields import Field, table_of
-from core.masks.layers import CHANNEL_LAYER, ISLAND_LAYER, MaskLayer
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
+
+    from core.fabrication.process import Process
 
 MASKS = "Mask files"
 
@@ -35,12 +37,27 @@ class IslandMode(StrEnum):
 
     PIECES = "pieces"  # the channel is cut into butting pieces without holes
     LOOPS = "loops"  # outer loops and island loops on two layers, to be combined by NOT
+    NESTED = "nested"  # plain loops within loops on one layer, inner ones first, for cutting
+
+
+class CopyMode(StrEnum):
+    """How repeated shapes stand in DXF files; GDSII files always refer to cells."""
+
+    INSERTS = "inserts"  # drawn once as a block and inserted, shifted only
+    FLAT = "flat"  # written out again and again
+
+
+class Tone(StrEnum):
+    """What the drawn shapes become."""
+
+    CLEAR = "drawn shapes are CLEAR"
+    DARK = "drawn shapes are DARK"
+    CUT = "drawn lines are CUT"
 
 
 MASK_FIELDS: dict[str, Field] = table_of(
-    Field(name="chord_tolerance_um", label="Chord tolerance", group=MASKS, default=0.02, unit="um",
-          minimum=0.002, maximum=5.0, step=0.01,
-          help="Largest distance between an arc and the straight edges that stand for it in GDSII files."),
+    replace(PROCESS_FIELDS["chord_tolerance_um"], group=MASKS),
+    replace(PROCESS_FIELDS["grid_nm"], group=MASKS),
     Field(name="clearance_um", label="Clearance", group=MASKS, default=2000.0, unit="um",
           minimum=10.0, maximum=100000.0, step=100.0,
           help="Free space between the channels when several are put on one mask."),
@@ -61,32 +78,40 @@ class MaskOptions:
         Version of the DXF files.
     islands : IslandMode
         How islands are left out in DXF files.
+    copies : CopyMode
+        How repeated shapes stand in DXF files; nested loops are always written flat, for cutters.
+    tone : Tone
+        What the drawn shapes become.
+    reading : str
+        From which side the drawing reads correctly; a word of the process.
     chord_tolerance_um : float
         Largest distance between an arc and its chords in GDSII files [um].
+    grid_nm : int
+        Every corner and shift in GDSII files, and every shift in DXF files, is a multiple of it [nm].
     one_file_per_set : bool
         True: one mask for each parameter set. False: all on one mask, one above the other.
     clearance_um : float
         Free space between channels on one mask [um].
     has_preview : bool
         Write a small picture (SVG) of each mask as well.
-    channel_layer, island_layer : MaskLayer
-        Layers for the channel and, with ``islands`` "loops", for the islands.
 
     Raises
     ------
     DesignValueError
-        For an unknown word, a number out of bounds, no format, or two layers that are the same.
+        For an unknown word, a number out of bounds, or no format.
     """
 
     formats: tuple[MaskFormat, ...] = (MaskFormat.DXF, MaskFormat.GDSII)
     dxf_version: DxfVersion = DxfVersion.R2000
     islands: IslandMode = IslandMode.PIECES
+    copies: CopyMode = CopyMode.INSERTS
+    tone: Tone = Tone.CLEAR
+    reading: str = str(PROCESS_FIELDS["reading"].default)
     chord_tolerance_um: float = 0.02
+    grid_nm: int = 1
     one_file_per_set: bool = True
     clearance_um: float = 2000.0
     has_preview: bool = True
-    channel_layer: MaskLayer = CHANNEL_LAYER
-    island_layer: MaskLayer = ISLAND_LAYER
 
     def __post_init__(self) -> None:
         """Check every choice and keep it in its own type."""
@@ -99,19 +124,16 @@ class MaskOptions:
         object.__setattr__(self, "formats", formats)
         object.__setattr__(self, "dxf_version", _choice(DxfVersion, "dxf_version", self.dxf_version))
         object.__setattr__(self, "islands", _choice(IslandMode, "islands", self.islands))
+        object.__setattr__(self, "copies", _choice(CopyMode, "copies", self.copies))
+        object.__setattr__(self, "tone", _choice(Tone, "tone", self.tone))
+        PROCESS_FIELDS["reading"].checked(self.reading)
         for field in MASK_FIELDS.values():
             object.__setattr__(self, field.name, field.checked(getattr(self, field.name)))
-        self._check_layers()
 
-    def _check_layers(self) -> None:
-        channel, island = self.channel_layer, self.island_layer
-        if channel.dxf_name == island.dxf_name or channel.gdsii_number == island.gdsii_number:
-            raise DesignValueError(
-                field="island_layer",
-                value=island.dxf_name,
-                limit="a layer of its own",
-                way_out="give the islands another layer name and number than the channel",
-            )
+    @property
+    def is_flat(self) -> bool:
+        """Whether DXF files hold no blocks."""
+        return self.copies is CopyMode.FLAT or self.islands is IslandMode.NESTED
 
     def with_values(self, values: Mapping[str, object]) -> MaskOptions:
         """Return a copy with some choices replaced.
@@ -126,6 +148,26 @@ class MaskOptions:
                 limit, way_out = "a known mask option", did_you_mean(name, self.__dataclass_fields__)
                 raise DesignValueError(field=name, value=value, limit=limit, way_out=way_out)
         return replace(self, **dict(values))  # type: ignore[arg-type]  # checked in __post_init__
+
+
+def options_of(process: Process) -> MaskOptions:
+    """Return the choices that a process makes for its files.
+
+    Parameters
+    ----------
+    process : Process
+        The process of the project.
+    """
+    return MaskOptions(
+        formats=tuple(kind for kind in MaskFormat if kind in process.formats),
+        dxf_version=DxfVersion(process.dxf_version),
+        islands=IslandMode(process.islands),
+        copies=CopyMode(process.dxf_copies),
+        tone=Tone(process.tone),
+        reading=process.reading,
+        chord_tolerance_um=process.chord_tolerance_um,
+        grid_nm=process.grid_nm,
+    )
 
 
 def _choice(kind: type[_Choice], field: str, word: object) -> _Choice:

@@ -20,6 +20,8 @@ _REASONS = {
     errno.ENOSPC: ("the disk is full", "free some space or choose another folder"),
     errno.EDQUOT: ("the disk quota is used up", "free some space or choose another folder"),
     errno.EFBIG: ("it takes no file of that size", "choose another folder"),
+    errno.ENOENT: ("it has gone while the files were written", "make it again or choose another folder"),
+    errno.EBUSY: ("another program holds it", "close that program or choose another folder"),
     errno.EACCES: ("it may not be written to", "choose a folder of your own"),
     errno.EPERM: ("it may not be written to", "choose a folder of your own"),
     errno.EROFS: ("it is on a read-only disk", "choose another folder"),
@@ -113,8 +115,9 @@ def put_in_place(new: Path, folder: Path, names: Sequence[str]) -> None:
             (new / name).replace(folder / name)
     except OSError:
         for name in names:
-            if not (new / name).exists():
-                (folder / name).replace(new / name)
-            if (old / name).exists():
-                (old / name).replace(folder / name)
+            with suppress(OSError):  # one that cannot go back must not keep the others from it
+                if not (new / name).exists():
+                    (folder / name).replace(new / name)
+                if (old / name).exists():
+                    (old / name).replace(folder / name)
         raise

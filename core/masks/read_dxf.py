@@ -1,88 +1,71 @@
 """A reader of DXF files for checking: a plain reader of tags that shares nothing with the writer.
 
-It understands LWPOLYLINE and POLYLINE with VERTEX, in the model space; of everything else it
-keeps the name, so that rules can refuse it.
+It understands LWPOLYLINE, POLYLINE with VERTEX, and INSERT, in the model space and in blocks; of
+everything else it keeps the name, so that rules can refuse it.
 """
 
 from __future__ import annotations
 
 from dataclasses import dataclass, field
-from math import atan, hypot, sin
 from typing import TYPE_CHECKING
 
-import numpy as np
-
 from core.errors import ExportError
+from core.masks.read_loop import ReadLoop
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
     from pathlib import Path
 
-    from numpy.typing import NDArray
-
-    Floats = NDArray[np.float64]
-
 Pair = tuple[int, str]
+# of an INSERT: what must be as it is when the tag is absent
+_SCALES_AND_COUNTS = {41: 1.0, 42: 1.0, 43: 1.0, 70: 1.0, 71: 1.0}
+_TURNS_AND_HEIGHTS = {50: 0.0, 30: 0.0, 210: 0.0, 220: 0.0}
+_MODEL, _PAPER = "MODEL_SPACE", "PAPER_SPACE"
 
 
 @dataclass(slots=True)
-class ReadLoop:
-    """One polyline as it stands in the file.
+class ReadInsert:
+    """A block placed.
 
     Attributes
     ----------
+    name : str
+        Block referred to.
     layer : str
-        Name of its layer.
-    corners : list of [x, y, bulge]
-        As written [drawing units].
-    is_closed : bool
-        Whether the closed flag is set.
-    widest : float
-        Largest width found on it; 0 for a line without width.
-    declared_count : int
-        Number of vertices it claims to have; -1 when it claims none.
+        Layer of the insert itself.
+    x, y : float
+        Place [drawing units].
+    is_plain : bool
+        Whether it only shifts: no scale, turn, mirror, array or height.
     in_paper_space : bool
         Whether it is marked as paper space.
     """
 
-    layer: str = "0"
-    corners: list[list[float]] = field(default_factory=list)
-    is_closed: bool = False
-    widest: float = 0.0
-    declared_count: int = -1
+    name: str
+    layer: str
+    x: float
+    y: float
+    is_plain: bool = True
     in_paper_space: bool = False
 
-    @property
-    def area(self) -> float:
-        """Exact signed area: shoelace plus circular segments [square drawing units]."""
-        total = 0.0
-        for (x0, y0, bulge), (x1, y1, _) in _edges(self.corners):
-            total += 0.5 * ((x0 - self.corners[0][0]) * (y1 - y0) - (y0 - self.corners[0][1]) * (x1 - x0))
-            if bulge:
-                sweep = 4.0 * atan(abs(bulge))
-                radius = hypot(x1 - x0, y1 - y0) / (2.0 * sin(sweep / 2.0))
-                total += (1.0 if bulge > 0.0 else -1.0) * 0.5 * radius**2 * (sweep - sin(sweep))
-        return total
 
-    @property
-    def bounds(self) -> tuple[float, float, float, float]:
-        """(x_min, y_min, x_max, y_max), bellies of arcs included [drawing units]."""
-        points = [complex(x, y) for x, y, _ in self.corners]
-        for (x0, y0, bulge), (x1, y1, _) in _edges(self.corners):
-            if bulge:
-                points += _extremes(complex(x0, y0), complex(x1, y1), bulge)
-        x, y = [point.real for point in points], [point.imag for point in points]
-        return min(x), min(y), max(x), max(y)
+@dataclass(slots=True)
+class ReadSpace:
+    """The model space or a block.
 
-    def chords(self, sagitta: float) -> Floats:
-        """Return the loop with arcs as chords no further from them than ``sagitta``, shape (m, 2)."""
-        points: list[complex] = []
-        for (x0, y0, bulge), (x1, y1, _) in _edges(self.corners):
-            start, end = complex(x0, y0), complex(x1, y1)
-            points.append(start)
-            if bulge and start != end:
-                points += _on_arc(start, end, bulge, sagitta)
-        return np.array([[point.real, point.imag] for point in points]).reshape(-1, 2)
+    Attributes
+    ----------
+    loops : list of ReadLoop
+        Polylines in the order of the file.
+    inserts : list of ReadInsert
+        Blocks placed in it.
+    base : tuple of float
+        Base point of a block [drawing units].
+    """
+
+    loops: list[ReadLoop] = field(default_factory=list)
+    inserts: list[ReadInsert] = field(default_factory=list)
+    base: tuple[float, float] = (0.0, 0.0)
 
 
 @dataclass(slots=True)
@@ -95,10 +78,14 @@ class ReadDxf:
         Values of the header variables.
     layers : tuple of str
         Names in the layer table.
-    loops : list of ReadLoop
-        Polylines of the entities section.
+    model : ReadSpace
+        What stands in the entities section.
+    blocks : dict of str to ReadSpace
+        Blocks but for those that the format itself demands.
+    repeated_names : tuple of str
+        Names of blocks that occur more than once.
     others : tuple of str
-        Types of all other entities, and of anything inside a block.
+        Types of all other entities.
     is_ascii : bool
         Whether every byte is plain ASCII.
     has_end : bool
@@ -107,10 +94,22 @@ class ReadDxf:
 
     header: dict[str, list[str]] = field(default_factory=dict)
     layers: tuple[str, ...] = ()
-    loops: list[ReadLoop] = field(default_factory=list)
+    model: ReadSpace = field(default_factory=ReadSpace)
+    blocks: dict[str, ReadSpace] = field(default_factory=dict)
+    repeated_names: tuple[str, ...] = ()
     others: tuple[str, ...] = ()
     is_ascii: bool = True
     has_end: bool = False
+
+    @property
+    def spaces(self) -> tuple[ReadSpace, ...]:
+        """Return the model space and every block."""
+        return (self.model, *self.blocks.values())
+
+    @property
+    def loops(self) -> list[ReadLoop]:
+        """Return all polylines as they stand in the file, those of blocks once."""
+        return [loop for space in self.spaces for loop in space.loops]
 
 
 def read_dxf(path: Path) -> ReadDxf:
@@ -124,7 +123,7 @@ def read_dxf(path: Path) -> ReadDxf:
     Returns
     -------
     ReadDxf
-        Header, layers, polylines.
+        Header, layers, polylines, blocks and inserts.
 
     Raises
     ------
@@ -141,36 +140,62 @@ def read_dxf(path: Path) -> ReadDxf:
 
 def _read(data: bytes) -> ReadDxf:
     result = ReadDxf(is_ascii=data.isascii())
-    section = ""
+    section, space = "", result.model
     for record in _records(_pairs(data)):
         kind = record[0][1]
         if kind == "SECTION":
-            section = _value(record, 2, "")
+            section, space = _value(record, 2, ""), result.model
             if section == "HEADER":
                 result.header = _variables(record)
         elif kind == "EOF":
             result.has_end = True
         elif section == "TABLES" and kind == "LAYER":
             result.layers += (_value(record, 2, ""),)
-        elif section == "BLOCKS" and kind not in {"BLOCK", "ENDBLK", "ENDSEC"}:
-            result.others += (f"{kind} in a block",)
-        elif section == "ENTITIES":
-            _take_entity(result, record)
+        elif section == "BLOCKS" and kind == "BLOCK":
+            space = _opened_block(result, record)
+        elif section in {"ENTITIES", "BLOCKS"}:
+            _take_entity(result, space, record, where=" in a block" * (section == "BLOCKS"))
     return result
 
 
-def _take_entity(result: ReadDxf, record: list[Pair]) -> None:
+def _opened_block(result: ReadDxf, record: list[Pair]) -> ReadSpace:
+    """Return the space of a block; what stands in a layout's own block counts as drawn there."""
+    name = _value(record, 2, "").strip()
+    if name.upper().lstrip("*$") in {_MODEL, _PAPER}:
+        return result.model
+    if name in result.blocks:
+        result.repeated_names += (name,)
+    space = ReadSpace(base=(float(_value(record, 10, "0")), float(_value(record, 20, "0"))))
+    result.blocks[name] = space
+    return space
+
+
+def _take_entity(result: ReadDxf, space: ReadSpace, record: list[Pair], *, where: str) -> None:
     kind = record[0][1]
     if kind in {"LWPOLYLINE", "POLYLINE"}:
-        result.loops.append(_loop(record))
+        space.loops.append(_loop(record))
         if kind == "LWPOLYLINE":
-            result.loops[-1].corners = _light_corners(record)
-    elif kind == "VERTEX" and result.loops:
+            space.loops[-1].corners = _light_corners(record)
+    elif kind == "VERTEX" and space.loops:
         x, y, bulge = (float(_value(record, code, "0")) for code in (10, 20, 42))
-        result.loops[-1].corners.append([x, y, bulge])
-        result.loops[-1].widest = max(result.loops[-1].widest, _widest(record))
-    elif kind not in {"SEQEND", "ENDSEC"}:
-        result.others += (kind,)
+        space.loops[-1].corners.append([x, y, bulge])
+        space.loops[-1].widest = max(space.loops[-1].widest, _widest(record))
+    elif kind == "INSERT":
+        space.inserts.append(_insert(record))
+    elif kind not in {"SEQEND", "ENDSEC", "ENDBLK"}:
+        result.others += (f"{kind}{where}",)
+
+
+def _insert(record: list[Pair]) -> ReadInsert:
+    plain = {**_SCALES_AND_COUNTS, **_TURNS_AND_HEIGHTS}
+    return ReadInsert(
+        name=_value(record, 2, "").strip(),
+        layer=_value(record, 8, "0"),
+        x=float(_value(record, 10, "0")),
+        y=float(_value(record, 20, "0")),
+        is_plain=all(float(value) == plain[code] for code, value in record if code in plain),
+        in_paper_space=_value(record, 67, "0").strip() == "1",
+    )
 
 
 def _loop(record: list[Pair]) -> ReadLoop:
@@ -228,28 +253,3 @@ def _pairs(data: bytes) -> Iterator[Pair]:
     lines = data.decode("latin-1").splitlines()
     for place in range(0, len(lines) - 1, 2):
         yield int(lines[place]), lines[place + 1].strip()
-
-
-def _edges(corners: list[list[float]]) -> Iterator[tuple[list[float], list[float]]]:
-    return zip(corners, corners[1:] + corners[:1], strict=True)
-
-
-def _centre(start: complex, end: complex, bulge: float) -> complex:
-    return (start + end) / 2.0 + 1j * (end - start) * (1.0 - bulge**2) / (4.0 * bulge)
-
-
-def _extremes(start: complex, end: complex, bulge: float) -> list[complex]:
-    """Return the outermost points of the circle that lie on the arc: to the right of its chord if it turns left."""
-    centre = _centre(start, end, bulge)
-    radius = abs(start - centre)
-    outermost = [centre + radius * direction for direction in (1, 1j, -1, -1j)]
-    return [point for point in outermost if ((end - start).conjugate() * (point - start)).imag * bulge < 0.0]
-
-
-def _on_arc(start: complex, end: complex, bulge: float, sagitta: float) -> list[complex]:
-    """Return the points between two ends of an arc."""
-    sweep = 4.0 * atan(bulge)
-    centre = _centre(start, end, bulge)
-    step = 2.0 * np.arccos(max(0.0, 1.0 - sagitta / abs(start - centre)))
-    count = max(1, int(np.ceil(abs(sweep) / step)))
-    return [centre + (start - centre) * np.exp(1j * sweep * k / count) for k in range(1, count)]

@@ -18,7 +18,7 @@ class PlannedFile:
     name : str
         File name.
     format : str
-        ``DXF R2000``, ``DXF R12``, ``GDSII``, ``SVG`` or ``text``.
+        ``DXF R2000``, ``DXF R12``, ``GDSII``, ``SVG``, ``text``, ``PDF``, ``checksums`` or ``ZIP``.
     layers : tuple of str
         Layers drawn on.
     width_um, height_um : float
@@ -75,7 +75,7 @@ class MaskFile:
     name : str
         File name.
     format : str
-        ``DXF R2000``, ``DXF R12``, ``GDSII``, ``SVG`` or ``text``.
+        ``DXF R2000``, ``DXF R12``, ``GDSII``, ``SVG``, ``text``, ``PDF``, ``checksums`` or ``ZIP``.
     size_bytes : int
         Size.
     sha256 : str
@@ -109,7 +109,7 @@ class MaskSetReport:
     folder : Path
         Where it is.
     files : tuple of MaskFile
-        All files, the note last.
+        All files, the archive last.
     """
 
     folder: Path

@@ -3,13 +3,21 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field, replace
+from functools import partial
 from itertools import count
+from typing import TYPE_CHECKING
 
+from core.chip.plan import ChipPlan
 from core.errors import DesignValueError, did_you_mean
+from core.fabrication.process import ProcessKind
+from core.fabrication.shipped import shipped_process
 from core.operating import OperatingPoint
 from core.parameters import ChannelParameters
 from core.project.solved import MOST_SOLVED, SolvedResult
 from core.project.text import LONGEST_NAME, checked_line, checked_name, checked_notes, name_key
+
+if TYPE_CHECKING:
+    from core.fabrication.process import Process
 
 MOST_SETS = 100
 
@@ -59,6 +67,10 @@ class ChipProject:
         Who keeps the project; may be empty.
     notes : str
         What the chip is for, in the user's words.
+    process : Process
+        How the chip is made.
+    plan : ChipPlan
+        What is placed on the chip, and the plate it is copied over.
     solved : tuple of SolvedResult
         Results of flow solves, the oldest first; at most 500.
 
@@ -74,6 +86,8 @@ class ChipProject:
     lab: str = ""
     author: str = ""
     notes: str = ""
+    process: Process = field(default_factory=partial(shipped_process, ProcessKind.CAST_FILM))
+    plan: ChipPlan = field(default_factory=ChipPlan)
     solved: tuple[SolvedResult, ...] = ()
 
     def __post_init__(self) -> None:
@@ -114,14 +128,20 @@ class ChipProject:
         return replace(self, sets=(*self.sets[:place], added, *self.sets[place:]))
 
     def with_set_replaced(self, name: str, new: ParameterSet) -> ChipProject:
-        """Return a copy in which another set stands in the place of the named one."""
+        """Return a copy in which another set stands in the place of the named one, also on the chip."""
         place = self._position(name)
-        return replace(self, sets=(*self.sets[:place], new, *self.sets[place + 1 :]))
+        placed = tuple(
+            replace(each, set_name=new.name) if each.set_name == name else each for each in self.plan.channels
+        )
+        sets = (*self.sets[:place], new, *self.sets[place + 1 :])
+        return replace(self, sets=sets, plan=replace(self.plan, channels=placed))
 
     def with_set_removed(self, name: str) -> ChipProject:
-        """Return a copy without the named set; the last one cannot be removed."""
+        """Return a copy without the named set and its places on the chip; the last one cannot be removed."""
         place = self._position(name)
-        return replace(self, sets=self.sets[:place] + self.sets[place + 1 :])
+        placed = tuple(each for each in self.plan.channels if each.set_name != name)
+        sets = self.sets[:place] + self.sets[place + 1 :]
+        return replace(self, sets=sets, plan=replace(self.plan, channels=placed))
 
     def with_set_moved(self, name: str, position: int) -> ChipProject:
         """Return a copy in which the named set has the given place (0 is the first)."""
@@ -137,6 +157,14 @@ class ChipProject:
     def with_operating(self, operating: OperatingPoint) -> ChipProject:
         """Return a copy run at other conditions."""
         return replace(self, operating=operating)
+
+    def with_process(self, process: Process) -> ChipProject:
+        """Return a copy made in another way."""
+        return replace(self, process=process)
+
+    def with_plan(self, plan: ChipPlan) -> ChipProject:
+        """Return a copy with another chip."""
+        return replace(self, plan=plan)
 
     def _position(self, name: str) -> int:
         names = [each.name for each in self.sets]

@@ -15,13 +15,15 @@ from core.errors import ProjectFileError, shown
 if TYPE_CHECKING:
     from collections.abc import Callable
 
-SCHEMA = 2
+SCHEMA = 3
 
 Data = dict[str, object]
 
 # schema of the data given -> function that returns data of the next schema
 STEPS: dict[int, Callable[[Data], Data]] = {
-    1: lambda data: data,  # 2 may hold results of flow solves under "solved", which older programs do not know
+    # each added a part that older programs do not know, and that a file may lack
+    1: lambda data: data,  # 2: results of flow solves under "solved"
+    2: lambda data: data,  # 3: "process" and "chip"; without them they are those of a new chip
 }
 
 

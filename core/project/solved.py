@@ -22,15 +22,15 @@ _LONGEST_NOTE = 300
 class SolvedResult:
     """What one flow solve gave at one flow.
 
-    It belongs to its design and conditions, not to whatever the set is now: once these differ, the
-    result is *stale*.
+    It belongs to the channel that was solved and its conditions, not to whatever the set is now: once
+    what the process makes of the set differs, the result is *stale*.
 
     Attributes
     ----------
     set_name : str
         Parameter set for which it was solved.
     channel : ChannelParameters
-        The design that was solved.
+        What was solved: what the process makes of the set, which may differ from what the set asks for.
     operating : OperatingPoint
         Fluid, temperature, and the flow that was solved.
     reynolds : float
@@ -98,13 +98,21 @@ class SolvedResult:
             return None
         return self.reverse_pressure_pa / self.forward_pressure_pa
 
+    @property
+    def highest_pressure_pa(self) -> float | None:
+        """The larger of both drops at the upper end of its error band [Pa], or None."""
+        if self.forward_pressure_pa is None or self.reverse_pressure_pa is None:
+            return None
+        highest_pa = max(self.forward_pressure_pa, self.reverse_pressure_pa)
+        return highest_pa * (1.0 + (self.error_band_percent or 0.0) / 100.0)
+
     def belongs_to(self, channel: ChannelParameters, operating: OperatingPoint, *, at_any_flow: bool = False) -> bool:
-        """Return whether it was solved for this design in these conditions.
+        """Return whether it was solved for this channel in these conditions.
 
         Parameters
         ----------
         channel : ChannelParameters
-            A design.
+            What is made of a design.
         operating : OperatingPoint
             Fluid, temperature and flow.
         at_any_flow : bool

@@ -10,13 +10,20 @@ import sys
 from dataclasses import replace
 from pathlib import Path
 
+import numpy as np
 import pytest
 
 from app import verbs
 from app.command_line import VERBS, main
+from core.chip.plan import ChipChannel, ChipPlan
+from core.fabrication.making import making_of
+from core.fabrication.process import ProcessKind
+from core.fabrication.shipped import shipped_process
 from core.findings import Finding, Severity
 from core.geometry import shape as shape_module
-from core.project import ChipProject, ParameterSet, read_project, write_project
+from core.hydraulics.estimate import estimate
+from core.parameters import ChannelParameters
+from core.project import ChipProject, ParameterSet, checks, read_project, write_project
 
 ROOT = Path(__file__).parents[2]
 SAMPLE = ROOT / "sample_designs" / "cell-rinse-return.sideloop"
@@ -26,7 +33,7 @@ SCORE_KEYS = {
     "forward_pressure_pa", "reverse_pressure_pa", "diodicity", "reynolds", "flow_ul_min", "loop_share_forward",
     "loop_share_reverse", "method", "error_band_percent", "valid", "notes",
 }  # fmt: skip
-FINDING_KEYS = {"code", "severity", "message", "value_um", "limit_um", "x_um", "y_um"}
+FINDING_KEYS = {"code", "severity", "message", "value_um", "limit_um", "x_um", "y_um", "set", "cure"}
 
 IMPOSSIBLE = "--with=loop_radius_um=10"  # with a loop 200 um wide nothing of the island is left
 
@@ -136,27 +143,99 @@ def test_an_impossible_shape_has_no_score(run):
     assert re.fullmatch(r"sideloop: set 'Four loops' cannot be made: [^\n]*raise loop_radius_um[^\n]*\n", err)
 
 
+# --- what is made ---------------------------------------------------------------------------
+
+
+@pytest.fixture
+def glass(tmp_path):
+    """Return a file whose process makes something else than what is wanted."""
+    channel = ChannelParameters(channel_width_um=300, loop_width_um=300, loop_radius_um=500, depth_um=80, stages=1)
+    project = ChipProject(
+        name="Glass", sets=(ParameterSet(name="One", channel=channel),), process=shipped_process(ProcessKind.WET_GLASS)
+    )
+    write_project(project, tmp_path / "glass.sideloop")
+    return tmp_path / "glass.sideloop"
+
+
+def test_what_is_made_is_scored_and_the_notes_say_so(run, glass):
+    # truth: the estimate asked for the parameters that the process makes
+    project = read_project(glass)
+    making = making_of(project.sets[0].channel, project.process)
+    assert making.flow != making.wanted
+    flows = np.array([project.operating.flow_ul_min])
+    expected = estimate(making.flow, fluid=project.operating.fluid_state(), flows_ul_min=flows).score(0)
+    score = json.loads(run("score", glass, "--json")[1])
+    assert score["reverse_pressure_pa"] == pytest.approx(expected.reverse_pressure_pa, rel=1e-12)
+    assert making.notes
+    assert score["notes"] == [*making.notes, *expected.notes]
+    assert making.notes[0] in run("score", glass)[1]
+
+
+def test_what_is_made_as_wanted_has_no_such_notes(run):
+    project = read_project(SAMPLE)
+    making = making_of(project.sets[0].channel, project.process)
+    assert making.flow == making.wanted
+    assert not set(making.notes) & set(json.loads(run("score", SAMPLE, "--json")[1])["notes"])
+
+
 # --- check ----------------------------------------------------------------------------------
 
 
-def test_check_of_a_good_design(run):
-    assert run("check", SAMPLE) == (0, "Cell rinse return, set 'Four loops': no findings\n", "")
-    assert run("check", SAMPLE, "--json")[:2] == (0, '{\n  "findings": []\n}\n')
+@pytest.fixture
+def plain(tmp_path):
+    """Return a small chip without findings."""
+    project = ChipProject(name="Plain chip", sets=(ParameterSet(name="One", channel=ChannelParameters(stages=1)),))
+    write_project(project, tmp_path / "plain.sideloop")
+    return tmp_path / "plain.sideloop"
 
 
-def test_check_of_an_impossible_design(run):
-    status, out, err = run("check", SAMPLE, IMPOSSIBLE, "--json")
+def test_check_of_a_good_design(run, plain):
+    assert run("check", plain) == (0, "Plain chip: no findings\n", "")
+    assert run("check", plain, "--set", "One") == (0, "Plain chip, set 'One': no findings\n", "")
+    assert run("check", plain, "--json")[:2] == (0, '{\n  "findings": []\n}\n')
+
+
+def test_check_of_an_impossible_design(run, plain):
+    status, out, err = run("check", plain, IMPOSSIBLE, "--json")
     findings = json.loads(out)["findings"]
     assert (status, err) == (1, "")
     assert findings[0]["severity"] == "error"
+    assert findings[0]["set"] == "One"
     assert set(findings[0]) >= FINDING_KEYS
-    status, out, _ = run("check", SAMPLE, IMPOSSIBLE)
+    status, out, _ = run("check", plain, IMPOSSIBLE)
     assert status == 1
     assert f"error   {findings[0]['code']}: " in out
 
 
+def test_check_covers_process_and_chip_and_a_set_can_be_looked_at_alone(run, plain):
+    project = read_project(plain)
+    narrow = project.sets[0].channel.with_values({"channel_width_um": 40, "loop_width_um": 40, "depth_um": 40})
+    project = project.with_set_added(ParameterSet(name="Narrow", channel=narrow))
+    channels = (ChipChannel(set_name="One", x_um=19_000.0), ChipChannel(set_name="Narrow"))
+    write_project(project.with_plan(ChipPlan(channels=channels)), plain)
+    status, out, _ = run("check", plain, "--json")
+    findings = json.loads(out)["findings"]
+    assert status == 1
+    assert {finding["set"] for finding in findings} == {"Narrow", ""}
+    assert {"depths_differ"} < {finding["code"] for finding in findings if finding["set"] == ""}
+    too_narrow = next(f for f in findings if f["set"] == "Narrow" and f["field"] == "channel_width_um")
+    assert (too_narrow["value_um"], too_narrow["limit_um"]) == (pytest.approx(40.0), 50.0)
+    cured = [
+        f"--with={f['cure']['field']}={f['cure']['value']}" for f in findings if f["set"] == "Narrow" and f["cure"]
+    ]
+    assert cured
+    assert run("check", plain, "--set", "One", "--json")[:2] == (0, '{\n  "findings": []\n}\n')
+    status, out, _ = run("check", plain, "--set", "Narrow")
+    assert status == 1
+    assert out.startswith("Plain chip, set 'Narrow': ")
+    assert f"try {too_narrow['field']}=" in out
+
+
 def finding(severity: Severity) -> Finding:
-    return Finding(code="made_up", severity=severity, message="for the test", field="stages", x_um=10.0, y_um=-20.4)
+    return Finding(
+        code="made_up", severity=severity, message="for the test", field="stages", x_um=10.0, y_um=-20.4,
+        cure=("stages", 3),
+    )  # fmt: skip
 
 
 @pytest.fixture
@@ -168,23 +247,51 @@ def with_finding(monkeypatch):
         def build(parameters):
             return replace(build_shape(parameters), findings=(finding(severity),))
 
-        monkeypatch.setattr(shape_module, "build_shape", build)
+        for module in (shape_module, checks):
+            monkeypatch.setattr(module, "build_shape", build)
 
     return add
 
 
-def test_a_warning_is_told_but_is_no_error(run, with_finding):
+def test_a_warning_is_told_but_is_no_error(run, plain, with_finding):
     with_finding(Severity.WARNING)
-    status, out, _ = run("check", SAMPLE)
+    status, out, _ = run("check", plain)
     assert status == 0
-    assert out.endswith("1 finding\n  warning made_up: for the test (at 10, -20 um)\n")
+    assert out.endswith("1 finding\n  warning made_up: for the test (set 'One'; at 10, -20 um; try stages=3)\n")
 
 
-# --- masks ----------------------------------------------------------------------------------
+# --- masks of the chip ----------------------------------------------------------------------
 
 
-def test_masks_of_the_first_set(run, tmp_path):
-    status, out, err = run("masks", SAMPLE, "--out", tmp_path / "new" / "masks", "--json")
+def test_masks_of_the_chip(run, plain, tmp_path):
+    status, out, err = run("masks", plain, "--out", tmp_path / "new" / "masks", "--json")
+    report = json.loads(out)
+    names = sorted(file["name"] for file in report["files"])
+    assert (status, err) == (0, "")
+    assert names == sorted(each.name for each in (tmp_path / "new" / "masks").iterdir())
+    assert {Path(name).suffix for name in names} >= {".dxf", ".gds", ".txt", ".pdf", ".zip"}
+    assert report["left_out"] == []
+    assert "Read back: " in run("masks", plain, "--out", tmp_path / "again")[1]
+
+
+def test_masks_of_a_chip_with_errors_are_refused_and_written_by_force(run, plain, tmp_path):
+    channels = (ChipChannel(set_name="One", x_um=19_000.0),)
+    write_project(read_project(plain).with_plan(ChipPlan(channels=channels)), plain)
+    words = ["masks", plain, "--out", tmp_path / "masks"]
+    status, out, err = run(*words)
+    assert (status, out) == (1, "")
+    assert re.fullmatch(r"sideloop: chip 'Plain chip' cannot be made: [^\n]*add --force\n", err)
+    assert not (tmp_path / "masks").exists()
+    assert run(*words, "--force")[0] == 0
+    (sheet,) = (tmp_path / "masks").glob("*_ORDER.txt")
+    assert "edge" in sheet.read_text(encoding="utf-8")
+
+
+# --- masks of bare channels -----------------------------------------------------------------
+
+
+def test_bare_masks_of_one_set(run, tmp_path):
+    status, out, err = run("masks", SAMPLE, "--set", "Four loops", "--out", tmp_path / "new" / "masks", "--json")
     report = json.loads(out)
     names = sorted(file["name"] for file in report["files"])
     assert (status, err) == (0, "")
@@ -199,24 +306,26 @@ def test_masks_in_words_and_of_all_sets(run, tmp_path):
     written = [each for each in tmp_path.iterdir() if each.suffix == ".gds"]
     assert len(written) == len(read_project(SAMPLE).sets)
     assert all(each.name in out for each in written)
-    assert "Read back: 1 channel with 4 islands, as drawn." in out
+    assert "Read back: 1 channel with 4 islands, as drawn" in out
 
 
-def test_masks_of_an_impossible_design_are_refused(run, tmp_path):
-    for words in ([], ["--force"]):
-        status, out, err = run("masks", SAMPLE, "--out", tmp_path / "masks", IMPOSSIBLE, *words)
-        assert (status, out) == (1, "")
-        assert err.count("\n") == 1
-        assert not (tmp_path / "masks").exists()
+@pytest.mark.parametrize("which", [[], ["--set", "Four loops"]])
+@pytest.mark.parametrize("force", [[], ["--force"]])
+def test_masks_of_an_impossible_design_are_refused(run, tmp_path, which, force):
+    status, out, err = run("masks", SAMPLE, "--out", tmp_path / "masks", IMPOSSIBLE, *which, *force)
+    assert (status, out) == (1, "")
+    assert err.count("\n") == 1
+    assert not (tmp_path / "masks").exists()
 
 
 def test_force_writes_what_has_an_outline(run, tmp_path, with_finding):
     with_finding(Severity.ERROR)
-    status, _, err = run("masks", SAMPLE, "--out", tmp_path / "masks")
+    words = ["masks", SAMPLE, "--set", "Four loops", "--out", tmp_path / "masks"]
+    status, _, err = run(*words)
     assert status == 1
     assert "for the test; cure it, or add --force" in err
     assert not (tmp_path / "masks").exists()
-    assert run("masks", SAMPLE, "--out", tmp_path / "masks", "--force")[0] == 0
+    assert run(*words, "--force")[0] == 0
     assert list((tmp_path / "masks").glob("*.gds"))
 
 
@@ -232,7 +341,7 @@ def test_force_leaves_out_sets_without_an_outline_and_says_so(run, tmp_path):
     assert "--force to leave it out" in err
     status, out, _ = run(*words, "--force")
     assert status == 0
-    assert "left out, because they have no outline (see 'check'):\n  - Bad one" in out
+    assert "left out, because they cannot be drawn (see 'check'):\n  - Bad one" in out
     assert json.loads(run(*words, "--force", "--json")[1])["left_out"] == ["Bad one"]
     assert len(list((tmp_path / "masks").glob("*.gds"))) == len(project.sets)
 
@@ -383,9 +492,11 @@ def test_from_outside():
 def test_names_beyond_the_screen_s_letters(tmp_path):
     project = ChipProject(name="Spülchip Ω", sets=(ParameterSet(name="Schleife ☂"),))
     write_project(project, tmp_path / "a.sideloop")
-    done = process("check", tmp_path / "a.sideloop", env={**os.environ, "PYTHONIOENCODING": "ascii:strict"})
+    ascii_only = {**os.environ, "PYTHONIOENCODING": "ascii:strict"}
+    done = process("check", tmp_path / "a.sideloop", "--set", "Schleife ☂", env=ascii_only)
     assert done.returncode == 0
     assert done.stdout == "Sp\\xfclchip \\u03a9, set 'Schleife \\u2602': no findings\n"
+    assert "will say SPULCHIP" in process("check", tmp_path / "a.sideloop", env=ascii_only).stdout
 
 
 @pytest.mark.skipif(os.name != "posix", reason="a pipe as POSIX has it")
@@ -445,8 +556,8 @@ def test_a_missing_window_library_is_told_in_words():
 @pytest.mark.parametrize(("words", "expected"), [([], None), (["open", str(SAMPLE)], SAMPLE)])
 def test_the_window_is_opened_on_the_file(monkeypatch, words, expected):
     opened = []
-    stand_in = type(sys)("app.main_window")
+    stand_in = type(sys)("app.opening")
     stand_in.run_window = lambda path: opened.append(path) or 0
-    monkeypatch.setitem(sys.modules, "app.main_window", stand_in)
+    monkeypatch.setitem(sys.modules, "app.opening", stand_in)
     assert main(words) == 0
     assert opened == [expected]

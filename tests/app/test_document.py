@@ -9,6 +9,7 @@ import pytest
 
 from app.document import Document
 from core.errors import DesignValueError, ProjectFileError
+from core.fabrication.shipped import shipped_process
 from core.parameters import ChannelParameters
 from core.project import ChipProject, ParameterSet, read_project
 
@@ -227,3 +228,81 @@ def test_details_are_one_step(document):
     assert document.project.name == "Bench chip"
     with pytest.raises(DesignValueError):
         document.change_details(name="  ", lab="", author="", notes="")
+
+
+# --- making it
+
+
+def test_a_process_is_chosen_edited_and_taken_back(document):
+    """Truth: the shipped values of the kind, and the values before."""
+    before = document.project
+    document.choose_process("laser-cut film")
+    assert document.process == shipped_process("laser-cut film")
+    assert document.undo_stack.undo_text == "Make it as laser-cut film"
+    document.change_process({"kerf_um": 60})
+    assert document.process.kerf_um == 60.0
+    assert document.undo_stack.undo_text == "Kerf 80 to 60 µm"
+    document.undo_stack.undo()
+    document.undo_stack.undo()
+    assert document.project is before
+
+
+def test_a_drag_along_a_value_of_the_process_is_one_step(document):
+    gesture = document.new_gesture()
+    for width in (51, 55, 60):
+        document.change_process({"min_width_um": width}, gesture=gesture)
+    assert document.undo_stack.count() == 1
+    assert document.undo_stack.undo_text == "Smallest width 50 to 60 µm"
+
+
+@pytest.mark.parametrize("values", [{"min_depth_um": 9000}, {"kerf_um": 100}, {"min_width_um": "wide"}])
+def test_values_that_contradict_one_another_change_nothing(document, values):
+    before = document.project
+    with pytest.raises(DesignValueError):
+        document.change_process(values)
+    assert document.project is before
+    assert document.undo_stack.count() == 0
+
+
+def test_the_plan_is_changed_and_taken_back(document):
+    before = document.project
+    document.change_plan_values({"chip_width_um": 30000})
+    assert document.plan.chip_width_um == 30000.0
+    assert document.undo_stack.undo_text == "Chip width 40000 to 30000 µm"
+    document.change_plan(document.plan.with_values({"plate": "wafer"}), "Fill a wafer")
+    assert document.plan.plate == "wafer"
+    assert document.undo_stack.undo_text == "Fill a wafer"
+    document.undo_stack.undo()
+    document.undo_stack.undo()
+    assert document.project is before
+
+
+@pytest.mark.parametrize(
+    ("field", "value", "read"),
+    [
+        ("loop_radius_um", 350.0, lambda d: d.channel.loop_radius_um),
+        ("min_width_um", 30.0, lambda d: d.process.min_width_um),
+        ("chip_width_um", 30000.0, lambda d: d.plan.chip_width_um),
+        ("flow_ul_min", 10.0, lambda d: d.operating.flow_ul_min),
+    ],
+)
+def test_a_cure_goes_to_whatever_has_the_field(document, field, value, read):
+    document.apply_cure(field, value)
+    assert read(document) == value
+    assert document.undo_stack.count() == 1
+
+
+def test_a_cure_of_another_set_takes_that_set_in_hand(document):
+    document.apply_cure("stages", 7, index=2)
+    assert [each.channel.stages for each in document.project.sets] == [1, 2, 7]
+    assert document.current_set.name == "Gamma"
+
+
+def test_another_process_that_makes_another_channel_tells_of_another_score(document, qtbot):
+    score = document.assessment.score
+    with qtbot.waitSignal(document.estimate_changed):
+        document.change_process({"bias_um": 5.0, "allowance": "not at all"})
+    assert document.assessment.score.forward_pressure_pa < score.forward_pressure_pa, "wider channels resist less"
+    with qtbot.waitSignal(document.estimate_changed):
+        document.change_process({"allowance": "in the drawing"})
+    assert document.assessment.score == score, "compensated, the same channel comes out"

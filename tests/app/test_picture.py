@@ -7,7 +7,8 @@ from PySide6.QtCore import QTimer
 from PySide6.QtGui import QImage
 from PySide6.QtWidgets import QApplication
 
-from app import main_window
+from app import opening
+from app.main_window import MainWindow
 from app.picture import main, render_window
 from core.project import new_project, write_project
 from tests.app.answers import ReadyAnswers
@@ -41,19 +42,19 @@ def test_a_new_chip_and_a_wanted_state(qapp, tmp_path):
 
 def test_the_program_starts_opens_and_ends(qapp, chip, monkeypatch, tmp_path):
     hooks = []
-    monkeypatch.setattr(main_window, "Ask", ReadyAnswers)
-    monkeypatch.setattr(main_window, "user_folder", lambda: tmp_path / "user")
-    monkeypatch.setattr(main_window.FailureHook, "install", lambda hook: hooks.append(hook))
-    monkeypatch.setattr(main_window, "start_log", lambda path: None)
+    monkeypatch.setattr(opening, "Ask", ReadyAnswers)
+    monkeypatch.setattr(opening, "user_folder", lambda: tmp_path / "user")
+    monkeypatch.setattr(opening.FailureHook, "install", lambda hook: hooks.append(hook))
+    monkeypatch.setattr(opening, "start_log", lambda path: None)
 
     def leave():
-        (window,) = (w for w in QApplication.topLevelWidgets() if isinstance(w, main_window.MainWindow))
+        (window,) = (w for w in QApplication.topLevelWidgets() if isinstance(w, MainWindow))
         titles.append(window.windowTitle())
         window.close()
         window.deleteLater()
 
     titles = []
     QTimer.singleShot(0, qapp, leave)
-    assert main_window.run_window(chip) == 0
+    assert opening.run_window(chip) == 0
     assert "bench.sideloop" in titles[0]
     assert len(hooks) == 1

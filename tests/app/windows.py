@@ -28,7 +28,8 @@ def make_window(qtbot, qapp, tmp_path):
         )
         made.append((window, look))
         qtbot.addWidget(window)
-        window.parts.drawing.set_animated(False)
+        for drawing in (window.parts.drawing, window.parts.chip_view):
+            drawing.set_animated(False)
         window.resize(1600, 1000)
         with qtbot.waitExposed(window):
             window.show()

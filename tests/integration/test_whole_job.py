@@ -17,6 +17,7 @@ from PySide6.QtWidgets import QApplication
 
 from app.actions import ACTIONS
 from app.panels.export import ExportDialog
+from app.panels.export_work import What
 from core.geometry.shape import build_shape
 from core.project import read_project
 
@@ -131,6 +132,7 @@ def test_the_whole_job(window, make_window, qtbot, sample, tmp_path):
     other.actions_by_name["export"].trigger()
     dialog = other.findChild(ExportDialog)
     folder = tmp_path / "masks"
+    dialog.choices.what_buttons[What.BARE].setChecked(True)
     dialog.choices.folder_entry.setText(str(folder))
     with qtbot.waitSignal(dialog.summary_shown, timeout=30_000):
         pass

@@ -12,7 +12,8 @@ import pytest
 from PySide6.QtCore import QPointF
 from PySide6.QtGui import QColor
 
-from app.drawing.flow_overlay import FlowOverlay, Shown, band_colours
+from app.drawing.flow_legend import band_colours
+from app.drawing.flow_overlay import FlowOverlay, Shown
 from app.look import DARK, LIGHT
 from app.shown_values import ShownUnits
 from core.flow.result import FlowField

@@ -8,10 +8,11 @@ from PySide6.QtCore import Qt
 from app.panels.findings import FindingsPanel
 from core.findings import Finding, Severity
 
-FINDINGS = (
+SHAPE = (
     Finding(code="one", severity=Severity.ERROR, message="loop_radius_um is too small", field="loop_radius_um"),
     Finding(code="two", severity=Severity.WARNING, message="the nose is sharp", field="nose_radius_um"),
 )
+FINDINGS = tuple(("Alpha", finding) for finding in SHAPE)
 
 
 @pytest.fixture
@@ -30,14 +31,14 @@ def test_nothing_found_is_said(panel):
 
 
 def test_findings_carry_signs_and_screen_words(panel):
-    panel.show_findings(FINDINGS)
+    panel.show_findings(FINDINGS, home="Alpha")
     assert panel.heading.text() == "Findings: 1 blocking, 1 to note"
     assert panel.list.item(0).text() == "\N{BLACK DIAMOND} Blocks: 'Loop radius' is too small"
     assert panel.list.item(1).text().startswith("\N{WHITE UP-POINTING TRIANGLE} Note: ")
 
 
 def test_stepping_goes_round(panel, qtbot):
-    panel.show_findings(FINDINGS)
+    panel.show_findings(FINDINGS, home="Alpha")
     seen = []
     panel.finding_chosen.connect(seen.append)
     for step in (1, 1, 1, -1):
@@ -46,7 +47,7 @@ def test_stepping_goes_round(panel, qtbot):
 
 
 def test_keys_step_and_enter_asks_for_the_field(panel, qtbot):
-    panel.show_findings(FINDINGS)
+    panel.show_findings(FINDINGS, home="Alpha")
     panel.point_at(0)
     panel.list.setFocus()
     qtbot.keyClick(panel.list, Qt.Key.Key_Down)
@@ -56,7 +57,7 @@ def test_keys_step_and_enter_asks_for_the_field(panel, qtbot):
 
 
 def test_the_finding_pointed_at_stays_when_others_go(panel):
-    panel.show_findings(FINDINGS)
+    panel.show_findings(FINDINGS, home="Alpha")
     panel.point_at(1)
     panel.show_findings(FINDINGS[1:])
     assert panel.list.currentRow() == 0
@@ -66,6 +67,6 @@ def test_the_finding_pointed_at_stays_when_others_go(panel):
 
 def test_long_lines_are_shown_whole(panel):
     long = Finding(code="x", severity=Severity.ERROR, message="far too long " * 12, field="stages")
-    panel.show_findings((long,))
+    panel.show_findings([("", long)])
     assert panel.list.height() > 4 * panel.list.fontMetrics().height()
     assert panel.list.verticalScrollBar().maximum() == 0

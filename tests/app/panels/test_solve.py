@@ -120,10 +120,10 @@ def test_progress_is_shown_while_it_runs(panel):
 
 def test_choices_ask_for_another_picture(panel, qtbot):
     for choose in (
-        lambda: panel.shown_box.setCurrentIndex(2),
-        lambda: panel.direction_box.setCurrentIndex(1),
-        lambda: panel.show_height(20.0),
+        lambda: panel.picture.shown_box.setCurrentIndex(2),
+        lambda: panel.picture.direction_box.setCurrentIndex(1),
+        lambda: panel.picture.show_height(20.0),
     ):
-        with qtbot.waitSignal(panel.view_changed):
+        with qtbot.waitSignal(panel.picture.changed):
             choose()
-    assert (panel.shown, panel.is_forward, panel.height_share) == (Shown.PRESSURE, True, 0.2)
+    assert (panel.picture.shown, panel.picture.is_forward, panel.picture.height_share) == (Shown.PRESSURE, True, 0.2)

@@ -129,12 +129,12 @@ def test_changed_parameters_make_it_stale_and_undo_makes_it_good(window, solving
 
 def test_the_picture_follows_and_says_when_it_is_stale(window, solving, qtbot):
     panel, overlay, drawing = solving.panel, solving.overlay, window.parts.drawing
-    panel.shown_box.setCurrentIndex(panel.shown_box.findData(Shown.SPEED))
-    assert "solve here" in panel.hint_label.text()
+    panel.picture.shown_box.setCurrentIndex(panel.picture.shown_box.findData(Shown.SPEED))
+    assert "solve here" in panel.picture.hint_label.text()
     assert not overlay.is_shown
     solved(qtbot, solving)
     assert overlay.is_shown
-    assert panel.hint_label.text() == ""
+    assert panel.picture.hint_label.text() == ""
     place = drawing.camera.to_px((100.0, 0.0)).toPoint()
     qtbot.mouseMove(drawing, QPoint(5, 5))
     qtbot.mouseMove(drawing, place)
@@ -146,16 +146,16 @@ def test_the_picture_follows_and_says_when_it_is_stale(window, solving, qtbot):
     window.document.change_channel({"loop_radius_um": 340})
     window.document.settle()
     assert not overlay.is_shown, "never another channel's picture"
-    assert "solve here" in panel.hint_label.text()
+    assert "solve here" in panel.picture.hint_label.text()
 
 
 def test_the_height_slider_works_by_key(solving, qtbot):
-    solving.panel.height_slider.setFocus()
-    qtbot.keyClick(solving.panel.height_slider, Qt.Key.Key_PageUp)
-    assert solving.panel.height_share == pytest.approx(0.6)
-    assert "60 %" in solving.panel.height_label.text()
-    qtbot.keyClick(solving.panel.height_slider, Qt.Key.Key_End)
-    assert solving.panel.height_share == pytest.approx(0.95)
+    solving.panel.picture.height_slider.setFocus()
+    qtbot.keyClick(solving.panel.picture.height_slider, Qt.Key.Key_PageUp)
+    assert solving.panel.picture.height_share == pytest.approx(0.6)
+    assert "60 %" in solving.panel.picture.height_label.text()
+    qtbot.keyClick(solving.panel.picture.height_slider, Qt.Key.Key_End)
+    assert solving.panel.picture.height_share == pytest.approx(0.95)
 
 
 def test_the_curve_shows_solved_points_beside_the_estimate(window, solving, qtbot):
@@ -189,7 +189,7 @@ def test_results_are_saved_with_the_chip_and_come_back(window, solving, qtbot, t
 @pytest.mark.parametrize("suffix", [".png", ".svg"])
 def test_the_picture_is_saved_as_it_is_seen(window, solving, qtbot, tmp_path, shown, suffix):
     solved(qtbot, solving)
-    solving.panel.shown_box.setCurrentIndex(solving.panel.shown_box.findData(shown))
+    solving.panel.picture.shown_box.setCurrentIndex(solving.panel.picture.shown_box.findData(shown))
     window.ask.path = tmp_path / f"flow{suffix}"
     qtbot.mouseClick(solving.panel.picture_button, Qt.MouseButton.LeftButton)
     if suffix == ".svg":
@@ -255,9 +255,45 @@ def test_one_solve_in_earnest(window, qtbot):
     score = window.document.assessment.score
     assert result.forward_pressure_pa == pytest.approx(score.forward_pressure_pa, rel=0.15)  # the estimate
     panel = solving.panel
-    panel.shown_box.setCurrentIndex(panel.shown_box.findData(Shown.SPEED))
+    panel.picture.shown_box.setCurrentIndex(panel.picture.shown_box.findData(Shown.SPEED))
     end = window.document.shape.centreline.forward_outlet
     inside = end.point_um - 100.0 * np.array([np.cos(end.outward_heading_rad), np.sin(end.outward_heading_rad)])
     mean_m_s = 1200.0 * 1e-9 / 60.0 / 4e-8
     speed = float(solving.text_at(*inside).split()[1])
     assert speed == pytest.approx(2.096 * mean_m_s, rel=0.05)  # middle of a square duct: series solution
+
+
+# --- as it will be made
+
+
+def test_what_is_solved_is_what_is_made(window, solving, qtbot):
+    """Truth: walls 10 um further out on both sides make widths 20 um larger; the set itself asks for 200 um."""
+    window.document.change_process({"bias_um": 10.0, "allowance": "not at all"})
+    solved(qtbot, solving)
+    (*_, result) = window.document.solved.results
+    assert result.channel.channel_width_um == 220.0
+    assert window.document.channel.channel_width_um == 200.0
+    assert solving.panel.standing_label.text() == Standing.CURRENT
+
+
+def test_a_process_that_makes_another_channel_makes_it_stale(window, solving, qtbot):
+    solved(qtbot, solving)
+    document, label = window.document, solving.panel.standing_label
+    document.change_process({"bond_limit_kpa": 150.0})
+    document.settle()
+    assert label.text() == Standing.CURRENT, "the same channel is made"
+    document.change_process({"bias_um": 10.0, "allowance": "not at all"})
+    document.settle()
+    assert label.text() == Standing.STALE
+    assert "process" in solving.panel.remark_label.text()
+    document.undo_stack.undo()
+    document.settle()
+    assert label.text() == Standing.CURRENT
+
+
+def test_results_of_what_is_made_are_kept_in_the_file(window, solving, qtbot, tmp_path):
+    window.document.change_process({"bias_um": 10.0, "allowance": "not at all"})
+    solved(qtbot, solving)
+    window.document.rename_set(0, "Another name")
+    window.document.save(tmp_path / "chip.sideloop")
+    assert len(read_project(tmp_path / "chip.sideloop").solved) == len(window.document.solved.results) > 0

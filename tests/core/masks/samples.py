@@ -20,7 +20,7 @@ from gdsii.library import Library
 
 from core.errors import GeometryError
 from core.geometry.shape import build_shape
-from core.masks.drawing import arranged
+from core.masks.bare import bare_drawings
 from core.masks.options import MaskOptions
 from core.parameters import ChannelParameters
 
@@ -59,7 +59,7 @@ def shape_of(name: str) -> ChannelShape:
 
 def drawing_of(name: str, **options: object) -> MaskDrawing:
     """Return the mask drawing of one shape."""
-    return arranged([(name, shape_of(name))], chip_name="Bench 7", options=MaskOptions(**options))[0]
+    return bare_drawings([(name, shape_of(name))], chip_name="Bench 7", options=MaskOptions(**options))[0]
 
 
 def random_shapes(count: int, *, seed: int) -> Iterator[ChannelShape]:

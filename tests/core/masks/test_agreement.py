@@ -13,10 +13,11 @@ import numpy as np
 import pytest
 import shapely
 
+from core.geometry.body import channel_body
 from core.geometry.pieces import cut_pieces
 from core.geometry.shape import build_shape
 from core.masks.arcs import with_outermost_points
-from core.masks.drawing import arranged
+from core.masks.bare import bare_drawings
 from core.masks.gdsii_cells import gdsii_cells, link_length_um
 from core.masks.mask_set import write_mask_set
 from core.masks.options import MaskOptions
@@ -119,7 +120,7 @@ def pieces_nm(shape: ChannelShape) -> Iterator[tuple[str, np.ndarray, np.ndarray
 
     The origin of a cell is free within the grid: it is set so that the first place is a whole number.
     """
-    parts = cut_pieces(shape, link_um=link_length_um(shape.parameters))
+    parts = cut_pieces(shape, link_um=link_length_um(channel_body(shape.parameters)))
     rests: dict[int, np.ndarray] = {}
     for placed in parts.placed:
         piece, place = parts.pieces[placed.piece], np.array([placed.dx_um, placed.dy_um]) * 1000.0
@@ -151,10 +152,10 @@ def test_file_is_the_rounded_source_to_1e_9(tmp_path: Path, name: str) -> None:
 def test_rounded_pieces_are_within_the_grid_of_the_ideal(name: str) -> None:
     # a cell is rounded once: half the diagonal of a square nanometre; a copy whose place is no
     # whole number of nanometres is moved by as much again
-    drawing = arranged([("Test", shape_of(name))], chip_name="Bench 7", options=MaskOptions())[0]
+    drawing = bare_drawings([("Test", shape_of(name))], chip_name="Bench 7", options=MaskOptions())[0]
     cells = {cell.name: cell for cell in gdsii_cells(drawing, chord_tolerance_um=TOLERANCE_UM)}
     for piece, chords, place in pieces_nm(shape_of(name)):
-        rounded = shapely.union_all([shapely.Polygon(ring) for ring in cells[f"TEST__{piece}"].rings_nm])
+        rounded = shapely.union_all([shapely.Polygon(ring) for _, ring in cells[f"TEST__{piece}"].rings_nm])
         in_cell = shapely.Polygon(chords)
         assert in_cell.exterior.hausdorff_distance(rounded.exterior) <= np.sqrt(0.5)
         assert in_cell.symmetric_difference(rounded).area <= 0.5 * in_cell.length

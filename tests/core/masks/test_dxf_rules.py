@@ -13,6 +13,8 @@ from ezdxf import appsettings
 
 from core.errors import ExportError
 from core.masks.dxf_rules import dxf_problems
+from core.masks.found import found_in_dxf
+from core.masks.found_areas import FoundAreas
 from core.masks.options import DxfVersion
 from core.masks.read_dxf import read_dxf
 
@@ -29,6 +31,8 @@ BOUNDS = (0.0, 0.0, 9.0, 1.0)
 
 class Mask:
     """A sound drawing of two squares, to be spoilt."""
+
+    is_nested = False
 
     def __init__(self, version: str) -> None:
         self.version = DxfVersion(version)
@@ -55,9 +59,12 @@ class Mask:
         self.document.header["$EXTMIN"], self.document.header["$EXTMAX"] = (*BOUNDS[:2], 0.0), (*BOUNDS[2:], 0.0)
         self.document.saveas(path)
         path.write_text(patch(path.read_text()))
-        return dxf_problems(
-            read_dxf(path), version=self.version, layers=("L1_CHAN",), bounds_mm=BOUNDS, sagitta_mm=2e-5
-        )
+        read = read_dxf(path)
+        problems = dxf_problems(read, version=self.version, layers=("L1_CHAN",), bounds_mm=BOUNDS)
+        if not problems:
+            tree = found_in_dxf(read, top="TOP", sagitta_um=0.02)
+            problems = FoundAreas(tree, is_nested=self.is_nested).problems(grain_um=1e-6)
+        return problems
 
 
 @pytest.fixture(params=["R2000", "R12"])
@@ -152,7 +159,7 @@ def test_anything_but_polylines_is_named(
     mask: Mask, tmp_path: Path, draw: Callable[[Modelspace], object], kind: str
 ) -> None:
     draw(mask.space)
-    assert f"entity {kind}; only closed polylines are allowed" in mask.problems(tmp_path)
+    assert f"entity {kind}; only closed polylines and inserts are allowed" in mask.problems(tmp_path)
 
 
 @pytest.mark.parametrize(
@@ -168,7 +175,7 @@ def test_curves_and_fills_of_newer_files_are_named(
 ) -> None:
     mask = Mask("R2000")
     draw(mask.space)
-    assert f"entity {kind}; only closed polylines are allowed" in mask.problems(tmp_path)
+    assert f"entity {kind}; only closed polylines and inserts are allowed" in mask.problems(tmp_path)
 
 
 def test_paper_space_is_named(mask: Mask, tmp_path: Path) -> None:

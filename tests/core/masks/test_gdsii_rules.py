@@ -14,6 +14,8 @@ import numpy as np
 import pytest
 
 from core.errors import ExportError
+from core.masks.found import found_in_gdsii
+from core.masks.found_areas import FoundAreas
 from core.masks.gdsii_rules import gdsii_problems
 from core.masks.read_gdsii import read_gdsii
 
@@ -26,7 +28,10 @@ STAMP = datetime(2000, 1, 1)
 
 
 class Mask:
-    """A sound library of three cells, to be spoilt."""
+    """A sound library of two cells, to be spoilt; the piece is part of the block on top."""
+
+    blocks = ("TOP",)
+    grid_nm = 1
 
     def __init__(self) -> None:
         self.library = gdstk.Library("MASK", unit=1e-6, precision=1e-9)
@@ -42,7 +47,12 @@ class Mask:
         path = folder / "mask.gds"
         self.library.write_gds(path, max_points=0, timestamp=STAMP)
         path.write_bytes(patch(path.read_bytes()))
-        return gdsii_problems(read_gdsii(path), top="TOP", layer=1)
+        read = read_gdsii(path)
+        problems = gdsii_problems(read, top="TOP", layers=[1], grid_nm=self.grid_nm)
+        if not problems:
+            tree = found_in_gdsii(read, blocks=self.blocks)
+            problems = FoundAreas(tree, is_nested=False).problems(grain_um=0.0)
+        return problems
 
 
 @pytest.fixture

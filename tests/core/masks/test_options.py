@@ -24,12 +24,16 @@ def test_words_become_choices() -> None:
         ({"formats": ("GDS",)}, "did you mean 'GDSII'"),
         ({"formats": ()}, "choose at least one"),
         ({"dxf_version": "R13"}, "did you mean 'R12'"),
-        ({"islands": 3}, "pieces, loops"),
+        ({"islands": 3}, "pieces, loops, nested"),
         ({"chord_tolerance_um": 0.0}, "raise it to at least 0.002"),
         ({"chord_tolerance_um": float("nan")}, "finite"),
         ({"clearance_um": 1.0}, "raise it to at least 10"),
         ({"chord_tolerence_um": 0.1}, "did you mean 'chord_tolerance_um'"),
-        ({"island_layer": MaskLayer(dxf_name="L1_CHAN", gdsii_number=9, meaning="")}, "another layer name"),
+        ({"grid_nm": 2.5}, "whole number"),
+        ({"grid_nm": 0}, "raise it to at least 1"),
+        ({"tone": "positive"}, "drawn shapes are CLEAR, drawn shapes are DARK"),
+        ({"copies": "array"}, "inserts, flat"),
+        ({"reading": "mirrored"}, "right-reading"),
     ],
 )
 def test_bad_choices_are_refused_with_a_way_out(values: dict[str, object], words: str) -> None:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import errno
 import os
+import shutil
 import subprocess
 from contextlib import contextmanager
 from pathlib import Path
@@ -86,6 +87,39 @@ def test_what_the_system_refuses_is_told_in_one_line(
     assert contents(tmp_path) == {}  # the folders made for it are gone too
 
 
+@pytest.mark.parametrize("calls", [1, 4, 7])
+def test_a_folder_that_goes_half_way(tmp_path: Path, monkeypatch: pytest.MonkeyPatch, calls: int) -> None:
+    real, done = os.fsync, []
+
+    def gone(handle: int) -> None:
+        real(handle)
+        done.append(handle)
+        if len(done) == calls:
+            shutil.rmtree(tmp_path / "masks")
+
+    monkeypatch.setattr("core.masks.placing.os.fsync", gone)
+    with pytest.raises(ExportError, match="it has gone while the files were written; make it again") as caught:
+        export(tmp_path / "masks")
+    assert "\n" not in str(caught.value)
+    assert contents(tmp_path) == {}
+
+
+def test_a_file_that_another_program_holds(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    # as some systems do while a viewer has the old file open
+    (tmp_path / "BENCH_7.zip").write_text("old")
+    real = Path.replace
+
+    def replace(self: Path, target: Path) -> Path:
+        if self.parent == tmp_path and self.name == "BENCH_7.zip":
+            raise OSError(errno.EBUSY, "held")
+        return real(self, target)
+
+    monkeypatch.setattr(Path, "replace", replace)
+    with pytest.raises(ExportError, match="another program holds it; close that program"):
+        export(tmp_path)
+    assert contents(tmp_path) == {"BENCH_7.zip": b"old"}
+
+
 @pytest.mark.parametrize("below", ["", "masks", "deep/masks"])
 def test_a_file_in_the_way_of_the_folder(tmp_path: Path, below: str) -> None:
     (tmp_path / "file").write_text("mine")
@@ -107,8 +141,8 @@ def test_old_files_are_replaced_and_others_stay(tmp_path: Path) -> None:
     assert found["notes.txt"] == b"mine"
     assert found["BENCH_7_ONE.gds"] != b"old"
     assert sorted(found) == [
-        *["BENCH_7_ONE.dxf", "BENCH_7_ONE.gds", "BENCH_7_ONE.svg", "BENCH_7_README.txt"],
-        "notes.txt",
+        *["BENCH_7.zip", "BENCH_7_ONE.dxf", "BENCH_7_ONE.gds", "BENCH_7_ONE.svg"],
+        *["BENCH_7_ORDER.pdf", "BENCH_7_ORDER.txt", "BENCH_7_SHA256.txt", "notes.txt"],
     ]
 
 

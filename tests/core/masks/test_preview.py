@@ -8,8 +8,8 @@ from xml.etree import ElementTree
 
 import pytest
 
-from core.masks.drawing import arranged
-from core.masks.options import MaskOptions
+from core.masks.bare import bare_drawings
+from core.masks.options import MaskOptions, Tone
 from core.masks.preview import preview_svg, scale_bar_um
 from tests.core.masks.samples import SETS, drawing_of, shape_of
 
@@ -42,8 +42,8 @@ def ring_areas(path: str) -> list[float]:
 @pytest.mark.parametrize("name", SETS)
 def test_the_picture_is_the_outline(name: str) -> None:
     drawing = drawing_of(name)
-    root = ElementTree.fromstring(preview_svg(drawing))
-    (path,) = root.findall(f"{SVG}path")
+    root = ElementTree.fromstring(preview_svg(drawing, Tone.CLEAR))
+    (path,) = root.iter(f"{SVG}path")
     assert path.get("fill-rule") == "evenodd"
     areas = ring_areas(path.get("d"))
     assert len(areas) == 1 + drawing.island_count
@@ -56,10 +56,10 @@ def test_the_picture_is_the_outline(name: str) -> None:
 
 def test_each_channel_is_drawn_and_the_bar_is_labelled() -> None:
     shapes = [(name, shape_of(name)) for name in SETS]
-    (drawing,) = arranged(shapes, chip_name="Bench 7", options=MaskOptions(one_file_per_set=False))
-    root = ElementTree.fromstring(preview_svg(drawing))
-    assert len(root.findall(f"{SVG}path")) == len(SETS)
-    bar = root.findall(f"{SVG}rect")[1]
+    (drawing,) = bare_drawings(shapes, chip_name="Bench 7", options=MaskOptions(one_file_per_set=False))
+    root = ElementTree.fromstring(preview_svg(drawing, Tone.CLEAR))
+    assert len(list(root.iter(f"{SVG}path"))) == len(list(root.iter(f"{SVG}use"))) == len(SETS)
+    (bar,) = (rect for rect in root.findall(f"{SVG}rect") if rect.get("id") == "bar")
     assert float(bar.get("width")) == 2000.0
     assert root.find(f"{SVG}text").text == "2 mm"
 

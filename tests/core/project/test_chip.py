@@ -6,7 +6,10 @@ from dataclasses import FrozenInstanceError, replace
 
 import pytest
 
+from core.chip.plan import ChipChannel, ChipPlan
 from core.errors import DesignValueError
+from core.fabrication.process import ProcessKind
+from core.fabrication.shipped import shipped_process
 from core.operating import OperatingPoint
 from core.project import ChipProject, ParameterSet, new_project
 
@@ -58,6 +61,27 @@ def test_a_renamed_set_keeps_its_design_and_place():
 
 def test_a_set_may_change_the_case_of_its_own_name():
     assert names_of(project_of("wide", "b").with_set_renamed("wide", "Wide")) == ["Wide", "b"]
+
+
+def placed_on(project: ChipProject) -> list[str]:
+    return [each.set_name for each in project.plan.channels]
+
+
+def test_the_chip_follows_what_happens_to_its_sets():
+    channels = tuple(ChipChannel(set_name=name, x_um=float(n)) for n, name in enumerate("abab"))
+    project = project_of("a", "b", "c").with_plan(ChipPlan(channels=channels))
+    assert placed_on(project.with_set_renamed("a", "z")) == ["z", "b", "z", "b"]
+    assert project.with_set_renamed("a", "z").plan.channels[2].x_um == 2.0
+    assert placed_on(project.with_set_replaced("b", ParameterSet(name="q"))) == ["a", "q", "a", "q"]
+    assert placed_on(project.with_set_removed("a")) == ["b", "b"]
+    assert placed_on(project.with_set_removed("c")) == ["a", "b", "a", "b"]
+    assert placed_on(project.with_set_moved("a", 2)) == ["a", "b", "a", "b"]
+
+
+def test_another_process():
+    glass = shipped_process(ProcessKind.WET_GLASS)
+    assert new_project().process == shipped_process(ProcessKind.CAST_FILM)
+    assert new_project().with_process(glass).process == glass
 
 
 @pytest.mark.parametrize("other", ["Wide", "wide", "WIDE", " Wide "])

@@ -6,7 +6,10 @@ import json
 
 import pytest
 
+from core.chip.plan import CHIP_FIELDS
 from core.errors import ProjectFileError
+from core.fabrication.process import ProcessKind
+from core.fabrication.shipped import shipped_process
 from core.operating import OperatingPoint
 from core.parameters import ChannelParameters
 from core.project import ChipProject, ParameterSet
@@ -36,9 +39,15 @@ def test_missing_fields_take_their_defaults():
 def test_every_field_is_in_the_file_under_its_own_name():
     data = json.loads(project_bytes(rinse_project()))
     assert data["format"] == "sideloop chip project"
-    assert data["schema"] == 2
+    assert data["schema"] == 3
     assert data["operating"] == rinse_project().operating.as_dict()
     assert data["sets"][0]["channel"] == rinse_project().sets[0].channel.as_dict()
+    assert data["process"] == rinse_project().process.as_dict()
+    assert set(data["chip"]) == {*CHIP_FIELDS, "label", "channels", "series"}
+    assert data["chip"]["channels"][0] == {
+        "set_name": "Four loops", "x_um": -1500.25, "y_um": 3000.0, "turn_deg": 90.0, "rows": 2, "is_control": False,
+    }  # fmt: skip
+    assert data["chip"]["series"][1] == {"name": "stages", "first": 2, "last": 6, "steps": 3}
 
 
 def test_the_file_is_readable_text():
@@ -86,7 +95,7 @@ def test_the_message_counts_what_it_leaves_out():
     ("change", "part"),
     [
         ({"format": "other"}, "no chip project"),
-        ({"schema": 3}, "saved by a newer Sideloop (schema 3; this one knows up to 2)"),
+        ({"schema": 4}, "saved by a newer Sideloop (schema 4; this one knows up to 3)"),
         ({"schema": 0}, "schema is 0"),
         ({"schema": "1"}, "schema is '1'"),
         ({"schema": True}, "schema is True"),
@@ -109,6 +118,48 @@ def test_one_problem(change, part):
     with pytest.raises(ProjectFileError) as caught:
         project_from_data({**SMALLEST, **change})
     assert part in str(caught.value)
+
+
+@pytest.mark.parametrize(
+    ("change", "part"),
+    [
+        ({"process": []}, "process: [] is no group of fields"),
+        ({"process": {"kind": "etched"}}, "process: kind is 'etched'"),
+        ({"process": {"kerf": 3}}, "process: 'kerf' is unknown; did you mean 'kerf_um'?"),
+        ({"process": {"bias_um": "3"}}, "process: bias_um is '3'; allowed: -500 to 500 um; give a number without"),
+        ({"process": {"min_depth_um": 900}}, "process: min_depth_um is 900; allowed: at most max_depth_um"),
+        ({"chip": None}, "chip: None is no group of fields"),
+        ({"chip": {"plate": "disc"}}, "chip: plate is 'disc'"),
+        ({"chip": {"chip_width": 1}}, "chip: 'chip_width' is unknown; did you mean 'chip_width_um'?"),
+        ({"chip": {"label": "two\nlines"}}, "chip: label is 'two?lines'"),
+        ({"chip": {"label": 5}}, "chip: label is 5"),
+        ({"chip": {"channels": {}}}, "chip: channels: {} is no list"),
+        ({"chip": {"channels": ["Only"]}}, "chip: channel 1: 'Only' is no group of fields"),
+        ({"chip": {"channels": [{"x_um": 1}]}}, "chip: channel 1: set_name is missing"),
+        (
+            {"chip": {"channels": [{"set_name": "Only", "x": 1}]}},
+            "chip: channel 1: 'x' is unknown; did you mean 'x_um'?",
+        ),
+        ({"chip": {"channels": [{"set_name": "Only", "x_um": "1"}]}}, "chip: channel 1: x_um is '1'"),
+        ({"chip": {"channels": [{"set_name": "Only", "y_um": float("nan")}]}}, "chip: channel 1: y_um is nan"),
+        ({"chip": {"channels": [{"set_name": "Only", "rows": 0}]}}, "chip: channel 1: rows is 0"),
+        ({"chip": {"channels": [{"set_name": "Only", "is_control": 1}]}}, "chip: channel 1: is_control is 1"),
+        ({"chip": {"series": [{"name": "depth", "first": 1, "last": 2, "steps": 2}]}}, "did you mean 'depth_um'?"),
+        (
+            {"chip": {"series": [{"name": "depth_um", "first": 1, "last": 2}]}},
+            "chip: stepped field 1: steps is missing",
+        ),
+    ],
+)
+def test_one_problem_of_process_or_chip(change, part):
+    problems = problems_of({**SMALLEST, "schema": 3, **change})
+    assert len(problems) == 1
+    assert part in problems[0]
+
+
+@pytest.mark.parametrize("kind", ProcessKind)
+def test_a_process_that_is_only_named_has_the_values_shipped_with_it(kind):
+    assert project_from_data({**SMALLEST, "schema": 3, "process": {"kind": str(kind)}}).process == shipped_process(kind)
 
 
 def test_missing_schema_and_other_documents():

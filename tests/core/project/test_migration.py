@@ -6,8 +6,12 @@ import json
 
 import pytest
 
+from core.chip.plan import ChipPlan
 from core.errors import ProjectFileError
-from core.project import migration, read_project
+from core.fabrication.process import ProcessKind
+from core.fabrication.shipped import shipped_process
+from core.project import migration, new_project, read_project
+from core.project.files import project_from_bytes
 from core.project.migration import migrated
 
 
@@ -45,6 +49,14 @@ def test_only_the_missing_steps_are_applied():
 
 def test_every_older_schema_has_a_step():
     assert sorted(migration.STEPS) == list(range(1, migration.SCHEMA))
+
+
+@pytest.mark.parametrize("schema", [1, 2])
+def test_files_from_before_processes_get_those_of_a_new_chip(schema):
+    data = {"format": "sideloop chip project", "schema": schema, "sets": [{"name": "a"}]}
+    project = project_from_bytes(json.dumps(data).encode())
+    assert project.process == shipped_process(ProcessKind.CAST_FILM) == new_project().process
+    assert project.plan == ChipPlan()
 
 
 def test_a_newer_schema_is_refused_in_words():

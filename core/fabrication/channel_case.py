@@ -1,0 +1,161 @@
+"""One channel under one process, measured only as far as it is asked for."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+from functools import cached_property
+from math import inf, isfinite
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from core.fabrication.existence import RADII, WIDTHS
+from core.fabrication.making import Making, making_of
+from core.geometry.clearances import Narrowest, narrowest
+from core.geometry.shape import ChannelShape, build_shape
+
+if TYPE_CHECKING:
+    from core.fabrication.process import Process
+    from core.fields import Value
+    from core.geometry.contour import Floats
+    from core.parameters import ChannelParameters
+
+Ends = tuple[float, float, float, float]
+
+
+@dataclass(frozen=True)
+class ChannelCase:
+    """A channel, a process, and what follows from both.
+
+    Attributes
+    ----------
+    wanted : ChannelParameters
+        The design.
+    process : Process
+        How it is made.
+    pressure_pa : float or None
+        Largest pressure in the channel, if known [Pa].
+    pressure_at : str
+        In words, when that pressure is there.
+    known_shape : ChannelShape or None
+        Shape of the design, where it was built before.
+    """
+
+    wanted: ChannelParameters
+    process: Process
+    pressure_pa: float | None = None
+    pressure_at: str = ""
+    known_shape: ChannelShape | None = None
+
+    def with_value(self, field: str, value: Value) -> ChannelCase:
+        """Return the case of the same channel with one field changed."""
+        shape = None
+        if field == "depth_um" and self.known_shape is not None:
+            shape = self.known_shape  # the depth is not in the drawing
+        return replace(self, wanted=self.wanted.with_values({field: value}), known_shape=shape)
+
+    @property
+    def widths(self) -> tuple[str, ...]:
+        """Fields of the widths that the channel really has."""
+        return WIDTHS if self.wanted.stages else WIDTHS[:1]
+
+    @property
+    def radii(self) -> tuple[str, ...]:
+        """Fields of the radii that the channel really has."""
+        return RADII if self.wanted.stages else ()
+
+    @cached_property
+    def making(self) -> Making:
+        """As drawn and as made."""
+        return making_of(self.wanted, self.process)
+
+    @cached_property
+    def shape(self) -> ChannelShape:
+        """The design as wanted."""
+        return self.known_shape or build_shape(self.wanted)
+
+    @cached_property
+    def made_shape(self) -> ChannelShape:
+        """As made."""
+        return self.shape if self.making.made == self.wanted else build_shape(self.making.made)
+
+    @cached_property
+    def drawn_shape(self) -> ChannelShape:
+        """As drawn."""
+        for known, shape in ((self.wanted, self.shape), (self.making.made, self.made_shape)):
+            if self.making.drawn == known:
+                return shape
+        return build_shape(self.making.drawn)
+
+    @property
+    def is_drawable(self) -> bool:
+        """Whether the channel exists as wanted, as drawn and as made."""
+        if self.making.findings or not self.shape.is_usable:
+            return False
+        return self.made_shape.is_usable and self.drawn_shape.is_usable
+
+    @cached_property
+    def _narrowest(self) -> Narrowest | None:
+        """The narrowest places as made; None without stages or without a shape."""
+        usable = not self.making.findings and self.made_shape.is_usable and self.wanted.stages > 0
+        return narrowest(self.made_shape) if usable else None
+
+    @property
+    def made_gap_um(self) -> float:
+        """The narrowest solid between walls as made; infinite where there is none [um]."""
+        return inf if self._narrowest is None else self._narrowest.gap_um
+
+    @cached_property
+    def drawn_gap_um(self) -> float:
+        """The narrowest solid between walls on the mask, after scaling; infinite where there is none [um]."""
+        drawn, made = self.making.drawn, self.making.made
+        shift = 0.5 * (made.channel_width_um - drawn.channel_width_um)
+        # nothing clipped: every wall of the drawing stands by the shift behind the wall as made
+        if all(abs(getattr(drawn, name) - shift - getattr(made, name)) < 1e-9 for name in RADII):
+            return self.making.scale * (self.made_gap_um + 2.0 * shift)
+        if self.wanted.stages == 0 or not self.drawn_shape.is_usable:
+            return inf
+        return self.making.scale * narrowest(self.drawn_shape).gap_um
+
+    @property
+    def gap_ends(self) -> Ends | None:
+        """Both ends of the line across the narrowest solid, as made."""
+        if self._narrowest is None or not isfinite(self._narrowest.gap_um):
+            return None
+        return _ends(*self._narrowest.gap_at_um)
+
+    @property
+    def is_gap_in_island(self) -> bool:
+        """Whether the narrowest solid is an island."""
+        return self._narrowest is not None and self._narrowest.is_gap_in_island
+
+    def width_ends(self, name: str, width_um: float) -> Ends | None:
+        """Return both ends of a line straight across the bypass or loop of the first stage, or across a lead."""
+        if self.shape.chain is None:
+            return None
+        line = self.shape.chain.centreline
+        if line.stages:
+            place = line.stages[0]
+            section = place.bypass_section_um if name == WIDTHS[0] else place.loop_section_um
+        else:
+            section = line.forward_outlet.section_um + 0.5 * (
+                line.forward_inlet.point_um - line.forward_outlet.point_um
+            )
+        middle = section.mean(axis=0)
+        ends = middle + (section - middle) * (width_um / getattr(self.wanted, name))
+        return _ends(ends[0], ends[1])
+
+    def corner_place(self, name: str) -> tuple[float, float] | None:
+        """Return a corner of the first stage that a radius belongs to."""
+        outline, chain = self.shape.outline, self.shape.chain
+        if outline is None or chain is None or not outline.islands:
+            return None
+        place = chain.centreline.stages[0]
+        is_nose = name == RADII[0]
+        vertices = (outline.islands[0] if is_nose else outline.outer).vertices_um
+        near = vertices[np.argmin(np.hypot(*(vertices - (place.fork_um if is_nose else place.mouth_um)).T))]
+        return float(near[0]), float(near[1])
+
+
+def _ends(first: Floats, last: Floats) -> Ends:
+    return float(first[0]), float(first[1]), float(last[0]), float(last[1])

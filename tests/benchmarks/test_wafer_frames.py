@@ -1,0 +1,108 @@
+"""A plate of 10,000 stages (100 chips of 100 stages) opened, moved and zoomed in the window, 1600 x 1000.
+
+Each frame is the whole widget painted into a pixmap of the window's size: plate, chips, channels, legend, names.
+Zooming goes through the same steps as under the hand: eight frames of gliding for each notch of the wheel and two of
+rest. Aim: 30 frames a second or better, 33 ms a frame. Asserted is the 95th percentile of processor time, since the
+machine may be busy; the time on the clock is printed beside it.
+"""
+
+from __future__ import annotations
+
+import time
+
+import numpy as np
+import pytest
+from PySide6.QtCore import QPoint, QPointF
+from PySide6.QtGui import QPixmap
+
+from app.drawing.chip_shown import ShownChip
+from app.drawing.chip_view import ChipView
+from core.chip.plan import ChipChannel, ChipPlan
+from tests.app.drawing.chip_scenes import plate_scene
+
+pytestmark = [pytest.mark.benchmark, pytest.mark.gui]
+
+FRAME_MS = 1000.0 / 30.0
+ACROSS = 10  # chips along x and along y
+GLIDE, REST, NOTCHES = 8, 2, 26
+
+
+class Watch:
+    """Paints frames and keeps how long each took."""
+
+    def __init__(self, view):
+        self.view = view
+        self.pixmap = QPixmap(1600, 1000)
+        self.clock_ms, self.cpu_ms = [], []
+
+    def paint(self):
+        clock, cpu = time.perf_counter(), time.process_time()
+        self.view.render(self.pixmap, QPoint())
+        self.cpu_ms.append(1000.0 * (time.process_time() - cpu))
+        self.clock_ms.append(1000.0 * (time.perf_counter() - clock))
+
+    def zoom(self, factor, at):
+        """Zoom by one notch as the wheel does, frame by frame."""
+        view = self.view
+        start = view.camera
+        view.zoom(factor, at, animated=True)
+        view._animation.stop()  # the frames are painted here, whatever the clock says
+        for step in range(1, GLIDE + 1):
+            view._set_camera(view._goal if step == GLIDE else start.blended(view._goal, step / GLIDE))
+            self.paint()
+        for _ in range(REST):
+            self.paint()
+
+    def tell(self, what, capsys):
+        cpu, clock = np.array(self.cpu_ms), np.array(self.clock_ms)
+        with capsys.disabled():
+            print(
+                f"\n{what}, {len(cpu)} frames: processor median {np.median(cpu):.1f} ms, 95th percentile "
+                f"{np.percentile(cpu, 95):.1f} ms, longest {cpu.max():.1f} ms; clock median {np.median(clock):.1f} ms, "
+                f"95th percentile {np.percentile(clock, 95):.1f} ms ({1000.0 / np.percentile(clock, 95):.0f} a second)"
+            )
+        assert np.percentile(cpu, 95) < FRAME_MS
+        self.cpu_ms, self.clock_ms = [], []
+
+
+def shown_plate(*, channels, is_stepped):
+    scene = plate_scene(copies_across=ACROSS, stages=100 // channels, channels=channels, is_stepped=is_stepped)
+    chips = [(placed.block, placed.dx_um, placed.dy_um) for placed in scene.top.placed]
+    size = {
+        "chip_width_um": chips[1][1] - chips[0][1] - 200.0, "chip_height_um": chips[ACROSS][2] - chips[0][2] - 200.0,
+    }  # fmt: skip
+    placed = tuple(ChipChannel(set_name=f"Set {n}") for n in range(channels))
+    return ShownChip.of(scene, ChipPlan(plate="wafer", wafer_diameter_um=300_000.0, channels=placed, **size), chips)
+
+
+@pytest.mark.parametrize("is_stepped", [False, True], ids=["all alike", "every chip another"])
+@pytest.mark.parametrize("channels", [1, 10])
+def test_opening_moving_and_zooming(qtbot, capsys, channels, is_stepped):
+    shown = shown_plate(channels=channels, is_stepped=is_stepped)
+    view = ChipView()
+    qtbot.addWidget(view)
+    view.resize(1600, 1000)
+    view.set_animated(True)
+    view.show()
+    watch, what = Watch(view), f"{channels} channel(s) a chip, {'stepped' if is_stepped else 'all alike'}"
+    begun = time.perf_counter()
+    view.show_chip(shown)
+    view.fit(animated=False)
+    view.grab()  # the paths are made with the first picture
+    opened_ms = 1000.0 * (time.perf_counter() - begun)
+    with capsys.disabled():
+        print(f"\n{what}: first picture {opened_ms:.0f} ms after the scene is there")
+    for _ in range(20):
+        watch.paint()
+    watch.tell(f"{what}: opened", capsys)
+    at = QPointF(700.0, 420.0)
+    for factor in (1.25, 1.0 / 1.25):
+        for _ in range(NOTCHES):
+            watch.zoom(factor, at)
+        watch.tell(f"{what}: zoomed {'in' if factor > 1.0 else 'out'}", capsys)
+    for closer in (1.7, 3.0, 4.0, 5.0):
+        view.zoom(closer, at, animated=False)
+        for _ in range(40):
+            view.pan(-11.3, 7.1)
+            watch.paint()
+    watch.tell(f"{what}: moved", capsys)
