@@ -117,7 +117,7 @@ ACTIONS: tuple[ActionWords, ...] = (
         ("previous_finding", "Previous fi&nding", "Shift+F8"),
         ("use_cure", "&Use the finding's cure", "Ctrl+F8"),
         ("show_drawn", "Walls as &drawn on the mask", "F9", "part switch"),
-        ("show_made", "Walls as &made", "Shift+F9", "switch"),
+        ("show_made", "&Walls as made", "Shift+F9", "switch"),
         ("show_channel", "Page of the &channel", "Ctrl+1", "part"),
         ("show_process", "Page of the &making", "Ctrl+2"),
         ("show_chip", "Page of the c&hip", "Ctrl+3"),

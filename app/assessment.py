@@ -119,7 +119,7 @@ def _obstacle(channel: ChannelParameters, making: Making) -> str:
     if not shape_of(channel).is_usable:
         return BLOCKED
     is_made = not any(finding.severity is Severity.ERROR for finding in making.findings)
-    return "" if is_made and all(shape_of(each).is_usable for each in (making.made, making.flow)) else NOT_MADE
+    return "" if is_made and shape_of(making.made).is_usable else NOT_MADE
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

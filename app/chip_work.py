@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import time
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 from app.drawing.chip_shown import ShownChip
@@ -10,6 +11,8 @@ from core.chip.build import chip_scene
 from core.chip.chip_findings import chip_findings
 from core.chip.fitting import packed
 from core.chip.scene import BlockKind
+from core.operating import OperatingPoint
+from core.project.checks import project_findings
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -22,52 +25,72 @@ if TYPE_CHECKING:
     from core.parameters import ChannelParameters
     from core.project import ChipProject
 
-# A stepped series draws each chip anew, and that much is done beside the window.
-_QUICK_STAGES = 1500
+# So many stages are drawn and checked before the hand notices; a stepped series counts each of its chips.
+_QUICK_STAGES = 150
+_QUICK_S = 0.05  # what was drawn as fast as this the last time is so again
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class ChipTask:
-    """What the drawing of a chip depends on, and nothing else.
+    """What the drawing of a chip depends on.
 
     Attributes
     ----------
-    chip_name : str
-        Name of the chip, for its lettering.
-    plan : ChipPlan
-        As the document has it.
-    process : Process
-        How the chip is made.
-    named : tuple of (str, ChannelParameters)
-        The sets.
+    project : ChipProject
+        The project without what makes no difference to the drawing.
     """
 
-    chip_name: str
-    plan: ChipPlan
-    process: Process
-    named: tuple[tuple[str, ChannelParameters], ...]
+    project: ChipProject
 
     @classmethod
     def of(cls, project: ChipProject) -> ChipTask:
         """Return the task for a project."""
-        named = tuple((each.name, each.channel) for each in project.sets)
-        return cls(chip_name=project.name, plan=project.plan, process=project.process, named=named)
+        sets = tuple(replace(each, notes="") for each in project.sets)
+        return cls(
+            project=replace(project, sets=sets, operating=OperatingPoint(), lab="", author="", notes="", solved=())
+        )
+
+    @property
+    def chip_name(self) -> str:
+        """Name of the chip, for its lettering."""
+        return self.project.name
+
+    @property
+    def plan(self) -> ChipPlan:
+        """The plan as the document has it."""
+        return self.project.plan
+
+    @property
+    def process(self) -> Process:
+        """How the chip is made."""
+        return self.project.process
 
     @property
     def channels(self) -> dict[str, ChannelParameters]:
         """The sets by name."""
-        return dict(self.named)
+        return {each.name: each.channel for each in self.project.sets}
 
-    @property
-    def is_quick(self) -> bool:
-        """Whether it is done before the hand notices."""
-        if self.plan.plate == "single chip" or not self.plan.series:
+    def is_quick(self, last: ChipOutcome | None) -> bool:
+        """Whether it is done before the hand notices.
+
+        Parameters
+        ----------
+        last : ChipOutcome or None
+            What was drawn before.
+        """
+        if self._stages() <= _QUICK_STAGES:
             return True
+        return last is not None and last.took_s < _QUICK_S and last.task._chips() == self._chips()
+
+    def _chips(self) -> int:
+        """Return how many different chips a stepped series can ask for."""
         chips = 1
-        for series in self.plan.series:
+        for series in self.plan.series if self.plan.plate != "single chip" else ():
             chips *= series.steps
-        stages = sum(channel.stages for _, channel in self.named)
-        return chips * max(stages, 1) <= _QUICK_STAGES
+        return chips
+
+    def _stages(self) -> int:
+        return self._chips() * sum(each.channel.stages for each in self.project.sets)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -84,12 +107,15 @@ class ChipOutcome:
         The chip as it is wanted, or the plate full of chips.
     findings : tuple of Finding
         What is wrong with the chip.
+    took_s : float
+        Processor time that it took [s].
     """
 
     task: ChipTask
     plan: ChipPlan
     shown: ShownChip
     findings: tuple[Finding, ...]
+    took_s: float
 
 
 def placed_plan(task: ChipTask) -> ChipPlan:
@@ -122,14 +148,18 @@ def chip_outcome(
     CoreError
         If nothing can be drawn, such as a plate on which no chip fits.
     """
+    begun_s = time.thread_time()
     plan = placed_plan(task)
     scene = chip_scene(
         plan, task.channels, process=task.process, chip_name=task.chip_name, drawn=False, leave_out_impossible=True,
         report=report,
     )  # fmt: skip
-    findings = chip_findings(task.plan, task.channels, process=task.process, chip_name=task.chip_name)
+    findings = (
+        *chip_findings(task.plan, task.channels, process=task.process, chip_name=task.chip_name, report=report),
+        *project_findings(task.project),
+    )
     shown = ShownChip.of(scene, plan, _chips(scene), older=older)
-    return ChipOutcome(task=task, plan=plan, shown=shown, findings=findings)
+    return ChipOutcome(task=task, plan=plan, shown=shown, findings=findings, took_s=time.thread_time() - begun_s)
 
 
 def _chips(scene: Scene) -> tuple[tuple[Block, float, float], ...]:

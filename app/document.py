@@ -23,6 +23,7 @@ if TYPE_CHECKING:
 
     from PySide6.QtCore import QObject
 
+    from app.undo import Held
     from core.chip.plan import ChipPlan
     from core.fabrication.process import ProcessKind
     from core.project import ChipProject
@@ -67,10 +68,13 @@ class Document(ProjectHolder):
         project = self.project.with_process(self.process.with_values(values))
         self.push_values(project, PROCESS_FIELDS, values, lambda each: each.process, gesture)
 
-    def choose_process(self, kind: ProcessKind | str) -> None:
+    def choose_process(self, kind: ProcessKind | str, *, gesture: int | None = None) -> None:
         """Make the chip in another way, with the values that are shipped for it."""
-        process = shipped_process(kind)
-        self.push_simple(self.project.with_process(process), self.index, f"Make it as {process.kind}")
+
+        def describe(_before: Held, after: Held) -> str:
+            return f"Make it as {after.project.process.kind}"
+
+        self.push(self.project.with_process(shipped_process(kind)), self.index, describe, gesture)
 
     def change_plan(self, plan: ChipPlan, text: str, *, gesture: int | None = None) -> None:
         """Put another plan of the chip in place; the text says in plain words what was done."""

@@ -24,7 +24,7 @@ if TYPE_CHECKING:
 
 # Checking against the process takes about as long as all the rest, so it may lag behind the hand by this;
 # a shape that fails is told at once.
-_LAG_MS = 150
+_LAG_MS = 250
 _STORED = ShownUnits(length="um", flow="uL/min", pressure="Pa")
 
 

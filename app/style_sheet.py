@@ -47,6 +47,15 @@ QLineEdit, QPlainTextEdit, QAbstractSpinBox {
 }
 QLineEdit:focus, QPlainTextEdit:focus, QAbstractSpinBox:focus { border-color: $accent; }
 QLineEdit:disabled, QPlainTextEdit:disabled, QAbstractSpinBox:disabled { color: $pale_edge; }
+QCheckBox::indicator, QRadioButton::indicator, QAbstractItemView::indicator {
+    width: 11px; height: 11px; background: $field; border: 1px solid $ink_soft; border-radius: 2px;
+}
+QRadioButton::indicator { border-radius: 6px; }
+QCheckBox::indicator:hover, QRadioButton::indicator:hover { border-color: $accent; }
+QCheckBox::indicator:checked, QAbstractItemView::indicator:checked { background: $accent; border-color: $accent; }
+QRadioButton::indicator:checked { width: 5px; height: 5px; border: 4px solid $accent; }
+QCheckBox::indicator:disabled, QRadioButton::indicator:disabled { border-color: $rule; }
+QCheckBox:focus, QRadioButton:focus { color: $accent; }
 QTabBar::tab {
     background: transparent; color: $ink_soft; padding: $small $medium; border-bottom: 3px solid transparent;
 }

@@ -85,7 +85,9 @@ class Beside:
             painter.strokePath(path, _pen(walls, palette))
         painter.restore()
 
-    def paint_legend(self, painter: QPainter, area: QRectF, palette: Palette, *, taken: list[QRectF]) -> QRectF:
+    def paint_legend(
+        self, painter: QPainter, area: QRectF, palette: Palette, *, taken: list[QRectF], avoided: QRectF
+    ) -> QRectF:
         """Paint what the lines mean in the first free corner; returns the box it takes.
 
         Parameters
@@ -98,12 +100,15 @@ class Beside:
             Colours.
         taken : list of QRectF
             Places that should stay clear [px].
+        avoided : QRectF
+            A place that stays clear if there is room elsewhere [px].
         """
         rows = [(_WANTED, line_pen(palette.fluid_edge, width_px=2.0))]
         rows += [(str(walls), _pen(walls, palette)) for walls in self._paths]
         width = max(text_size(text).width() for text, _ in rows) + _SAMPLE_PX + 3.0 * SPACING.small
         height = len(rows) * _ROW_PX + 2.0 * SPACING.hair
-        box = free_box(_corners(area, width, height), taken=taken, is_needed=True)
+        box = free_box(_corners(area, width, height), taken=[*taken, avoided])
+        box = box or free_box(_corners(area, width, height), taken=taken, is_needed=True)
         assert box is not None
         painter.setPen(Qt.PenStyle.NoPen)
         painter.setBrush(veil(palette))

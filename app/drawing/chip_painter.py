@@ -33,6 +33,7 @@ if TYPE_CHECKING:
 LARGEST_IMAGE_PX = 1024.0  # a block of more than a square of this side is painted as it is
 _LONGEST_IMAGE_PX = 8192.0  # and one that is longer
 _PARTS_PX = 400.0  # a block of more than this that has no picture yet shows its parts, which may have one
+_PLAIN = 50_000  # a picture of a block of fewer lines is made without pictures of its parts
 _LIGHT = 60  # so few lines are painted faster than a picture of them
 _FRAME_S = 0.006  # spent on new pictures in one frame
 _RIM_PX = 1.0  # kept free around a block in its picture
@@ -59,6 +60,7 @@ class _Frame:
     is_moving: bool
     ends_s: float
     is_complete: bool = True
+    is_plain: bool = False  # without pictures of parts
 
 
 class ScenePainter:
@@ -121,7 +123,7 @@ class ScenePainter:
             return
         width_px, height_px = (side / frame.camera.um_per_px for side in paths.bounds_um.size().toTuple())
         is_large = width_px * height_px > LARGEST_IMAGE_PX**2 or max(width_px, height_px) > _LONGEST_IMAGE_PX
-        if is_large or paths.weight <= _LIGHT:
+        if is_large or frame.is_plain or paths.weight <= _LIGHT:
             self._paint_as_it_is(frame, paths, dx_um, dy_um)
             return
         kept = self._image(frame, paths)
@@ -164,6 +166,7 @@ class ScenePainter:
         with QPainter(image) as painter:
             painter.setRenderHint(QPainter.RenderHint.Antialiasing)
             inner = _Frame(painter, camera, QRectF(0.0, 0.0, width, height), frame.ratio, False, frame.ends_s)
+            inner.is_plain = paths.weight <= _PLAIN
             self._paint_as_it_is(inner, paths, 0.0, 0.0)
         if not inner.is_complete:
             return None

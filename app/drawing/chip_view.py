@@ -3,7 +3,6 @@
 Use::
 
     view = ChipView()
-    view.use_palette(palette)
     view.show_chip(shown, findings)      # at every change; None while there is nothing to show
     view.select(2)                       # a channel by its place in the plan's list, -1 for none
 
@@ -11,8 +10,7 @@ Signals
     ``channel_selected(index)`` when another channel is in hand, -1 for none;
     ``move_requested(index, x_um, y_um, is_held)`` when one was dragged, or moved by a key (held or not);
     ``remove_requested(index)`` for the key Delete;
-    ``finding_selected(index)``, ``pointer_moved(x_um, y_um)``, ``pointer_left()``, ``view_changed()``.
-    Places are whole micrometres from the middle of the chip in hand.
+    ``finding_selected(index)``; places are whole micrometres from the middle of the chip in hand.
 
 Keys, with the focus on the drawing
     Space and Shift+Space next and previous channel, arrows move it by 100 um (with Shift by 1 um),
@@ -39,6 +37,7 @@ if TYPE_CHECKING:
     from PySide6.QtGui import QHelpEvent, QKeyEvent, QMouseEvent, QPaintEvent
 
     from app.look import Palette
+    from core.chip.plan import ChipChannel
     from core.findings import Finding
 
 _NEAR_PX = 4.0
@@ -211,7 +210,9 @@ class ChipView(ZoomArea):
         channel, start_um = self._grabbed
         self.select(channel.index)
         x, y = self.camera.to_um(here)
-        self._picture.carried_um = (float(round(x - start_um[0])), float(round(y - start_um[1])))
+        place = self._place_of(channel.index)
+        x, y = self._target(channel.index, (x - start_um[0], y - start_um[1]))
+        self._picture.carried_um = (x - place.x_um, y - place.y_um)
         self.setCursor(Qt.CursorShape.SizeAllCursor)
         self.pointer_moved.emit(*self.camera.to_um(here))
         self.update()
@@ -228,10 +229,17 @@ class ChipView(ZoomArea):
         else:
             super().mouseReleaseEvent(event)
 
-    def _request_move(self, index: int, by_um: tuple[float, float], *, is_held: bool) -> None:
+    def _place_of(self, index: int) -> ChipChannel:
         assert self._picture.shown is not None
-        place = self._picture.shown.plan.channels[index]
-        self.move_requested.emit(index, round(place.x_um + by_um[0]), round(place.y_um + by_um[1]), is_held)
+        return self._picture.shown.plan.channels[index]
+
+    def _target(self, index: int, by_um: tuple[float, float]) -> tuple[float, float]:
+        """Return where a channel comes to stand when it is moved: on whole micrometres [um]."""
+        place = self._place_of(index)
+        return float(round(place.x_um + by_um[0])), float(round(place.y_um + by_um[1]))
+
+    def _request_move(self, index: int, by_um: tuple[float, float], *, is_held: bool) -> None:
+        self.move_requested.emit(index, *self._target(index, by_um), is_held)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         """Choose, move and remove channels, step through findings; the rest is zoom and pan."""
@@ -276,8 +284,7 @@ class ChipView(ZoomArea):
             return super().event(event)
         help_event: QHelpEvent = event  # type: ignore[assignment]  # by its type
         index = self._finding_at(QPointF(help_event.pos()))
-        text = "" if index == NONE else self._picture.marks.message(index)
-        QToolTip.showText(help_event.globalPos(), text, self)
+        QToolTip.showText(help_event.globalPos(), "" if index == NONE else self._picture.marks.message(index), self)
         return True
 
     def paintEvent(self, event: QPaintEvent) -> None:

@@ -19,6 +19,8 @@ from app.shown_values import screen_words
 from core.findings import Severity
 
 if TYPE_CHECKING:
+    from collections.abc import Iterator
+
     from PySide6.QtGui import QPainter
 
     from app.drawing.camera import Camera
@@ -29,7 +31,7 @@ NO_FINDING = -1
 _RING_PX = 9.0  # least radius of a ring
 _RIM_PX = 6.0  # from the measured line's ends to the ring
 _SLANT = 0.71  # a mark sits on its ring half way between up and right
-_CONTEXT = 4.0  # a detail is looked at with so much of what is around it
+_CONTEXT = 2.5  # a detail is looked at with so much of what is around it
 _BAR_PX = 5.0  # half of the bar at each end of a measured line
 _LABEL_OFF_PX = 20.0
 _SHOWN_LINE_PX = 8.0  # shorter lines are told by the ring alone
@@ -72,20 +74,18 @@ class FindingMarks:
         for index, finding in enumerate(self.findings):
             if finding.x_um is None or finding.y_um is None:
                 continue
-            box = QRectF(0.0, 0.0, MARK_PX, MARK_PX)
-            box.moveCenter(camera.to_px((finding.x_um, finding.y_um)))
-            if (ring := _ring(finding, camera)) is not None:
-                centre, radius = ring
-                box.moveBottomLeft(centre + QPointF(_SLANT * radius, -_SLANT * radius))
+            wanted = list(_mark_boxes(finding, camera))
+            free = (box for box in wanted if not any(box.intersects(other) for other in boxes.values()))
+            box = next(free, wanted[0])
             while any(box.intersects(other) for other in boxes.values()):
                 box.translate(MARK_PX + 4.0, 0.0)
             boxes[index] = box
         return boxes
 
     def rings(self, camera: Camera) -> list[QRectF]:
-        """Return the boxes round all rings [px]."""
+        """Return the boxes round all rings, with room for a label below [px]."""
         rings = (_ring(finding, camera) for finding in self.findings)
-        return [QRectF(ring[0].x() - ring[1], ring[0].y() - ring[1], 2.0 * ring[1], 2.0 * ring[1])
+        return [QRectF(ring[0].x() - ring[1], ring[0].y() - ring[1], 2.0 * ring[1], 2.0 * (ring[1] + _LABEL_OFF_PX))
                 for ring in rings if ring is not None]  # fmt: skip
 
     def paint(self, painter: QPainter, boxes: dict[int, QRectF], camera: Camera, palette: Palette, unit: str) -> None:
@@ -97,6 +97,17 @@ class FindingMarks:
                 _paint_measured(painter, finding, camera, palette, unit=unit)
             number = self.first_number + index
             draw_mark(painter, boxes[index], number, finding.severity, palette, is_selected=is_chosen)
+
+
+def _mark_boxes(finding: Finding, camera: Camera) -> Iterator[QRectF]:
+    """Yield places for a mark: on the place, or round the ring where there is one [px]."""
+    middle = camera.to_px((finding.x_um, finding.y_um))  # type: ignore[arg-type]  # asked for where there is a place
+    ring = _ring(finding, camera)
+    off = 0.0 if ring is None else _SLANT * ring[1] + MARK_PX / 2.0
+    for across, up in ((1.0, -1.0), (1.0, 1.0), (-1.0, -1.0), (-1.0, 1.0)):
+        box = QRectF(0.0, 0.0, MARK_PX, MARK_PX)
+        box.moveCenter(middle + QPointF(across * off, up * off))
+        yield box
 
 
 def looked_at_um(finding: Finding) -> float | None:

@@ -160,7 +160,8 @@ class Picture:
             self._paint_directions(painter, area, camera, shape, taken)
             if self.beside.is_shown:
                 clear = [*taken, *self.marks.rings(camera)]
-                taken.append(self.beside.paint_legend(painter, area, self.palette, taken=clear))
+                channel = camera.transform().mapRect(self._path.boundingRect())
+                taken.append(self.beside.paint_legend(painter, area, self.palette, taken=clear, avoided=channel))
             inner = area.adjusted(_INSET_PX, _INSET_PX, -_INSET_PX, -_INSET_PX)
             self._paint_stage_signs(painter, inner, camera, shape, taken)
         self.marks.paint(painter, marks, camera, self.palette, self._unit)

@@ -20,6 +20,8 @@ if TYPE_CHECKING:
     from collections.abc import Sequence
 
 _STEPS = int(SERIES_FIELDS["steps"].default)
+_ENTRY_PX = 54
+_COLUMNS = (1, 2, 4)  # of the entries; the unit stands behind both ends
 _DIRECTIONS = ("Along x", "Along y")
 
 
@@ -39,6 +41,7 @@ class SeriesRow(QWidget):
         self._units = ShownUnits()
         self.box = StillComboBox()
         self.box.setAccessibleName(f"{direction}: stepped field")
+        self.box.setSizeAdjustPolicy(StillComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon)
         self.box.addItem("nothing varies", "")
         for field in CHANNEL_FIELDS.values():
             if not field.choices:
@@ -53,17 +56,20 @@ class SeriesRow(QWidget):
         name_label = QLabel(direction)
         name_label.setBuddy(self.box)
         layout.addWidget(name_label, 0, 0)
-        layout.addWidget(self.box, 0, 1, 1, 5)
+        layout.addWidget(self.box, 0, 1, 1, 6)
         for place, (name, entry) in enumerate(self.entries.items()):
             entry.setAlignment(Qt.AlignmentFlag.AlignRight)
-            entry.setFixedWidth(58)
+            entry.setFixedWidth(_ENTRY_PX)
             entry.setAccessibleName(f"{direction}: {SERIES_FIELDS[name].label}")
             entry.setToolTip(SERIES_FIELDS[name].help)
             entry.setPlaceholderText(SERIES_FIELDS[name].label.lower())
             entry.editingFinished.connect(self._on_entry_finished)
-            layout.addWidget(entry, 1, 1 + place)
-        layout.addWidget(self.unit_label, 1, 4)
-        layout.setColumnStretch(5, 1)
+            layout.addWidget(entry, 1, _COLUMNS[place])
+        self.steps_label = QLabel("steps")
+        set_role(self.steps_label, "soft")
+        layout.addWidget(self.unit_label, 1, 3)
+        layout.addWidget(self.steps_label, 1, 5)
+        layout.setColumnStretch(6, 1)
         self.box.activated.connect(self._on_box_activated)
         self.show_series(None, self._units)
 
@@ -99,7 +105,7 @@ class SeriesRow(QWidget):
         return SteppedField(name=name, steps=self.entries["steps"].text().strip(), **ends)  # type: ignore[arg-type]  # checked there
 
     def _show_entries(self, is_shown: bool) -> None:
-        for part in (*self.entries.values(), self.unit_label):
+        for part in (*self.entries.values(), self.unit_label, self.steps_label):
             part.setVisible(is_shown)
 
     def _on_box_activated(self) -> None:

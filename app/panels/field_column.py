@@ -83,7 +83,7 @@ class FieldColumn(QScrollArea):
             self._add(editor_for(field, new_gesture))
         self._layout.addStretch(1)
         self.setWidget(self.column)
-        self.setMinimumWidth(self.column.minimumSizeHint().width() + self.verticalScrollBar().sizeHint().width())
+        self.fit_width()
 
     def _add(self, editor: FieldEditor) -> None:
         title = editor.field.group
@@ -107,6 +107,11 @@ class FieldColumn(QScrollArea):
     def add_below(self, part: QWidget) -> None:
         """Put a part below the groups."""
         self._layout.insertWidget(self._layout.count() - 1, part)
+        self.fit_width()
+
+    def fit_width(self) -> None:
+        """Be as wide as the widest row needs."""
+        self.setMinimumWidth(self.column.minimumSizeHint().width() + self.verticalScrollBar().sizeHint().width())
 
     def show_values(self, values: Mapping[str, Value], units: ShownUnits) -> None:
         """Show the values of all fields; rows that are as they should be are left alone."""

@@ -112,7 +112,7 @@ class FindingsPanel(QWidget):
         self._show_cure()
 
     def _kind_of(self, index: int) -> tuple[str, str, int] | None:
-        """Return what stays the same while a finding's figures change: whose, of what kind, the how manieth."""
+        """Return what stays the same while a finding's figures change: whose, its code, and which of that code."""
         if not 0 <= index < len(self._entries):
             return None
         kinds = [(origin, finding.code) for origin, finding in self._entries[: index + 1]]

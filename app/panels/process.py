@@ -75,7 +75,10 @@ class ProcessPanel(QWidget):
         self.column = ProcessColumn(document)
         self.column.add_above(cautions)
         self._place()
-        self.kind_box.kind_chosen.connect(document.choose_process)
+        self._gesture: int | None = None
+        self._shown: tuple[Process, ShownUnits] | None = None
+        self.kind_box.entered.connect(self._on_kind_box_entered)
+        self.kind_box.kind_chosen.connect(lambda kind: document.choose_process(kind, gesture=self._gesture))
         self.put_back_button.clicked.connect(self.put_back)
         document.project_changed.connect(self.refresh)
         settings.units_changed.connect(self.refresh)
@@ -109,14 +112,20 @@ class ProcessPanel(QWidget):
 
     def refresh(self) -> None:
         """Show what the document holds."""
-        process = self._document.process
+        process, units = self._document.process, ShownUnits.of(self._settings)
+        if (process, units) == self._shown:  # any change of the project leads here
+            return
+        self._shown = (process, units)
         self.kind_box.show_kind(process.kind)
-        self.column.show_process(process, ShownUnits.of(self._settings))
+        self.column.show_process(process, units)
         _show(self.about_label, about(process.kind))
         _show(self.cautions_label, "\n".join(f"\N{BULLET} {each}" for each in cautions_of(process.kind)))
         changed = sum(value != self.editors[name].field.default for name, value in _edited(process).items())
         self.put_back_button.setVisible(changed > 0)
         self.put_back_button.setText(f"Put {changed} changed value{'' if changed == 1 else 's'} &back")
+
+    def _on_kind_box_entered(self) -> None:
+        self._gesture = self._document.new_gesture()
 
     def put_back(self) -> None:
         """Take all values that are shipped for this kind of process, as one step."""

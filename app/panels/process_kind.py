@@ -16,6 +16,7 @@ from core.fabrication.shipped import about
 
 if TYPE_CHECKING:
     from PySide6.QtCore import QModelIndex, QPersistentModelIndex
+    from PySide6.QtGui import QFocusEvent
     from PySide6.QtWidgets import QStyleOptionViewItem
 
     Index = QModelIndex | QPersistentModelIndex
@@ -58,10 +59,13 @@ class ProcessKindBox(StillComboBox):
 
     Signals
     -------
+    entered()
+        The keys come to the box: what is chosen until they leave is one choice.
     kind_chosen(str)
         The user picked another kind.
     """
 
+    entered = Signal()
     kind_chosen = Signal(str)
 
     def __init__(self) -> None:
@@ -78,6 +82,11 @@ class ProcessKindBox(StillComboBox):
             self.setItemData(self.count() - 1, about(kind), _ABOUT_ROLE)
             self.setItemData(self.count() - 1, f"{words}. {about(kind)}", Qt.ItemDataRole.AccessibleTextRole)
         self.activated.connect(lambda index: self.kind_chosen.emit(self.itemData(index)))
+
+    def focusInEvent(self, event: QFocusEvent) -> None:
+        """Tell that a choice begins."""
+        super().focusInEvent(event)
+        self.entered.emit()
 
     def show_kind(self, kind: str) -> None:
         """Show which kind is chosen."""

@@ -68,6 +68,7 @@ class VerdictPanel(QScrollArea):
         self.setMinimumWidth(270)
         self.findings = FindingsPanel()
         self._build()
+        self.findings.finding_chosen.connect(lambda _row: self.ensureWidgetVisible(self.findings.list))
         document.estimate_changed.connect(self.show_assessment)
         settings.units_changed.connect(self.refresh)
         self.refresh()

@@ -45,13 +45,13 @@ def added(
     set_name : str
         Set that the channel follows.
     is_control : bool
-        True for the plain channel to measure against; it goes as near to its rectifier as there is room.
+        True for the plain channel to measure against.
 
     Returns
     -------
     ChipPlan
-        The new channel comes last: from above downwards at the first place beside, above or below another channel
-        where its bounds keep all clearances, and in the middle of the chip where there is none.
+        The new channel comes last. It stands as near as there is room to its rectifier, or else to the channel
+        placed last: where its bounds keep all clearances, and in the middle of the chip where no such place is.
 
     Raises
     ------
@@ -66,16 +66,14 @@ def added(
     box = wanted_body(plan, entry, channel, process).bounds_um
     stands = [stand for stand in next(stands_of(plan, channels, process)) if isinstance(stand, Stand)]
     gap_um = max(plan.spacing_um, plan.port_clearance_um, process.min_wall_um) + SLACK_UM
-    half_x, half_y = (
-        0.5 * plan.chip_width_um - plan.edge_clearance_um,
-        0.5 * plan.chip_height_um - plan.edge_clearance_um,
-    )
+    rim_um = plan.edge_clearance_um + SLACK_UM
+    half_x, half_y = 0.5 * plan.chip_width_um - rim_um, 0.5 * plan.chip_height_um - rim_um
     within = (-half_x, -half_y, half_x, half_y)
-    places = _places(box, [stand.box_um for stand in stands], within, gap_um)
-    owner = next((stand for stand in stands if is_control and plan.channels[stand.number].set_name == set_name), None)
-    if owner is not None:
-        x, y = owner.at_um
-        places = sorted(places, key=lambda place: hypot(place[0] - x, place[1] - y))
+    near_x, near_y = _neighbour_um(plan, stands, set_name if is_control else None)
+    places = sorted(
+        _places(box, [stand.box_um for stand in stands], within, gap_um),
+        key=lambda place: hypot(place[0] - near_x, place[1] - near_y),
+    )
     taken = [(x0 - gap_um, y0 - gap_um, x1 + gap_um, y1 + gap_um) for x0, y0, x1, y1 in (s.box_um for s in stands)]
     free = free_places(
         _array(places), box, taken=_shrunk(taken), obstacles=[], within=within, clearance_um=0.0,
@@ -84,15 +82,22 @@ def added(
     return replace(plan, channels=(*plan.channels, replace(entry, x_um=round(x, 3), y_um=round(y, 3))))
 
 
+def _neighbour_um(plan: ChipPlan, stands: Sequence[Stand], owner: str | None) -> tuple[float, float]:
+    """Return the middle of the rectifier of a control, or else of the channel placed last [um]."""
+    owned = [stand for stand in stands if plan.channels[stand.number].set_name == owner]
+    return next((stand.at_um for stand in (*owned[:1], *stands[::-1])), (0.0, 0.0))
+
+
 def _places(box: Box, others: Sequence[Box], within: Box, gap_um: float) -> list[tuple[float, float]]:
-    """Return where the middle of a box may lie: along the sides of others and of the chip, from above downwards."""
+    """Return where the middle of a box may lie: beside, above and below each other one, and along the chip's sides."""
     x0, y0, x1, y1 = box
-    across = {within[0] - x0, within[2] - x1, 0.0}
-    up = {within[3] - y1, within[1] - y0}
+    sides, ends = {within[0] - x0, within[2] - x1, 0.0}, {within[1] - y0, within[3] - y1, 0.0}
+    places = {(x, y) for x in sides for y in ends}
     for left, low, right, high in others:
-        across |= {left - x0, right - x1, right + gap_um - x0, left - gap_um - x1}
-        up |= {low - gap_um - y1, high + gap_um - y0, high - y1, low - y0}
-    return [(x, y) for y in sorted(up, reverse=True) for x in sorted(across)]
+        across = sides | {left - x0, right - x1, right + gap_um - x0, left - gap_um - x1}
+        up = ends | {low - gap_um - y1, high + gap_um - y0, high - y1, low - y0}
+        places |= {(x, y) for x in across for y in up}
+    return sorted(places)
 
 
 def _shrunk(boxes: Sequence[Box]) -> list[Box]:

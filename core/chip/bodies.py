@@ -156,14 +156,20 @@ def _wanted(channel: ChannelParameters, stance: Stance, title: str) -> ChannelBo
 @lru_cache(maxsize=512)
 def _turned(channel: ChannelParameters, stance: Stance) -> ChannelBody:
     flat = _flat(channel, stance.rows, stance.pad_radius_um, stance.wall_um)
+    if isinstance(flat, str):
+        raise GeometryError(flat)
     turned = _moved(flat, Placement(angle=radians(stance.turn_deg))) if stance.turn_deg else flat
     x0, y0, x1, y1 = turned.bounds_um
     return _moved(turned, Placement(dx_um=-0.5 * (x0 + x1), dy_um=-0.5 * (y0 + y1)))
 
 
 @lru_cache(maxsize=512)
-def _flat(channel: ChannelParameters, rows: int, pad_um: float, wall_um: float) -> ChannelBody:
-    return channel_body(channel, rows=rows, pad_radius_um=pad_um, wall_um=wall_um)
+def _flat(channel: ChannelParameters, rows: int, pad_um: float, wall_um: float) -> ChannelBody | str:
+    """Return the body as drawn by its set, or why there is none: finding that out takes as long."""
+    try:
+        return channel_body(channel, rows=rows, pad_radius_um=pad_um, wall_um=wall_um)
+    except GeometryError as error:
+        return str(error)
 
 
 def _moved(body: ChannelBody, placement: Placement) -> ChannelBody:

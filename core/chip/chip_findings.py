@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 from core.chip.bodies import changed_body, stance_of
 from core.chip.fitting import packed
 from core.chip.place_findings import Rules, edge_findings, pair_findings, pitch_findings
-from core.chip.plate import plate_grid
+from core.chip.plate import distinct_steps, plate_grid
 from core.chip.plate_findings import plate_findings, word_findings
 from core.chip.stands import Stand, Unbuilt, stands_of
 from core.errors import GeometryError, did_you_mean, shown
@@ -18,6 +18,7 @@ from core.findings import Finding, Severity
 if TYPE_CHECKING:
     from collections.abc import Iterator, Mapping
 
+    from core.chip.build import Report
     from core.chip.plan import ChipPlan
     from core.fabrication.process import Process
     from core.parameters import ChannelParameters
@@ -27,7 +28,12 @@ MOST_PAIRS = 100  # findings between two channels; when all lie in a heap, more 
 
 
 def chip_findings(
-    plan: ChipPlan, channels: Mapping[str, ChannelParameters], *, process: Process, chip_name: str = ""
+    plan: ChipPlan,
+    channels: Mapping[str, ChannelParameters],
+    *,
+    process: Process,
+    chip_name: str = "",
+    report: Report | None = None,
 ) -> tuple[Finding, ...]:
     """Return what is wrong or doubtful with a chip.
 
@@ -45,6 +51,9 @@ def chip_findings(
     chip_name : str
         Written on the chip where the plan has no label.
 
+    report : callable (step, total, text), optional
+        Told before every chip that differs from those before it; it may raise to stop the work.
+
     Returns
     -------
     tuple of Finding
@@ -53,7 +62,7 @@ def chip_findings(
     full = plan if plan.channels else packed(plan, channels, process, chip_name=chip_name)
     found = [*_unknown_sets(full, channels), *plate_findings(full, process)]
     if len(plate_grid(full)):
-        found += _placed(full, channels, process)
+        found += _placed(full, channels, process, report)
         found += word_findings(full, channels, process, chip_name=chip_name)
     return tuple(found)
 
@@ -69,12 +78,16 @@ def _unknown_sets(plan: ChipPlan, channels: Mapping[str, ChannelParameters]) -> 
             )  # fmt: skip
 
 
-def _placed(plan: ChipPlan, channels: Mapping[str, ChannelParameters], process: Process) -> Iterator[Finding]:
+def _placed(
+    plan: ChipPlan, channels: Mapping[str, ChannelParameters], process: Process, report: Report | None
+) -> Iterator[Finding]:
     """Yield findings of everything placed, each kind once for each channel or pair."""
     rules = Rules(plan=plan, process=process)
     told: set[tuple[str, ...]] = set()
-    pairs = 0
-    for chip in stands_of(plan, channels, process):
+    pairs, total = 0, len(distinct_steps(plan))
+    for step, chip in enumerate(stands_of(plan, channels, process)):
+        if report is not None:
+            report(step, total, "checking chips")
         for stand in chip:
             for finding in _alone(stand, rules):
                 key = (finding.code, finding.field, str(stand.number))

@@ -82,12 +82,6 @@ def grown_box(box_um: Box, by_um: float) -> Box:
     return x0 - by_um, y0 - by_um, x1 + by_um, y1 + by_um
 
 
-def box_around(boxes: Iterable[Box]) -> Box:
-    """Return the smallest box that holds all given; there must be one."""
-    x0, y0, x1, y1 = zip(*boxes, strict=True)
-    return min(x0), min(y0), max(x1), max(y1)
-
-
 def boxes_overlap(one: Box, other: Box) -> bool:
     """Return whether two boxes have more than a rim in common."""
     return one[0] < other[2] and other[0] < one[2] and one[1] < other[3] and other[1] < one[3]

@@ -14,7 +14,8 @@ if TYPE_CHECKING:
     from core.chip.figures import Box
     from core.geometry.contour import Flags, Floats, Outline
 
-_MOST_LOOKS = 400  # places at which walls are looked at before the search is given up
+_MOST_LOOKS = 800  # places at which walls are looked at before the search is given up
+_RUN = 32  # chords whose common box is looked at first
 _SAGITTA_UM = 5.0  # walls are looked at as chords; what chords may miss is added to the clearance
 
 
@@ -46,17 +47,39 @@ class Obstacle:
         rings = [ring.chords(sagitta_um=_SAGITTA_UM) + np.array(self.shift_um) for ring in self.outline.contours]
         return np.concatenate(rings), np.concatenate([np.roll(ring, -1, axis=0) for ring in rings])
 
+    @cached_property
+    def _runs(self) -> Floats:
+        """Boxes round runs of ``_RUN`` chords that follow one another, shape (m, 4) [um]."""
+        start, end = self.edges_um
+        first = np.arange(0, len(start), _RUN)
+        low = np.minimum.reduceat(np.minimum(start, end), first, axis=0)
+        return np.concatenate((low, np.maximum.reduceat(np.maximum(start, end), first, axis=0)), axis=1)
+
+    def _edges_in(self, which: Flags) -> tuple[Floats, Floats]:
+        """Return the chords of some runs."""
+        start, end = self.edges_um
+        chosen = np.repeat(which, _RUN)[: len(start)]
+        return start[chosen], end[chosen]
+
     def is_clear_of(self, box_um: Box, clearance_um: float) -> bool:
         """Return whether a box keeps its distance; where it is a near thing, it does not."""
         margin = clearance_um + _SAGITTA_UM
         low, high = np.array(box_um[:2]) - margin, np.array(box_um[2:]) + margin
-        start, end = self.edges_um
-        step = np.where(end == start, 1e-200, end - start)
-        first, last = (low - start) / step, (high - start) / step  # where the line of a chord passes the box's sides
-        enter, leave = np.minimum(first, last).max(axis=1), np.maximum(first, last).min(axis=1)
-        if np.any(np.maximum(enter, 0.0) <= np.minimum(leave, 1.0)):
-            return False
-        return not _is_inside(0.5 * (low + high), start, end)
+        runs = self._runs
+        near = np.all((runs[:, :2] <= high) & (runs[:, 2:] >= low), axis=1)
+        if near.any():
+            start, end = self._edges_in(near)
+            step = np.where(end == start, 1e-200, end - start)
+            first, last = (
+                (low - start) / step,
+                (high - start) / step,
+            )  # where the line of a chord passes the box's sides
+            enter, leave = np.minimum(first, last).max(axis=1), np.maximum(first, last).min(axis=1)
+            if np.any(np.maximum(enter, 0.0) <= np.minimum(leave, 1.0)):
+                return False
+        middle = 0.5 * (low + high)
+        beside = (runs[:, 1] <= middle[1]) & (runs[:, 3] >= middle[1]) & (runs[:, 2] >= middle[0])
+        return not _is_inside(middle, *self._edges_in(beside))
 
 
 def _is_inside(point: Floats, start: Floats, end: Floats) -> bool:
@@ -116,9 +139,13 @@ def free_places(
     near = _overlapping(boxes + margin, np.array([each.box_um for each in obstacles]).reshape(-1, 4))
     looks = 0
     for place, box, hits in zip(places_um.tolist(), boxes.tolist(), near, strict=True):
-        in_the_way = [obstacles[number] for number in np.flatnonzero(hits).tolist()]
-        looks += len(in_the_way)
-        if all(each.is_clear_of(tuple(box), clearance_um) for each in in_the_way):
+        is_free = True
+        for number in np.flatnonzero(hits).tolist():
+            looks += 1
+            if not obstacles[number].is_clear_of(tuple(box), clearance_um):
+                is_free = False
+                break
+        if is_free:
             yield place[0], place[1]
         if looks > _MOST_LOOKS:
             return

@@ -143,7 +143,7 @@ def values_of(plan: ChipPlan, steps: tuple[int, ...]) -> dict[str, Value]:
 def label_lines(plan: ChipPlan, chip_name: str, steps: tuple[int, ...]) -> tuple[str, ...]:
     """Return the words on a chip: its label, then one line for each stepped value."""
     lines = [
-        f"{series.field.label} {series.values[step]:g} {series.field.unit}"
+        f"{series.field.label} {series.values[step]:g} {series.field.unit}".strip()
         for series, step in zip(plan.series, steps, strict=False)
     ]
     return (plan.label or chip_name, *lines)

@@ -4,14 +4,14 @@ from __future__ import annotations
 
 from dataclasses import dataclass, replace
 from functools import cached_property
-from math import inf, isfinite
+from math import inf
 from typing import TYPE_CHECKING
 
 import numpy as np
 
-from core.fabrication.existence import RADII, WIDTHS
+from core.fabrication.existence import RADII, SAME_UM, WIDTHS
 from core.fabrication.making import Making, making_of
-from core.geometry.clearances import Narrowest, narrowest
+from core.geometry.clearances import Gap, narrowest_gap
 from core.geometry.shape import ChannelShape, build_shape
 
 if TYPE_CHECKING:
@@ -21,6 +21,9 @@ if TYPE_CHECKING:
     from core.parameters import ChannelParameters
 
 Ends = tuple[float, float, float, float]
+# A length of fewer grid steps than this is rounded by more than a tenth of itself.
+FEWEST_STEPS = 10
+_NOISE_UM = 1e-9
 
 
 @dataclass(frozen=True)
@@ -94,40 +97,60 @@ class ChannelCase:
             return False
         return self.made_shape.is_usable and self.drawn_shape.is_usable
 
+    @property
+    def leaning_limit_um(self) -> float:
+        """The narrowest that a width or a solid of this depth may be [um]."""
+        return self.wanted.depth_um / self.process.max_depth_to_width
+
+    @property
+    def grid_limit_um(self) -> float:
+        """The shortest length that the drawing grid holds well [um]."""
+        return 1e-3 * self.process.grid_nm * FEWEST_STEPS
+
     @cached_property
-    def _narrowest(self) -> Narrowest | None:
-        """The narrowest places as made; None without stages or without a shape."""
-        usable = not self.making.findings and self.made_shape.is_usable and self.wanted.stages > 0
-        return narrowest(self.made_shape) if usable else None
+    def _gap(self) -> Gap | None:
+        """The narrowest solid as made, where it is narrower than some limit."""
+        if not self._has_gaps(self.making.made):
+            return None
+        on_drawing = max(self.process.min_drawn_um, self.grid_limit_um) / self.making.scale
+        limit = max(self.process.min_gap_um, self.leaning_limit_um, on_drawing - 2.0 * self._shift_um)
+        return narrowest_gap(self.made_shape, below_um=limit + SAME_UM)
+
+    def _has_gaps(self, channel: ChannelParameters) -> bool:
+        shape = self.drawn_shape if channel is self.making.drawn else self.made_shape
+        return self.wanted.stages > 0 and not self.making.findings and shape.is_usable
+
+    @property
+    def _shift_um(self) -> float:
+        return 0.5 * (self.making.made.channel_width_um - self.making.drawn.channel_width_um)
 
     @property
     def made_gap_um(self) -> float:
-        """The narrowest solid between walls as made; infinite where there is none [um]."""
-        return inf if self._narrowest is None else self._narrowest.gap_um
+        """The narrowest solid between walls as made; infinite where it is wider than any limit [um]."""
+        return inf if self._gap is None else self._gap.um
 
     @cached_property
     def drawn_gap_um(self) -> float:
-        """The narrowest solid between walls on the mask, after scaling; infinite where there is none [um]."""
-        drawn, made = self.making.drawn, self.making.made
-        shift = 0.5 * (made.channel_width_um - drawn.channel_width_um)
+        """The narrowest solid between walls on the mask, after scaling; infinite where wider than any limit [um]."""
+        drawn, made, shift = self.making.drawn, self.making.made, self._shift_um
         # nothing clipped: every wall of the drawing stands by the shift behind the wall as made
-        if all(abs(getattr(drawn, name) - shift - getattr(made, name)) < 1e-9 for name in RADII):
+        if all(abs(getattr(drawn, name) - shift - getattr(made, name)) < _NOISE_UM for name in RADII):
             return self.making.scale * (self.made_gap_um + 2.0 * shift)
-        if self.wanted.stages == 0 or not self.drawn_shape.is_usable:
+        if not self._has_gaps(drawn):
             return inf
-        return self.making.scale * narrowest(self.drawn_shape).gap_um
+        limit = max(self.process.min_drawn_um, self.grid_limit_um) / self.making.scale
+        gap = narrowest_gap(self.drawn_shape, below_um=limit + SAME_UM)
+        return inf if gap is None else self.making.scale * gap.um
 
     @property
     def gap_ends(self) -> Ends | None:
         """Both ends of the line across the narrowest solid, as made."""
-        if self._narrowest is None or not isfinite(self._narrowest.gap_um):
-            return None
-        return _ends(*self._narrowest.gap_at_um)
+        return None if self._gap is None else _ends(*self._gap.at_um)
 
     @property
     def is_gap_in_island(self) -> bool:
         """Whether the narrowest solid is an island."""
-        return self._narrowest is not None and self._narrowest.is_gap_in_island
+        return self._gap is not None and self._gap.is_in_island
 
     def width_ends(self, name: str, width_um: float) -> Ends | None:
         """Return both ends of a line straight across the bypass or loop of the first stage, or across a lead."""

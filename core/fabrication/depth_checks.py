@@ -36,7 +36,7 @@ def check_depth(case: ChannelCase) -> Iterator[Objection]:
 def check_leaning(case: ChannelCase) -> Iterator[Objection]:
     """Yield channels, and solids between them, that are too narrow for their depth."""
     process, depth = case.process, case.wanted.depth_um
-    needed = depth / process.max_depth_to_width
+    needed = case.leaning_limit_um
     is_cast = process.kind in CAST_KINDS
     ratio = f"depth_um {depth:g} may be {process.max_depth_to_width:g} times that at most"
     what = "ridges of the mould lean or break off" if is_cast else "such deep channels come out uneven or not at all"

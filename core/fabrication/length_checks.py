@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from core.fabrication.channel_case import FEWEST_STEPS
 from core.fabrication.existence import RADII, SAME_UM
 from core.fabrication.making import IN_DRAWING, smallest_radius_um, wall_shift_um
 from core.fabrication.objection import Objection, gap_objection, too_short
@@ -14,9 +15,6 @@ if TYPE_CHECKING:
     from collections.abc import Iterator
 
     from core.fabrication.channel_case import ChannelCase
-
-# A length of fewer grid steps than this is rounded by more than a tenth of itself.
-FEWEST_STEPS = 10
 
 
 def check_existence(case: ChannelCase) -> Iterator[Objection]:
@@ -35,6 +33,7 @@ def check_shapes(case: ChannelCase) -> Iterator[Objection]:
     """Yield where the channel as wanted has a shape, but not as drawn or as made."""
     if case.making.findings or not case.shape.is_usable:
         return
+    least = smallest_radius_um(case.process)
     for shape, words in ((case.made_shape, "made"), (case.drawn_shape, "drawn")):
         if not shape.is_usable:
             found = shape.findings[0]
@@ -42,8 +41,8 @@ def check_shapes(case: ChannelCase) -> Iterator[Objection]:
                 finding=Finding(
                     code=f"no_shape_as_{words}", severity=Severity.ERROR, field=found.field,
                     x_um=found.x_um, y_um=found.y_um,
-                    message=f"as {words} by this process, with corners at least {smallest_radius_um(case.process):g} um round, "
-                    f"the channel has no shape: {found.message}",
+                    message=f"as {words} by this process, with corners at least {least:g} um round, the channel has no "
+                    f"shape: {found.message}",
                 ),
                 searched=(("loop_radius_um", 1), ("loop_angle_deg", 1), ("stage_gap_um", 1)),
                 way_out="choose a process that rounds and shifts walls less",
@@ -133,7 +132,7 @@ def check_grid(case: ChannelCase) -> Iterator[Objection]:
     """Yield lengths on the drawing of few grid steps only."""
     if case.making.findings:
         return
-    limit, scale = 1e-3 * case.process.grid_nm * FEWEST_STEPS, case.making.scale
+    limit, scale = case.grid_limit_um, case.making.scale
     for name in case.widths:
         yield from too_short(
             case, name, scale * getattr(case.making.drawn, name), limit, code="grid_too_coarse", per_um=scale,

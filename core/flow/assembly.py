@@ -79,9 +79,7 @@ class Assembler:
             for d in (0, 1)
         ]
         self._lumped = np.bincount(corner_dofs.ravel(), np.einsum("eq,aq->ea", w, hat).ravel(), self.layout.corners)
-        self._hat_shape = self.mixed(
-            np.einsum("eq,aq,bq->eab", w, hat, self._shape, optimize=True).reshape(len(w), 18)
-        )
+        self._hat_shape = self.mixed(np.einsum("eq,aq,bq->eab", w, hat, self._shape, optimize=True).reshape(len(w), 18))
 
     def _constant_tables(self) -> None:
         """Combine the scalar matrices of creeping flow with the mode tables."""

@@ -8,10 +8,10 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from core.errors import SolveError
+from core.flow.chains import extend_settled
 from core.flow.channel_places import channel_domain
 from core.flow.channel_points import PointMaker
 from core.flow.channel_result import ChannelFlow
-from core.flow.chains import extend_settled
 from core.flow.ladder import Ladder
 from core.flow.quality import first_levels, quality_named
 from core.flow.solve import MEMORY_LIMIT_MB, solve_on

@@ -5,6 +5,8 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from core.flow.stages import StageFlow, stage_flows
+
 if TYPE_CHECKING:
     from core.flow.result import FlowField
     from core.fluids import FluidState
@@ -103,6 +105,16 @@ class FlowPoint:
         """Mean part of the reverse flow in the loops; 0 without loops, None where not found."""
         return _mean(self.loop_shares_reverse) if self.reverse_pressure_pa is not None else None
 
+    @property
+    def stages(self) -> tuple[StageFlow, ...]:
+        """Loop shares and drops stage by stage, in the order of the reverse flow; empty without stages."""
+        return stage_flows(
+            shares_forward=self.loop_shares_forward,
+            shares_reverse=self.loop_shares_reverse,
+            drops_forward_pa=self.stage_drops_forward_pa,
+            drops_reverse_pa=self.stage_drops_reverse_pa,
+        )
+
     def as_dict(self) -> dict[str, object]:
         """Return the point with the keys used in machine-readable output."""
         return {
@@ -120,6 +132,7 @@ class FlowPoint:
             "loop_shares_reverse": list(self.loop_shares_reverse),
             "stage_drops_forward_pa": list(self.stage_drops_forward_pa),
             "stage_drops_reverse_pa": list(self.stage_drops_reverse_pa),
+            "stages": [stage.as_dict() for stage in self.stages],
             "reached_reynolds_forward": self.reached_reynolds_forward,
             "reached_reynolds_reverse": self.reached_reynolds_reverse,
             "method": METHOD,

@@ -70,9 +70,7 @@ class Elimination:
         moves, corners = fields > 0, np.arange(lay.corners)
         self._square = _Places(self._fronts, square.rows, square.columns, moves[square.rows] & moves[square.columns])
         self._mixed = _Places(self._fronts, mixed.rows, mixed.columns, moves[mixed.columns], row_shift=fields)
-        self._soft = _Places(
-            self._fronts, corners, corners, widths[corners] > 0, row_shift=fields, column_shift=fields
-        )
+        self._soft = _Places(self._fronts, corners, corners, widths[corners] > 0, row_shift=fields, column_shift=fields)
 
     @property
     def fill(self) -> int:

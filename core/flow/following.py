@@ -5,12 +5,12 @@ from __future__ import annotations
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
-import numpy as np
-
 from core.flow.newton import Branch, correct, creeping_branch, follow
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Sequence
+
+    import numpy as np
 
     from core.flow.levels import Levels
     from core.flow.problem import FlowProblem

@@ -87,35 +87,36 @@ class Fronts:
         self.entries = sum(front.pivots * (front.pivots + 2 * len(front.border)) for front in self.all)
 
     def _make(self, rows: np.ndarray, columns: np.ndarray, count: int) -> None:
-        """Set up the fronts: borders, in nodes and in unknowns, and children."""
+        """Set up the fronts with their borders: neighbours eliminated later, own ones and those of children."""
         owner, order = self._owner, self._order
-        self._first = np.searchsorted(owner[order], np.arange(count + 1))
-        self._begin = np.append(self.place[order], self.size)[self._first]
+        first = np.searchsorted(owner[order], np.arange(count + 1))
+        self._begin = np.append(self.place[order], self.size)[first]
         later = owner[columns] > owner[rows]
         pairs = np.unique(owner[rows[later]] * len(owner) + self._rank[columns[later]])
-        ends = np.searchsorted(pairs, np.arange(count + 1) * len(owner))
-        ranks = pairs % len(owner)
-        waiting: list[list[int]] = [[] for _ in range(count + 1)]
-        self._borders: list[np.ndarray] = []
+        ends, ranks = np.searchsorted(pairs, np.arange(count + 1) * len(owner)), pairs % len(owner)
+        children: list[list[int]] = [[] for _ in range(count)]
+        borders: list[np.ndarray] = []
         self.all: list[Front] = []
         for number in range(count):
-            parts = [ranks[ends[number] : ends[number + 1]], *(self._borders[child] for child in waiting[number])]
-            border = np.unique(np.concatenate(parts))
-            border = border[border >= self._first[number + 1]]
-            self._borders.append(border)
-            if len(border):
-                waiting[owner[order[border[0]]]].append(number)
-            unknowns = self._unknowns(border)
-            begin, end = int(self._begin[number]), int(self._begin[number + 1])
-            children = []
-            for child in waiting[number]:
-                theirs = self.all[child].border
-                here = np.where(theirs < end, theirs - begin, end - begin + np.searchsorted(unknowns, theirs))
-                children.append((child, here))
-            self.all.append(Front(begin, end, unknowns, tuple(children)))
-        self._keys = np.concatenate([b + k * len(owner) for k, b in enumerate(self._borders)])
-        offsets = [np.cumsum(w) - w for w in (self._widths[order[b]] for b in self._borders)]
-        self._offsets = np.append(np.concatenate(offsets), 0)
+            own, inherited = ranks[ends[number] : ends[number + 1]], (borders[child] for child in children[number])
+            border = np.unique(np.concatenate([own, *inherited]))
+            borders.append(border[border >= first[number + 1]])
+            if len(borders[-1]):
+                children[owner[order[borders[-1][0]]]].append(number)
+            self.all.append(self._front(number, borders[-1], children[number]))
+        self._keys = np.concatenate([border + number * len(owner) for number, border in enumerate(borders)])
+        widths = [self._widths[order[border]] for border in borders]
+        self._offsets = np.append(np.concatenate([np.cumsum(w) - w for w in widths]), 0)
+
+    def _front(self, number: int, border: np.ndarray, children: list[int]) -> Front:
+        begin, end = int(self._begin[number]), int(self._begin[number + 1])
+        unknowns = self._unknowns(border)
+        places = []
+        for child in children:
+            theirs = self.all[child].border
+            here = np.where(theirs < end, theirs - begin, end - begin + np.searchsorted(unknowns, theirs))
+            places.append((child, here))
+        return Front(begin, end, unknowns, tuple(places))
 
     def _unknowns(self, ranks: np.ndarray) -> np.ndarray:
         """Return the unknowns of nodes given by rank, node after node."""

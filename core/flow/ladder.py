@@ -23,7 +23,7 @@ if TYPE_CHECKING:
 
 DIRECTIONS = ("forward", "reverse")
 _WORTH_A_PROCESS = 1e7  # entries of factors, below which another process takes longer to start than it saves
-_MOST_MISSES = 2  # levels on which a flow could not be reached, after which it is given up
+_MOST_MISSES = 3  # levels on which a flow could not be reached, after which it is given up
 
 
 class Progress:
@@ -188,7 +188,7 @@ class Ladder:
             self._companion.end()
 
     def climb(self, reynolds: Sequence[float], quality: Quality, progress: Progress) -> list[Climb]:
-        """Solve levels until the tolerance is met, the ladder ends, or a flow cannot be reached twice.
+        """Solve levels until the tolerance is met, the ladder ends, or a flow is given up.
 
         Parameters
         ----------

@@ -76,7 +76,7 @@ class Companion:
             return None
         if reason:
             raise SolveError(reason)
-        return found  # type: ignore[no-any-return]
+        return found
 
     def end(self) -> None:
         """End the process before this returns."""

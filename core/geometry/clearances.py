@@ -31,6 +31,9 @@ if TYPE_CHECKING:
 # A circle is still empty when a wall reaches this little into it [um].
 _EMPTY_UM = 1e-6
 _BATCH = 16  # circles looked at together
+_ASIDE = 1e-3  # how far beside a place it is looked whether walls open or close, as a part of their distance
+_LEVEL = 1e-9  # relative change of their distance that counts: a thousandth of what a curve makes of it
+_SLACK = 1.001  # so that a width as wide as drawn is not missed for rounding
 _TIE_UM = 1e-5  # lengths that differ by less are equal
 _ON_WALL_UM = 1e-3
 
@@ -98,12 +101,14 @@ def narrowest(shape: ChannelShape) -> Narrowest:
     rings = _Rings(_short_rings(shape))
     line = shape.centreline if shape.chain is None else shape.chain.centreline
     ends = [end_index(rings.contours[0], end.section_um) for end in (line.forward_outlet, line.forward_inlet)]
-    width_um, width_at = rings.neck_um(open_ends=ends)
+    p = shape.parameters
+    likely_um = max(p.channel_width_um, p.loop_width_um if p.stages else 0.0) * _SLACK
+    width_um, width_at = rings.neck_um(likely_um=likely_um, open_ends=ends)
     gap = narrowest_gap(shape)
     nowhere = np.full((2, 2), np.nan)
     return Narrowest(
         width_um=width_um,
-        width_at_um=_on_long(shape, width_at) if np.isfinite(width_um) else nowhere,
+        width_at_um=on_long_chain(shape, width_at) if np.isfinite(width_um) else nowhere,
         gap_um=gap.um if gap else np.inf,
         gap_at_um=gap.at_um if gap else nowhere,
         is_gap_in_island=gap is not None and gap.is_in_island,
@@ -130,8 +135,13 @@ def narrowest_gap(shape: ChannelShape, *, below_um: float = np.inf) -> Gap | Non
     GeometryError
         If the shape has no outline.
     """
-    gap = _Rings(_short_rings(shape)).gap(below_um)
-    return gap if gap is None or gap.is_in_island else replace(gap, at_um=_on_long(shape, gap.at_um))
+    gap = gap_of(_short_rings(shape), below_um=below_um)
+    return gap if gap is None or gap.is_in_island else replace(gap, at_um=on_long_chain(shape, gap.at_um))
+
+
+def gap_of(rings: Sequence[Contour], *, below_um: float = np.inf) -> Gap | None:
+    """Return the smallest gap of few rings, the outer one first; the cost grows with the square of their edges."""
+    return _Rings(rings).gap(below_um)
 
 
 class _Rings:
@@ -144,14 +154,20 @@ class _Rings:
         self.owner = np.repeat(np.arange(len(counts)), counts)
         self.before = edges_before(counts)
 
-    def neck_um(self, *, open_ends: Sequence[int]) -> tuple[float, Floats]:
-        """Return the smallest width and its ends; open ends are no walls, as fluid goes on there."""
+    def neck_um(self, *, likely_um: float, open_ends: Sequence[int]) -> tuple[float, Floats]:
+        """Return the smallest width and its ends; open ends are no walls, as fluid goes on there.
+
+        Where there is a width of at most ``likely_um``, it is quickly found.
+        """
         walls = np.delete(np.arange(len(self.edges)), open_ends)
         renumbered = np.cumsum(np.isin(np.arange(len(self.edges)), walls)) - 1
         before = np.where(np.isin(self.before[walls], open_ends), np.arange(len(walls)), renumbered[self.before[walls]])
         edges = self.edges.take(walls)
-        for length, at, _ in _necks(edges, *double_normals(edges, before, Through.FLUID)):
-            return length, at
+        for below_um in (likely_um, np.inf):
+            facing = double_normals(edges, before, Through.FLUID, below_um=below_um)
+            for length, at, _ in _empty_circles(edges, *facing):
+                if _is_neck(edges, at):
+                    return length, at
         return np.inf, np.full((2, 2), np.nan)
 
     def gap(self, below_um: float) -> Gap | None:
@@ -159,13 +175,14 @@ class _Rings:
         facing = double_normals(self.edges, self.before, Through.SOLID, below_um=below_um)
         gap: Gap | None = None
         left = self._distinct_islands()
-        for length, at, edge in _necks(self.edges, *facing):
+        for length, at, edge in _empty_circles(self.edges, *facing):
             ring = int(self.owner[edge])
-            if gap is None:
+            if gap is None and _is_neck(self.edges, at):
                 gap = Gap(um=length, at_um=at, is_in_island=ring > 0)
-            left.discard(ring)  # its largest circle is no smaller than its neck
-            if not left:
-                break
+            if gap is not None:
+                left.discard(ring)  # a circle as large as the gap fits into it
+                if not left:
+                    break
         for ring in sorted(left):
             thin = incircle(self.contours[ring], at_most_um=0.5 * (gap.um if gap else below_um))
             if thin is not None:
@@ -178,7 +195,7 @@ class _Rings:
         return {number for number in range(1, len(areas)) if areas[number] not in areas[1:number]}
 
 
-def _necks(edges: Edges, first: Floats, second: Floats) -> Iterator[tuple[float, Floats, int]]:
+def _empty_circles(edges: Edges, first: Floats, second: Floats) -> Iterator[tuple[float, Floats, int]]:
     """Yield pairs of points in whose circle no wall lies, the nearest first: length, ends, a wall that is touched."""
     length = np.hypot(*(second - first).T)
     order = np.lexsort((first[:, 0], np.round(length / _TIE_UM)))  # of equal ones the first along the chain
@@ -190,6 +207,22 @@ def _necks(edges: Edges, first: Floats, second: Floats) -> Iterator[tuple[float,
             yield float(length[k]), np.stack((first[k], second[k])), int(np.argmin(away[row]))
 
 
+def _is_neck(edges: Edges, at_um: Floats) -> bool:
+    """Return whether walls that face one another squarely open or close in the same sense to both sides.
+
+    Where they close to one side and open to the other, as where a round end goes over into a widening part,
+    nothing breaks there.
+    """
+    across = at_um[1] - at_um[0]
+    length = np.hypot(*across)
+    aside = _ASIDE * np.array([-across[1], across[0]])
+    opens = []
+    for point in (at_um.mean(axis=0) + aside, at_um.mean(axis=0) - aside):
+        width = sum(edges.ahead(point, sense * across / length) for sense in (1.0, -1.0))
+        opens.append((width - length) / length)
+    return not min(opens) < -_LEVEL < _LEVEL < max(opens)
+
+
 def _short_rings(shape: ChannelShape) -> list[Contour]:
     """Return the rings of the short chain, the outer one first."""
     if shape.outline is None or shape.chain is None:
@@ -197,7 +230,7 @@ def _short_rings(shape: ChannelShape) -> list[Contour]:
     return [shape.chain.outers[0].contour, *(ring.contour for ring in shape.chain.holes)]
 
 
-def _on_long(shape: ChannelShape, points_um: Floats) -> Floats:
+def on_long_chain(shape: ChannelShape, points_um: Floats) -> Floats:
     """Return points of the short chain on the long one: where they are, or shifted to its far end."""
     chain, outline = shape.chain, shape.outline
     if chain is None or outline is None or chain.parameters.stages == shape.parameters.stages:

@@ -145,6 +145,28 @@ class Edges:
         away: Floats = np.hypot(spoke[..., 0], spoke[..., 1])
         return away
 
+    def ahead(self, point_um: Floats, direction: Floats) -> float:
+        """Return how far from a point the first edge lies in a direction (a unit vector) [um]; infinite for none."""
+        rel, d = self.start_um - point_um, self.end_um - self.start_um
+        skew = _cross(direction, d)
+        crosses = ~self.is_arc & (np.abs(skew) > 1e-12 * np.hypot(d[:, 0], d[:, 1]))
+        skew = np.where(crosses, skew, 1.0)
+        share = _cross(rel, direction) / skew
+        away = [np.where(crosses & (share >= 0.0) & (share <= 1.0), _cross(rel, d) / skew, np.inf)]
+        rel = self.centre_um - point_um
+        along, inside = dot(rel, direction), self.radius_um**2 - _cross(rel, direction) ** 2
+        for half in (-np.sqrt(np.maximum(inside, 0.0)), np.sqrt(np.maximum(inside, 0.0))):
+            spoke = (along + half)[:, None] * direction - rel
+            hit = self.on_arc(np.arctan2(spoke[:, 1], spoke[:, 0])) & (inside >= 0.0)
+            away.append(np.where(hit, along + half, np.inf))
+        every = np.concatenate(away)
+        return float(every[every > 0.0].min(initial=np.inf))
+
+
+def _cross(a: Floats, b: Floats) -> Floats:
+    product: Floats = a[..., 0] * b[..., 1] - a[..., 1] * b[..., 0]
+    return product
+
 
 def dot(a: Floats, b: Floats) -> Floats:
     """Return the scalar products of vectors, shape (..., 2)."""

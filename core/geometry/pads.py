@@ -98,9 +98,7 @@ class LeadEnd:
             return self.corners_um, np.zeros(2)
         half, f = 0.5 * self.width_um, self.fillet_um
         lean = asin((half + f) / (pad.radius_um + f))
-        points, bulges = arc_run(
-            pad.centre_um, pad.radius_um, self.outward_rad - pi + lean, 2.0 * (pi - lean)
-        )
+        points, bulges = arc_run(pad.centre_um, pad.radius_um, self.outward_rad - pi + lean, 2.0 * (pi - lean))
         last = pad.centre_um + pad.radius_um * _unit(self.outward_rad + pi - lean)
         if f == 0.0:
             # the corners of the lead themselves, so that nothing is lost to rounding

@@ -102,7 +102,7 @@ def drawn_rings(lines: Sequence[PenLine], *, rounding_um: float) -> list[Ring]:
     for share in (0.38, 0.61):
         inside |= pen.is_inside(np.array([piece.at(share * piece.length) for piece in pieces]))
     kept = [piece for piece, drop in zip(pieces, inside, strict=True) if not drop]
-    return [_rounded(ring, r) for ring in _joined(kept)]
+    return [_rounded(ring, r) if r else ring for ring in _joined(kept)]
 
 
 class _Pen:
@@ -281,8 +281,6 @@ def _goes_on(piece: Curve, following: Curve) -> bool:
 
 def _rounded(ring: Ring, r: float) -> Ring:
     """Return the ring moved back by r, with an arc of radius r at every inner corner."""
-    if r == 0.0:
-        return ring
     moved = [curve.shrunk(r) for curve in ring.curves]
     result: list[Curve] = []
     for index, curve in enumerate(moved):
@@ -294,8 +292,7 @@ def _rounded(ring: Ring, r: float) -> Ring:
         gap = hypot(following.start[0] - curve.end[0], following.start[1] - curve.end[1])
         if following.wall.face != "end" and gap > JOIN_UM:
             corner = ring.curves[index].end
-            angle = atan2(curve.end[1] - corner[1], curve.end[0] - corner[0])
-            to = atan2(following.start[1] - corner[1], following.start[0] - corner[0])
+            angle, to = (atan2(y - corner[1], x - corner[0]) for x, y in (curve.end, following.start))
             turn = (angle - to) % (2 * pi)
             if turn < pi:  # else the walls go on smoothly, and missed one another by a hair
                 result.append(arc_curve(Wall(-1, "round"), corner, r, angle, -turn))

@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from math import isfinite
 from typing import TYPE_CHECKING
-
-import numpy as np
 
 from core.geometry.clearances import narrowest
 from core.masks.grid import NM_PER_UM
@@ -38,12 +37,13 @@ def critical_dimensions(drawing: MaskDrawing) -> tuple[CriticalDimension, ...]:
     tuple of CriticalDimension
         Empty when the mask holds no channel.
     """
-    found = [each for block in drawing.blocks if block.body is not None for each in _narrowest(drawing, block)]
+    found = [(each, block) for block in drawing.blocks for each in _narrowest(drawing, block)]
     smallest = (
-        min((each for each in found if each.is_drawn == is_drawn), key=lambda each: each.value_um, default=None)
+        min((pair for pair in found if pair[0].is_drawn == is_drawn), key=lambda pair: pair[0].value_um, default=None)
         for is_drawn in (True, False)
     )
-    return tuple(sorted((each for each in smallest if each is not None), key=lambda each: each.value_um))
+    placed = (_placed(drawing, *pair) for pair in smallest if pair is not None)
+    return tuple(sorted(placed, key=lambda each: each.value_um))
 
 
 def usual_tolerance_um(value_um: float) -> float:
@@ -97,11 +97,10 @@ def _tone_of(critical: CriticalDimension, options: MaskOptions) -> str:
 
 
 def _narrowest(drawing: MaskDrawing, block: Block) -> list[CriticalDimension]:
-    """Return the narrowest width and gap of a channel as drawn, where it first stands on the mask."""
-    body, name = block.body, drawing.name_of(block)
-    assert body is not None
-    first = np.array(_first_place_nm(drawing, block)) / NM_PER_UM
-    found = []
+    """Return the narrowest width and gap of the channel of a block as drawn, in the block's own coordinates."""
+    body, found = block.body, []
+    if body is None:
+        return []
     for row in {id(row.shape): row for row in reversed(body.folding.rows)}.values():
         narrow = narrowest(row.shape)
         for what, um, ends, is_drawn in (
@@ -109,10 +108,10 @@ def _narrowest(drawing: MaskDrawing, block: Block) -> list[CriticalDimension]:
             ("narrowest solid", narrow.gap_um, narrow.gap_at_um, False),
         ):
             if isfinite(um):
-                x, y = body.scale * row.placement.points(ends).mean(axis=0) + first
+                x, y = body.scale * row.placement.points(ends).mean(axis=0)
                 found.append(
                     CriticalDimension(
-                        what=f"{what} of {name}",
+                        what=f"{what} of {drawing.name_of(block)}",
                         value_um=float(um * body.scale),
                         x_um=float(x),
                         y_um=float(y),
@@ -122,5 +121,7 @@ def _narrowest(drawing: MaskDrawing, block: Block) -> list[CriticalDimension]:
     return found
 
 
-def _first_place_nm(drawing: MaskDrawing, block: Block) -> tuple[int, int]:
-    return next((x, y) for other, x, y in drawing.placings() if other is block)
+def _placed(drawing: MaskDrawing, critical: CriticalDimension, block: Block) -> CriticalDimension:
+    """Return a dimension of a block where the block first stands on the mask."""
+    x, y = next((x, y) for other, x, y in drawing.placings() if other is block)
+    return replace(critical, x_um=critical.x_um + x / NM_PER_UM, y_um=critical.y_um + y / NM_PER_UM)

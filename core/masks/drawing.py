@@ -23,7 +23,7 @@ if TYPE_CHECKING:
 
     Bounds = tuple[float, float, float, float]
 
-LONGEST_CHANNEL_NAME = 19  # leaves room for "__STEP_A" within a cell name
+LONGEST_CHANNEL_NAME = 18  # leaves room for "__START_B" within a cell name
 LONGEST_STEM = 24
 LARGEST_COORDINATE_UM = 2e6  # 2 m either way: what mask writers take, and nearly what 32-bit nanometres reach
 
@@ -70,6 +70,9 @@ class MaskDrawing:
                 raise ExportError(f"block {shown(block.name)} has a figure with a hole; only channels may have islands")
         if not self.layers:
             raise ExportError(f"nothing is drawn on mask {self.stem}; place a channel first")
+        for block in self.blocks:
+            if not self.extents_of(block):
+                raise ExportError(f"block {shown(block.name)} draws nothing; take it out of the drawing")
         reach = max(abs(value) for value in self.bounds_um)
         if reach > LARGEST_COORDINATE_UM:
             raise ExportError(

@@ -17,7 +17,7 @@ if TYPE_CHECKING:
 
 NM_PER_UM = 1000.0
 MOST_VERTICES = 199  # with the repeated first one 200, the limit of the first GDSII definition
-_ENDS = 300  # vertices of a long ring at which cuts are looked for
+_ENDS = 100  # vertices of a long ring at which cuts are looked for
 _BATCH = 64  # cuts looked at together
 _SHARE = 4  # a cut leaves at least a quarter of the vertices on either side
 

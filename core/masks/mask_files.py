@@ -22,6 +22,9 @@ if TYPE_CHECKING:
     from core.masks.drawing import MaskDrawing
     from core.masks.options import MaskOptions
 
+LARGE_BYTES = 50_000_000
+_LARGE_WORDS = "The file is larger than 50 MB: ask the shop whether it takes that, or write copies by reference."
+
 
 def written_mask(new: Path, drawing: MaskDrawing, kind: MaskFormat, options: MaskOptions) -> MaskFile:
     """Write one mask file and prove it.
@@ -61,7 +64,7 @@ def written_mask(new: Path, drawing: MaskDrawing, kind: MaskFormat, options: Mas
         area_um2=proof.area_um2,
         bounds_um=proof.bounds_um,
         island_count=proof.island_count,
-        proofs=proof.sentences,
+        proofs=(*proof.sentences, *([_LARGE_WORDS] if len(data) > LARGE_BYTES else [])),
     )
 
 

@@ -87,15 +87,15 @@ class _Writer:
 
         lines = simpleSplit(_printable(text), _FONT, _SIZE, _PAGE[0] - 2.0 * _EDGE - _INDENT)
         for number, line in enumerate(lines):
-            self._line(line, _FONT, _SIZE, _INDENT)
-            if number == 0:
-                self.canvas.drawString(_EDGE, self.y, _BULLET)
+            self._line(line, _FONT, _SIZE, _INDENT, before="" if number else _BULLET)
 
-    def _line(self, text: str, font: str, size: float, indent: float) -> None:
+    def _line(self, text: str, font: str, size: float, indent: float, *, before: str = "") -> None:
         if self.y < _EDGE + 3.0 * _SIZE:
             self.new_page()
         self.y -= _LEADING * size
         self.canvas.setFont(font, size)
+        if before:
+            self.canvas.drawString(_EDGE, self.y, before)
         self.canvas.drawString(_EDGE + indent, self.y, _printable(text))
 
     def _foot(self) -> None:

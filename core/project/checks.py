@@ -3,11 +3,13 @@
 from __future__ import annotations
 
 import unicodedata
+from dataclasses import replace
 from typing import TYPE_CHECKING
 
 import numpy as np
 
 from core.chip.chip_findings import chip_findings
+from core.chip.plate import distinct_steps, values_of
 from core.errors import CoreError, shown
 from core.fabrication.channel_findings import channel_findings
 from core.fabrication.making import making_of
@@ -41,25 +43,45 @@ def order_findings(project: ChipProject) -> tuple[FoundIn, ...]:
         on the set's own drawing, those of the chip's findings on the chip.
     """
     of_sets = [(each.name, finding) for each in project.sets for finding in set_findings(project, each)]
+    of_sets += _series_findings(project, {(name, finding.code) for name, finding in of_sets})
     channels = {each.name: each.channel for each in project.sets}
     of_chip = [
         *chip_findings(project.plan, channels, process=project.process, chip_name=project.name),
-        *_depth_findings(project),
-        *_name_findings(project),
+        *project_findings(project),
     ]
     return (*of_sets, *(("", finding) for finding in of_chip))
 
 
-def set_findings(project: ChipProject, chosen: ParameterSet) -> tuple[Finding, ...]:
-    """Return what speaks against one parameter set: its shape, and the process at the operating flow."""
+def project_findings(project: ChipProject) -> tuple[Finding, ...]:
+    """Return what only the whole project knows: sets of several depths on one mask, and names that files lose."""
+    return (*_depth_findings(project), *_name_findings(project))
+
+
+def set_findings(project: ChipProject, chosen: ParameterSet, *, with_cures: bool = True) -> tuple[Finding, ...]:
+    """Return what speaks against one parameter set: its shape, and the process at the operating flow.
+
+    Parameters
+    ----------
+    project : ChipProject
+        Process, operating point and results of flow solves.
+    chosen : ParameterSet
+        Any set; it need not be one of the project.
+    with_cures : bool
+        False to leave out the search for cures, which takes most of the time.
+    """
     shape = build_shape(chosen.channel)
     if not shape.is_usable:
         return shape.findings
     pressure_pa, pressure_at = highest_pressure(project, chosen.channel)
-    made = channel_findings(
-        chosen.channel, project.process, pressure_pa=pressure_pa, pressure_at=pressure_at, shape=shape
+    found = channel_findings(
+        chosen.channel,
+        project.process,
+        pressure_pa=pressure_pa,
+        pressure_at=pressure_at,
+        shape=shape,
+        with_cures=with_cures,
     )
-    return (*shape.findings, *made)
+    return (*shape.findings, *found)
 
 
 def highest_pressure(project: ChipProject, channel: ChannelParameters) -> tuple[float | None, str]:
@@ -103,6 +125,29 @@ def errors_in(findings: Sequence[FoundIn], project: ChipProject) -> tuple[FoundI
     return tuple(
         (name, finding) for name, finding in findings if finding.severity is Severity.ERROR and name in on_chip
     )
+
+
+def _series_findings(project: ChipProject, known: set[tuple[str, str]]) -> Iterator[FoundIn]:
+    """Tell what is found at the ends of a stepped series and not in the sets themselves.
+
+    Limits are one-sided, so that chips between the ends are no worse than those at the ends.
+    """
+    plan = project.plan
+    if plan.plate == "single chip" or not plan.series:
+        return
+    steps = distinct_steps(plan)
+    ends = [(min(each), max(each)) for each in zip(*steps, strict=True)]
+    corners = [each for each in steps if all(step in end for step, end in zip(each, ends, strict=True))]
+    for chosen in placed_sets(project):
+        for corner in corners:
+            values = values_of(plan, corner)
+            changed = replace(chosen, channel=chosen.channel.with_values(values))
+            words = ", ".join(f"{name} {value:g}" for name, value in values.items())
+            for finding in set_findings(project, changed, with_cures=False):
+                if (chosen.name, finding.code) not in known:
+                    known.add((chosen.name, finding.code))
+                    message = f"on the chip with {words}: {finding.message}"
+                    yield chosen.name, replace(finding, message=message, x_um=None, y_um=None, ends_um=None)
 
 
 def _depth_findings(project: ChipProject) -> Iterator[Finding]:

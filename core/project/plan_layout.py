@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import MISSING, fields
-from typing import TYPE_CHECKING, TypeVar
+from typing import TYPE_CHECKING
 
 from core.chip.plan import CHIP_FIELDS, ChipChannel, ChipPlan, SteppedField
 from core.fabrication.process import PROCESS_FIELDS
@@ -13,8 +13,11 @@ from core.project.reading import entries, tried, values
 if TYPE_CHECKING:
     from core.fabrication.process import Process
 
-_Entry = TypeVar("_Entry", ChipChannel, SteppedField)
-_LISTS = {"channels": ("channel", ChipChannel), "series": ("stepped field", SteppedField)}
+_Entry = ChipChannel | SteppedField
+_LISTS: dict[str, tuple[str, type[_Entry]]] = {
+    "channels": ("channel", ChipChannel),
+    "series": ("stepped field", SteppedField),
+}
 
 
 def process_from_data(data: object, problems: list[str]) -> Process:
@@ -34,7 +37,7 @@ def plan_data(plan: ChipPlan) -> dict[str, object]:
     return {**plan.as_dict(), "label": plan.label, **lists}
 
 
-def _entry_data(entry: ChipChannel | SteppedField) -> dict[str, object]:
+def _entry_data(entry: _Entry) -> dict[str, object]:
     return {field.name: getattr(entry, field.name) for field in fields(entry)}
 
 

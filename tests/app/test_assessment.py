@@ -98,7 +98,8 @@ def test_the_search_for_cures_changes_no_finding_and_can_be_ended():
 def test_what_has_no_score_has_a_finding_that_blocks(kind):
     """Truth: nothing is refused without a reason."""
     process = shipped_process(kind)
-    for width, depth, radius in ((30.0, 20.0, 40.0), (100.0, 60.0, 110.0), (200.0, 200.0, 320.0), (600.0, 100.0, 800.0)):
+    sizes = ((30.0, 20.0, 40.0), (100.0, 60.0, 110.0), (200.0, 200.0, 320.0), (600.0, 100.0, 800.0))
+    for width, depth, radius in sizes:
         channel = ChannelParameters(
             channel_width_um=width, loop_width_um=width, depth_um=depth, loop_radius_um=radius, stage_gap_um=4 * width
         )

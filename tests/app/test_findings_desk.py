@@ -134,6 +134,7 @@ def test_a_mark_that_is_clicked_is_pointed_at_and_the_view_stays(window, qtbot):
 
 def test_pressure_above_what_the_bond_holds_is_found(window, qtbot):
     """Truth: 200 kPa over a safety factor of 2 is passed at some flow, and not at a hundredth of it."""
+
     def codes():
         return {finding.code for finding in window.parts.verdict.findings.findings}
 

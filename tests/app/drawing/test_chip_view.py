@@ -24,7 +24,7 @@ def chip(names=("Alpha", "Beta")):
     """Return a chip with two channels one above the other."""
     block = chip_block("CHIP", (channel_block(4),) * 2, width_um=WIDTH_UM, height_um=12000.0)
     y_um = [placed.dy_um for placed in block.placed]
-    channels = tuple(ChipChannel(set_name=name, y_um=y) for name, y in zip(names, y_um, strict=True))
+    channels = tuple(ChipChannel(set_name=name, x_um=0.25, y_um=y) for name, y in zip(names, y_um, strict=True))
     plan = ChipPlan(chip_width_um=WIDTH_UM, chip_height_um=12000.0, channels=channels)
     return ShownChip.of(Scene(top=block), plan, [(block, 0.0, 0.0)])
 
@@ -89,6 +89,17 @@ def test_a_carried_channel_is_put_down_on_whole_micrometres(view, qtbot):
     assert view.selected == 0
 
 
+def test_what_is_told_while_carrying_is_where_it_will_stand(view, qtbot):
+    start = middle_of(view, 0)
+    qtbot.mousePress(view, LEFT, pos=start)
+    qtbot.mouseMove(view, start + QPoint(37, -21))
+    told = view._picture._place_text()
+    with qtbot.waitSignal(view.move_requested) as moved:
+        qtbot.mouseRelease(view, LEFT, pos=start + QPoint(37, -21))
+    _, x_um, y_um, _ = moved.args
+    assert told == f"Alpha: x {x_um:g} \N{MICRO SIGN}m, y {y_um:g} \N{MICRO SIGN}m"
+
+
 def test_escape_while_carrying_leaves_it_where_it_was(view, qtbot):
     start = middle_of(view, 0)
     qtbot.mousePress(view, LEFT, pos=start)
@@ -120,7 +131,7 @@ def test_arrows_move_the_channel_in_hand(view, qtbot, modifier, step_um):
     for key, (dx, dy) in wanted.items():
         with qtbot.waitSignal(view.move_requested) as moved:
             qtbot.keyClick(view, key, modifier)
-        assert moved.args == [1, place.x_um + dx, place.y_um + dy, False]
+        assert moved.args == [1, round(place.x_um + dx), round(place.y_um + dy), False]
 
 
 def test_arrows_pan_when_nothing_is_in_hand(view, qtbot):

@@ -235,3 +235,10 @@ def test_lengths_follow_the_unit(desk, window):
     window.settings.set_unit("length", "mm")
     assert "mm" in window.parts.chip_view.accessibleDescription()
     assert window.parts.places.model.headerData(1, Qt.Orientation.Horizontal) == "Across [mm]"
+
+
+def test_a_channel_that_is_gone_is_told(desk, window):
+    before = window.document.plan
+    desk._change(9, {"x_um": 0.0})
+    assert window.document.plan == before
+    assert "wait until the chip is drawn anew" in window.statusBar().currentMessage()

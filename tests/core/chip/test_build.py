@@ -181,7 +181,7 @@ def test_a_series_labels_every_chip_with_its_own_values():
     steps = steps_of(full, plate_grid(full))
     assert len({id(block) for block in copies}) == len(set(steps)) == 4
     for block, (first, second) in zip(copies, steps, strict=True):
-        assert block.title == f"Rinse 7, Loop radius {(150, 200)[first]} um, Stages {(1, 2)[second]} "
+        assert block.title == f"Rinse 7, Loop radius {(150, 200)[first]} um, Stages {(1, 2)[second]}"
         body = block.placed[0].block.body
         assert (
             body.channel

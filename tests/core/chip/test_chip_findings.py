@@ -149,6 +149,22 @@ def test_walls_between_channels_are_those_of_a_brute_force_measurement(dx, dy, t
         assert (finding.x_um, finding.y_um) == pytest.approx(((x1 + x2) / 2, (y1 + y2) / 2))
 
 
+@pytest.mark.parametrize(("share", "code"), [(0.95, "wall_between_channels"), (1.05, "spacing")])
+def test_a_wall_thinner_than_the_process_keeps_tight_is_an_error(share, code):
+    plan = plan_of(at("A"), at("A", is_control=True), port_clearance_um=0.0)
+    (stands,) = stands_of(plan, SETS, CAST)
+    first, second = (as_polygon(stand.outline, sagitta_um=0.05) for stand in stands)
+    low, high = 0.0, 4000.0
+    for _ in range(22):  # where the wall has the share wanted, by halving
+        middle = 0.5 * (low + high)
+        gap = first.distance(shapely.affinity.translate(second, 0.0, middle))
+        low, high = (middle, high) if gap < share * CAST.min_wall_um else (low, middle)
+    codes = found(replace(plan, channels=(plan.channels[0], at("A", 0.0, high, is_control=True))))
+    assert list(codes) == [code]
+    assert codes[code].value_um == pytest.approx(share * CAST.min_wall_um, abs=0.1)
+    assert codes[code].severity is (Severity.ERROR if share < 1.0 else Severity.WARNING)
+
+
 def test_a_channel_inside_another_ones_loop_is_no_neighbour_and_one_inside_its_fluid_overlaps():
     big = replace(
         SMALL, loop_radius_um=6000.0, loop_width_um=2500.0, channel_width_um=2500.0, stages=1, lead_in_um=9000.0,
@@ -255,11 +271,20 @@ def test_a_stepped_value_that_cannot_be_built_is_told_with_its_value():
 def test_every_chip_of_a_series_is_measured():
     """Loops grow from chip to chip until they meet the neighbour; the first chip alone would be fine."""
     series = (SteppedField(name="loop_radius_um", first=150.0, last=600.0, steps=4),)
-    plan = plan_of(at("A"), at("A", 0.0, 1900.0), chip_width_um=18000.0, chip_height_um=14000.0)
+    entries = (at("A"), at("A", 0.0, 1150.0, is_control=True))
+    plan = plan_of(*entries, chip_width_um=18000.0, chip_height_um=14000.0, port_diameter_um=300.0, pad_margin_um=50.0)
     assert not {"channels_overlap", "wall_between_channels"} & set(found(plan))
     stepped = found(replace(plan, plate="wafer", series=series))
     worst = stepped.get("channels_overlap") or stepped["wall_between_channels"]
     assert "(loop_radius_um" in worst.message
+
+
+def test_checks_are_reported_and_can_be_stopped():
+    series = (SteppedField(name="loop_radius_um", first=150.0, last=200.0, steps=3),)
+    plan = plan_of(at("A"), plate="wafer", series=series, chip_width_um=14000.0, chip_height_um=14000.0)
+    told = []
+    chip_findings(plan, SETS, process=CAST, report=lambda step, total, text: told.append((step, total)))
+    assert told == [(0, 3), (1, 3), (2, 3)]
 
 
 def test_words_that_do_not_come_out():

@@ -115,7 +115,7 @@ def test_a_series_steps_along_and_up_and_begins_again():
         assert each == (column % 4, row % 3)
     assert distinct_steps(plan) == tuple(dict.fromkeys(steps))
     assert values_of(plan, (1, 2)) == {"loop_radius_um": 300.0, "stages": 3}
-    assert label_lines(plan, "Rinse", (1, 2)) == ("Rinse", "Loop radius 300 um", "Stages 3 ")
+    assert label_lines(plan, "Rinse", (1, 2)) == ("Rinse", "Loop radius 300 um", "Stages 3")
     assert label_lines(plan.__class__(label="Own"), "Rinse", ()) == ("Own",)
 
 

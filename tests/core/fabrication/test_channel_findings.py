@@ -101,7 +101,7 @@ def few_stages(seed: int, count: int) -> list[ChannelParameters]:
 @pytest.mark.slow
 def test_gaps_are_those_of_brute_force() -> None:
     # truth: circles through thousands of points; good to 0.2 % at this spacing
-    for channel in few_stages(5, 10):
+    for channel in few_stages(5, 6):
         assert gap_of(channel) == pytest.approx(brute_force_gap(channel), rel=2e-3), channel
 
 
@@ -141,6 +141,9 @@ def test_solids_lean_where_the_process_lets_them() -> None:
         process = shipped_process(kind).with_values({"max_depth_to_width": 0.99 * ratio, "max_width_to_depth": 50,
                                                      "collapse_width_to_depth": 100, "max_depth_um": 500})  # fmt: skip
         process = process.with_values({"allowance": "by the shop", "min_radius_um": 0, "tool_diameter_um": 0})
+        if kind is ProcessKind.WET_GLASS:
+            process = process.with_values({"undercut_ratio": 0.1})
+        assert not making_of(channel, process).findings
         # glass etched round is wider at the bottom than at the top
         assert ("too_deep_for_gap" in codes(channel, process)) == (kind is not ProcessKind.WET_GLASS), kind
 
@@ -233,7 +236,9 @@ def check_cures(channel: ChannelParameters, process: Process) -> int:
         assert build_shape(making.drawn).is_usable
         left = channel_findings(cured, process, with_cures=False)
         same = [f for f in left if f.code == finding.code and (f.value_um or 0) <= (finding.value_um or 0) + 1e-6]
-        widths = finding.code.endswith(("width_below_min", "width_below_tool", "for_width", "grid_too_coarse"))
+        widths = finding.code.endswith(
+            ("width_below_min", "width_below_tool", "for_width", "grid_too_coarse", "roof_sags", "roof_closes")
+        )
         assert not same or widths, (channel, process, finding)
         if widths:
             subject = finding.message.split()[0]
@@ -284,8 +289,8 @@ def test_findings_follow_a_slider(stages: int) -> None:
     shape = build_shape(channel)
     times = []
     for _ in range(20):
-        start = time.perf_counter()
+        start = time.process_time()
         channel_findings(channel, process, shape=shape, with_cures=False)
-        times.append(time.perf_counter() - start)
-    print(f"findings of {stages} stages: {1e3 * np.median(times):.1f} ms")
-    assert np.median(times) < 0.05  # common practice, no source: half of what feels immediate
+        times.append(time.process_time() - start)
+    print(f"findings of {stages} stages: {1e3 * np.median(times):.1f} ms of processor time")
+    assert np.median(times) < 0.02  # common practice, no source: a fifth of what feels immediate

@@ -14,7 +14,7 @@ import shapely
 
 from core.errors import SolveError
 from core.flow import FlowStopped
-from core.flow.channel import solve_channel
+from core.flow.channel import channel_answers, solve_channel
 from core.flow.channel_places import channel_domain, curve_flows_ul_min, streamline_seeds_um
 from core.geometry.shape import build_shape
 from core.operating import OperatingPoint
@@ -195,6 +195,34 @@ def test_it_stops_when_asked():
         solve_channel(REFERENCE, fluid=WATER, flows_ul_min=[100.0], quality="coarse", should_stop=lambda: True)
 
 
+# --- one quality after another ------------------------------------------------------------------
+
+
+@pytest.mark.slow
+def test_answers_in_turn_are_those_of_separate_solves():
+    """The better answer begins where the coarse one ended; the equations are the same."""
+    flow, steps = flow_at(40.0, REFERENCE), []
+    found = list(
+        channel_answers(REFERENCE, fluid=WATER, flows_ul_min=[flow], report=lambda *step: steps.append(step[0]))
+    )
+    assert [each.points[0].quality for each in found] == ["coarse", "normal"]
+    for answer in found:
+        (alone,) = solve_channel(REFERENCE, fluid=WATER, flows_ul_min=[flow], quality=answer.points[0].quality).points
+        (point,) = answer.points
+        assert point.forward_pressure_pa == pytest.approx(alone.forward_pressure_pa, rel=1e-5)
+        assert point.reverse_pressure_pa == pytest.approx(alone.reverse_pressure_pa, rel=1e-5)
+        assert point.diodicity_band == pytest.approx(alone.diodicity_band, rel=1e-2)
+        assert (point.modes, point.unknowns) == (alone.modes, alone.unknowns)
+    assert steps == sorted(steps)  # over both answers
+    assert (steps[0], steps[-1]) == (0, 1000)
+
+
+def test_an_answer_that_nobody_waits_for_is_not_computed():
+    answers = channel_answers(REFERENCE, fluid=WATER, flows_ul_min=[flow_at(5.0, REFERENCE)])
+    assert next(answers).points[0].quality == "coarse"
+    answers.close()
+
+
 # --- long chains ----------------------------------------------------------------------------
 
 
@@ -212,6 +240,9 @@ def test_eight_stages_by_extension_agree_with_eight_in_full():
     np.testing.assert_allclose(short.loop_shares_reverse, full.loop_shares_reverse, atol=0.01)
     np.testing.assert_allclose(short.loop_shares_forward, full.loop_shares_forward, atol=0.01)
     assert any("6 stages were solved" in note for note in short.notes)
+    for one, other in zip(short.stages[:-1], full.stages[:-1], strict=True):
+        assert one.to_next_forward_pa == pytest.approx(other.to_next_forward_pa, rel=0.05)
+        assert one.to_next_reverse_pa == pytest.approx(other.to_next_reverse_pa, rel=0.05)
     # the field of the stages solved lies where they are in the whole chain, at the pressure they have there
     inlet = build_shape(chain).centreline.forward_inlet.point_um
     near = np.hypot(*(short.forward_field.points_um - inlet).T).min()

@@ -3,12 +3,14 @@
 Truth: what a result must be by its meaning, at any flow: finite and positive drops, loop shares
 between none and all of the flow, a diodicity that creeping flow holds at 1, no drop below what the
 shortest straight path through the channel takes.
+
+The suite solves some; SIDELOOP_RANDOM_CHANNELS=500 in the environment asks for so many, in one go.
 """
 
 from __future__ import annotations
 
 import math
-import multiprocessing
+import os
 import tempfile
 import time
 from pathlib import Path
@@ -19,10 +21,11 @@ import pytest
 from core.errors import SolveError
 from core.flow import FlowStopped
 from core.flow.channel import solve_channel
+from tests.core.flow.processes import children
 from tests.core.flow.random_channels import WATER, trial
 
-CHANNELS = 25
-LIMIT_S = 60.0  # a hundred times what most take; a machine may be busy
+CHANNELS = int(os.environ.get("SIDELOOP_RANDOM_CHANNELS", "25"))
+LIMIT_S = 60.0  # of processor time, which a busy machine stretches least; fifty times what most take
 
 
 def outcome(seed: int) -> tuple[str, str]:
@@ -34,14 +37,14 @@ def outcome(seed: int) -> tuple[str, str]:
         Of channel and flow.
     """
     drawn = trial(np.random.default_rng(seed))
-    end = time.monotonic() + LIMIT_S
+    end = time.process_time() + LIMIT_S
     try:
         found = solve_channel(
             drawn.channel,
             fluid=WATER,
             flows_ul_min=[drawn.flow_ul_min],
             quality="coarse",
-            should_stop=lambda: time.monotonic() > end,
+            should_stop=lambda: time.process_time() > end,
         )
     except FlowStopped:
         return "slow", f"not done after {LIMIT_S:g} s"
@@ -73,7 +76,9 @@ def _faults_of_a_result(point, drawn) -> str:
         return "a field is not finite"
     if abs(point.reynolds / drawn.reynolds - 1) > 1e-9:
         return f"Reynolds number {point.reynolds}, asked for {drawn.reynolds}"
-    # forward flow at a sharp run bend may drive a stream backwards around the loop: a negative share
+    # Forward flow that leaves one stage may drive a stream backwards around the loop of the next: a negative
+    # share. Seen at a run bend of 81 degrees, Re 142 (channel 58 here): -0.144 coarse, -0.129 normal. With
+    # two of its stages and sharp corners -0.104 by modes, -0.096 by ``solid_flow`` on the same triangles.
     if not all(-0.5 < share < 1.0 for share in shares):
         return f"loop shares {shares}"
     if drawn.reynolds < 2.0 and abs(point.diodicity - 1.0) > 0.002:  # creeping flow is the same run backwards
@@ -107,4 +112,4 @@ def test_random_channels_end_in_a_result_or_a_reason(tmp_path, monkeypatch):
     solved = sum(word == "solved" for word, _ in found.values())
     assert solved >= 0.8 * CHANNELS  # else the channels are not the ones people draw, or the solve gives up early
     assert list(Path(tmp_path).iterdir()) == []  # no file is left
-    assert multiprocessing.active_children() == []
+    assert children() == []

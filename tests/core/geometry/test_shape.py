@@ -151,6 +151,29 @@ def test_lengths_below_any_grid_do_no_harm(changes: dict[str, float]) -> None:
     assert check(ChannelParameters().with_values(changes)) == "good"
 
 
+def test_walls_that_go_on_smoothly_but_for_a_hair_get_no_circle_at_their_joint() -> None:
+    # leg and incoming run in line but for 0.01 deg: walls miss one another by a nanometre or so
+    outline = build_shape(
+        ChannelParameters(
+            loop_angle_deg=46.137345966251516,
+            run_bend_deg=46.128258214100136,
+            loop_turn_deg=135.8,
+            loop_radius_um=67.07542124780329,
+            return_length_um=3.8964445151458618,
+            loop_width_um=22.043004368112143,
+            stages=1,
+            sides="same",
+            lead_in_um=980.0,
+            lead_out_um=980.0,
+            channel_width_um=22.043004368112143,
+            nose_radius_um=3.86,
+            corner_radius_um=1.224611353784008,
+        )
+    ).outline
+    assert outline is not None
+    assert polygon(outline, sagitta_um=1e-4).is_valid
+
+
 def test_rounding_only_adds_fluid() -> None:
     sharp = build_shape(ChannelParameters(nose_radius_um=0, corner_radius_um=0)).outline
     round_ = build_shape(ChannelParameters(nose_radius_um=20, corner_radius_um=15)).outline

@@ -100,7 +100,10 @@ def dxf_objections(
     drawn = [tags.first(entity, 8) for entity in drawing.entities if entity[0][1].endswith("POLYLINE")]
     if is_nested and [order.index(layer) for layer in drawn] != sorted(order.index(layer) for layer in drawn):
         return ["order of layers"]
-    return _figure_objections(dxf_layers_by_tags(path), is_nested=is_nested) or _extent_objections(path, drawing)
+    found = dxf_layers_by_tags(path)
+    if set(found) != set(layers):
+        return ["layers drawn on"]
+    return _figure_objections(found, is_nested=is_nested) or _extent_objections(path, drawing)
 
 
 def _extent_objections(path: Path, drawing: tags.Drawing) -> list[str]:
@@ -130,5 +133,6 @@ def _ring_objections(rings: list[np.ndarray], is_nested: bool) -> list[str]:
     first, second = shapely.STRtree(lines).query(lines, predicate="intersects")
     if (first != second).any():
         return ["loops touch"]
-    outer, inner = shapely.STRtree(areas).query(areas, predicate="contains")
-    return ["outer loop first"] if (outer < inner).any() else []
+    outer, inner = shapely.STRtree(areas).query(areas, predicate="contains_properly")
+    is_deep = np.isin(outer, inner).any()
+    return ["outer loop first, or too deep"] if is_deep or (outer < inner).any() else []

@@ -1,22 +1,12 @@
-"""Shapes and independent readers shared by the mask tests.
-
-The readers here (klamath, python-gdsii, GDAL, dxfgrabber) share no code with ours.
-"""
+"""Shapes shared by the mask tests, and formulas to measure them by."""
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from math import atan, hypot, sin
 from typing import TYPE_CHECKING
 
-import dxfgrabber
-import klamath.elements
-import klamath.library
 import numpy as np
-import pyogrio.raw
 import shapely
-from gdsii.elements import Boundary, SRef
-from gdsii.library import Library
 
 from core.errors import GeometryError
 from core.geometry.shape import build_shape
@@ -26,7 +16,6 @@ from core.parameters import ChannelParameters
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
-    from pathlib import Path
 
     from core.geometry.contour import Outline
     from core.geometry.shape import ChannelShape
@@ -90,21 +79,6 @@ def random_shapes(count: int, *, seed: int) -> Iterator[ChannelShape]:
             yield shape
 
 
-@dataclass
-class Seen:
-    """What an independent reader saw: figures of the channel and of the islands' layer [um], exact area if known."""
-
-    channel: list[np.ndarray]
-    islands: list[np.ndarray]
-    area_um2: float | None = None
-
-    @property
-    def area(self) -> shapely.Geometry:
-        """All figures put together, islands taken out."""
-        channel = shapely.union_all([shapely.Polygon(ring) for ring in self.channel])
-        return channel.difference(shapely.union_all([shapely.Polygon(ring) for ring in self.islands]))
-
-
 def holes_in(area: shapely.Geometry) -> int:
     """Return the number of holes of an area that must be one piece."""
     if area.geom_type != "Polygon":
@@ -118,79 +92,6 @@ def ideal_area(outline: Outline, sagitta_um: float) -> shapely.Polygon:
     return shapely.Polygon(rings[0], rings[1:])
 
 
-def seen_by_klamath(path: Path, top: str) -> Seen:
-    """Read a GDSII file with klamath and put all references in place."""
-    cells = {}
-    with path.open("rb") as stream:
-        header = klamath.library.FileHeader.read(stream)
-        while (found := klamath.library.try_read_struct(stream)) is not None:
-            cells[found[0].decode()] = found[1]
-    assert header.meters_per_db_unit == 1e-9
-    unit = header.user_units_per_db_unit
-
-    def placed(name: str) -> list[np.ndarray]:
-        rings = []
-        for element in cells[name]:
-            if isinstance(element, klamath.elements.Boundary):
-                rings.append(np.asarray(element.xy[:-1], float))
-            else:
-                assert not element.invert_y
-                assert (element.mag, element.angle_deg, element.colrow) == (1.0, 0.0, None)
-                shift = np.asarray(element.xy[0], float)
-                rings += [ring + shift for ring in placed(element.struct_name.decode())]
-        return rings
-
-    return Seen([ring * unit for ring in placed(top)], [])
-
-
-def seen_by_python_gdsii(path: Path, top: str) -> Seen:
-    """Read a GDSII file with python-gdsii and put all references in place."""
-    with path.open("rb") as stream:
-        library = Library.load(stream)
-    unit = library.logical_unit
-    cells = {cell.name.decode(): list(cell) for cell in library}
-
-    def placed(name: str) -> list[np.ndarray]:
-        rings = []
-        for element in cells[name]:
-            if isinstance(element, Boundary):
-                assert (element.layer, element.data_type) == (1, 0)
-                rings.append(np.asarray(element.xy[:-1], float))
-            else:
-                assert isinstance(element, SRef)
-                assert (element.strans, element.mag, element.angle) == (None, None, None)
-                shift = np.asarray(element.xy[0], float)
-                rings += [ring + shift for ring in placed(element.struct_name.decode())]
-        return rings
-
-    return Seen([ring * unit for ring in placed(top)], [])
-
-
-def seen_by_gdal(path: Path) -> Seen:
-    """Read a DXF file with GDAL, arcs as chords of a tenth of a degree."""
-    pyogrio.set_gdal_config_options({"OGR_ARC_STEPSIZE": "0.1"})
-    options = {"CLOSED_LINE_AS_POLYGON": "YES", "MERGE_BLOCK_GEOMETRIES": "NO"}
-    meta, _, shapes, fields = pyogrio.raw.read(str(path), **options)
-    layers = fields[list(meta["fields"]).index("Layer")]
-    rings: dict[str, list[np.ndarray]] = {"L1_CHAN": [], "L1_ISLE": []}
-    for layer, shape in zip(layers, shapely.from_wkb(shapes), strict=True):
-        assert shape.geom_type == "Polygon"
-        rings[layer].append(np.asarray(shape.exterior.coords)[:-1, :2] * 1000.0)
-    return Seen(rings["L1_CHAN"], rings["L1_ISLE"])
-
-
-def seen_by_dxfgrabber(path: Path) -> Seen:
-    """Read a DXF file with dxfgrabber; areas of arcs by the formula of the circular segment."""
-    rings: dict[str, list[np.ndarray]] = {"L1_CHAN": [], "L1_ISLE": []}
-    area = 0.0
-    for entity in dxfgrabber.readfile(str(path)).entities:
-        assert entity.is_closed
-        corners, bulges = [(p[0] * 1e3, p[1] * 1e3) for p in entity.points], list(entity.bulge)
-        area += (1.0 if entity.layer == "L1_CHAN" else -1.0) * abs(area_with_bulges(corners, bulges))
-        rings[entity.layer].append(np.concatenate(list(_chorded(corners, bulges))))
-    return Seen(rings["L1_CHAN"], rings["L1_ISLE"], area)
-
-
 def area_with_bulges(corners: list[tuple[float, float]], bulges: list[float]) -> float:
     """Return the exact signed area of a ring of lines and arcs."""
     ox, oy = corners[0]
@@ -202,16 +103,3 @@ def area_with_bulges(corners: list[tuple[float, float]], bulges: list[float]) ->
             radius = hypot(x1 - x0, y1 - y0) / (2.0 * sin(abs(theta) / 2.0))
             total += 0.5 * radius**2 * (theta - sin(theta))
     return total
-
-
-def _chorded(corners: list[tuple[float, float]], bulges: list[float]) -> Iterator[np.ndarray]:
-    """Yield the points of each edge without its end, arcs by turning the chord step by step."""
-    for a, b, bulge in zip(corners, corners[1:] + corners[:1], bulges, strict=True):
-        start, end = complex(*a), complex(*b)
-        theta = 4.0 * atan(bulge)
-        count = max(1, int(abs(theta) / 0.002))
-        # equal turns of one small chord: a geometric series that ends exactly at the far end
-        turn = np.exp(1j * theta / count * np.arange(count))
-        steps = (end - start) * turn / turn.sum()
-        points = start + np.concatenate(([0.0], np.cumsum(steps)[:-1]))
-        yield np.column_stack((points.real, points.imag))

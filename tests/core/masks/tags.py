@@ -44,14 +44,16 @@ def tagged(path: Path) -> Drawing:
                 names = [k for k, (code, _) in enumerate(entity) if code == 9]
                 for a, b in zip(names, [*names[1:], len(entity)], strict=True):
                     drawing.header[entity[a][1]] = entity[a + 1 : b]
+        elif kind == "ENDSEC":
+            section = ""
         elif section == "TABLES" and kind == "LAYER":
             drawing.layers.append(first(entity, 2))
         elif section == "BLOCKS" and kind == "BLOCK":
             target = drawing.blocks.setdefault(first(entity, 2), [])
             drawing.block_heads.append(entity)
-        elif section == "BLOCKS" and kind != "ENDBLK" and target is not None and kind != "ENDSEC":
+        elif section == "BLOCKS" and kind != "ENDBLK" and target is not None:
             target.append(entity)
-        elif section == "ENTITIES" and kind != "ENDSEC":
+        elif section == "ENTITIES":
             drawing.entities.append(entity)
     drawing.blocks = {name: found for name, found in drawing.blocks.items() if not name.startswith(("*", "$"))}
     return drawing

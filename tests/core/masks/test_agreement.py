@@ -1,4 +1,4 @@
-"""Files against the design, as four independent readers see them.
+"""Files against the design, as six independent readers see them.
 
 Tolerances: a GDSII file against its nm-rounded source 1e-9 relative; the rounded source against
 the ideal shape 1 nm and half a nanometre times the perimeter; a DXF file keeps full numbers.
@@ -22,17 +22,15 @@ from core.masks.gdsii_cells import gdsii_cells, link_length_um
 from core.masks.mask_set import write_mask_set
 from core.masks.options import MaskOptions
 from core.project.files import read_project
+from tests.core.masks.readers import DXF_READERS, GDSII_READERS, exact_dxf_area_um2
 from tests.core.masks.samples import (
     SETS,
     holes_in,
     ideal_area,
     random_shapes,
-    seen_by_dxfgrabber,
-    seen_by_gdal,
-    seen_by_klamath,
-    seen_by_python_gdsii,
     shape_of,
 )
+from tests.core.masks.truth import covered
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
@@ -40,7 +38,7 @@ if TYPE_CHECKING:
     from core.geometry.shape import ChannelShape
 
 SAMPLES = Path(__file__).parents[3] / "sample_designs"
-TOLERANCE_UM = 0.02
+TOLERANCE_UM, FINE_UM = 0.02, 0.004  # of chords in the file, and of those the design is measured by
 DXF_KINDS = [("R2000", "pieces"), ("R2000", "loops"), ("R12", "pieces"), ("R12", "loops")]
 
 
@@ -53,33 +51,31 @@ def written(
 
 
 def check_gdsii(path: Path, shape: ChannelShape) -> None:
-    fine = ideal_area(shape.outline, TOLERANCE_UM / 20.0)
-    for reader in (seen_by_klamath, seen_by_python_gdsii):
-        seen = reader(path, path.stem)
-        area = seen.area
+    fine = ideal_area(shape.outline, FINE_UM)
+    for reader in GDSII_READERS:
+        rings = reader(path, path.stem)["L1_CHAN"]
+        area = covered({"L1_CHAN": rings})["L1_CHAN"]
         assert holes_in(area) == shape.parameters.stages
-        assert sum(shapely.Polygon(ring).area for ring in seen.channel) == pytest.approx(area.area, rel=1e-9)
+        assert sum(shapely.Polygon(ring).area for ring in rings) == pytest.approx(area.area, rel=1e-9)
         assert area.bounds == pytest.approx(shape.outline.bounds_um, abs=2e-3)
         assert area.area == pytest.approx(shape.outline.area_um2, abs=(TOLERANCE_UM + 1.5e-3) * fine.length)
-        assert area.symmetric_difference(fine).area <= (TOLERANCE_UM + 0.5e-3) * fine.length
+        assert area.symmetric_difference(fine).area <= (TOLERANCE_UM + FINE_UM + 0.5e-3) * fine.length
 
 
 def check_dxf(path: Path, shape: ChannelShape) -> None:
     outline = shape.outline
-    for reader in (seen_by_gdal, seen_by_dxfgrabber):
-        seen = reader(path)
-        area = seen.area
+    assert exact_dxf_area_um2(path) == pytest.approx(outline.area_um2, rel=1e-11)
+    for reader in DXF_READERS:
+        area = covered(reader(path))["L1_CHAN"]
         assert holes_in(area) == shape.parameters.stages
-        # chords of 0.1 degree lose less than 1e-6 of the radius; 0.1 deg is measured at 1.2e-8 of the area
+        # chords of half a degree lose up to 1e-5 of the radius; one degree is measured at 1.2e-6 of the area
         reach = max(map(abs, outline.bounds_um))
-        assert area.bounds == pytest.approx(outline.bounds_um, abs=1e-6 * reach)
-        assert area.area == pytest.approx(outline.area_um2, rel=2e-6)
-        if seen.area_um2 is not None:
-            assert seen.area_um2 == pytest.approx(outline.area_um2, rel=1e-11)
+        assert area.bounds == pytest.approx(outline.bounds_um, abs=1e-5 * reach)
+        assert area.area == pytest.approx(outline.area_um2, rel=2e-5)
 
 
 @pytest.mark.parametrize("name", SETS)
-def test_two_readers_see_the_design_in_gdsii(tmp_path: Path, name: str) -> None:
+def test_three_readers_see_the_design_in_gdsii(tmp_path: Path, name: str) -> None:
     check_gdsii(written(tmp_path, shape_of(name))["gds"], shape_of(name))
 
 
@@ -87,17 +83,17 @@ def test_two_readers_see_the_design_in_gdsii(tmp_path: Path, name: str) -> None:
     ("name", "dxf_version", "islands"),
     [*((name, *DXF_KINDS[0]) for name in SETS), *(("Long turn, blunt", *kind) for kind in DXF_KINDS[1:])],
 )
-def test_two_readers_see_the_design_in_dxf(tmp_path: Path, name: str, dxf_version: str, islands: str) -> None:
+def test_three_readers_see_the_design_in_dxf(tmp_path: Path, name: str, dxf_version: str, islands: str) -> None:
     check_dxf(written(tmp_path, shape_of(name), dxf_version=dxf_version, islands=islands)["dxf"], shape_of(name))
 
 
 @pytest.mark.slow
-@pytest.mark.parametrize("dxf_kind", DXF_KINDS)
 @pytest.mark.parametrize("sample", sorted(SAMPLES.glob("*.sideloop")), ids=lambda path: path.stem)
-def test_every_sample_design(tmp_path: Path, sample: Path, dxf_kind: tuple[str, str]) -> None:
+def test_every_sample_design(tmp_path: Path, sample: Path) -> None:
     for number, parameter_set in enumerate(read_project(sample).sets):
         shape = build_shape(parameter_set.channel)
-        files = written(tmp_path / str(number), shape, dxf_version=dxf_kind[0], islands=dxf_kind[1])
+        version, islands = DXF_KINDS[number % 4]
+        files = written(tmp_path / str(number), shape, dxf_version=version, islands=islands)
         check_gdsii(files["gds"], shape)
         check_dxf(files["dxf"], shape)
 
@@ -107,9 +103,9 @@ def test_there_are_samples() -> None:
 
 
 @pytest.mark.slow
-@pytest.mark.parametrize("part", range(8))
-def test_two_hundred_random_designs(tmp_path: Path, part: int) -> None:
-    for number, shape in enumerate(random_shapes(25, seed=1000 + part)):
+@pytest.mark.parametrize("part", range(4))
+def test_random_designs(tmp_path: Path, part: int) -> None:
+    for number, shape in enumerate(random_shapes(4, seed=1000 + part)):
         files = written(tmp_path, shape, dxf_version=DXF_KINDS[number % 4][0], islands=DXF_KINDS[number % 4][1])
         check_gdsii(files["gds"], shape)
         check_dxf(files["dxf"], shape)
@@ -141,8 +137,8 @@ def test_file_is_the_rounded_source_to_1e_9(tmp_path: Path, name: str) -> None:
     total = sum(piece.area for piece in source)
     cuts = [chord for piece in cut_pieces(shape, link_um=0.0).pieces for chord in piece.exit]
     widest = max((np.hypot(*(chord[1] - chord[0])) for chord in cuts), default=0.0) * 1000.0
-    for reader in (seen_by_klamath, seen_by_python_gdsii):
-        seen = shapely.transform(reader(path, path.stem).area, lambda points: np.rint(points * 1000.0))
+    for reader in GDSII_READERS:
+        seen = shapely.transform(covered(reader(path, path.stem))["L1_CHAN"], lambda points: np.rint(points * 1000.0))
         assert sum(seen.intersection(piece).area for piece in source) == pytest.approx(total, rel=1e-9)
         # what the file holds beyond the pieces are the links: two to a stage, about 1 um long at most
         assert -1e-9 * total <= seen.area - total <= 2 * shape.parameters.stages * 2000.0 * widest + 1e-9 * total

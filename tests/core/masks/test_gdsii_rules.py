@@ -18,6 +18,7 @@ from core.masks.found import found_in_gdsii
 from core.masks.found_areas import FoundAreas
 from core.masks.gdsii_rules import gdsii_problems
 from core.masks.read_gdsii import read_gdsii
+from tests.core.masks.judges import gdsii_objections
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -52,6 +53,9 @@ class Mask:
         if not problems:
             tree = found_in_gdsii(read, blocks=self.blocks)
             problems = FoundAreas(tree, is_nested=False).problems(grain_um=0.0)
+        # a judge that shares nothing with these rules must come to the same verdict
+        objections = gdsii_objections(path, top="TOP", layers=[1], grid_nm=self.grid_nm)
+        assert bool(objections) == bool(problems), objections
         return problems
 
 
@@ -90,6 +94,32 @@ def test_a_broken_figure_is_named(mask: Mask, tmp_path: Path, rule: str) -> None
 def test_199_vertices_are_the_most(mask: Mask, tmp_path: Path) -> None:
     mask.top.add(gdstk.Polygon(wheel(199), layer=1))
     assert mask.problems(tmp_path) == []
+
+
+def test_a_corner_off_the_grid_is_named(mask: Mask, tmp_path: Path) -> None:
+    mask.grid_nm = 5
+    assert mask.problems(tmp_path) == []
+    mask.add((20, 0), (30, 0), (30.002, 10))
+    assert mask.problems(tmp_path) == ["cell PIECE: BOUNDARY with a corner or place off the grid of 5 nm"]
+
+
+def test_a_place_off_the_grid_is_named(mask: Mask, tmp_path: Path) -> None:
+    mask.grid_nm = 5
+    mask.top.add(gdstk.Reference(mask.piece, (50.001, 0)))
+    assert mask.problems(tmp_path) == ["cell TOP: SREF with a corner or place off the grid of 5 nm"]
+
+
+@pytest.mark.parametrize(
+    ("place", "is_bad"),
+    [((10, 0), True), ((15, 5), True), ((20, 0), False), ((20, 10), False)],
+)
+def test_blocks_that_cover_one_another_are_named(
+    mask: Mask, tmp_path: Path, place: tuple[float, float], is_bad: bool
+) -> None:
+    # squares of 10 um at 0 and 10; only edges and corners may be shared
+    mask.blocks = ("TOP", "PIECE")
+    mask.top.add(gdstk.Reference(mask.piece, place))
+    assert mask.problems(tmp_path) == ["block TOP, layer L1_CHAN: PIECE and PIECE overlap"] * is_bad
 
 
 KEYHOLE = [

@@ -19,7 +19,9 @@ from core.masks.options import MaskOptions
 from core.masks.read_dxf import read_dxf
 from core.masks.read_gdsii import read_gdsii
 from core.parameters import ChannelParameters
-from tests.core.masks.samples import SETS, seen_by_dxfgrabber, seen_by_klamath, shape_of
+from tests.core.masks.readers import dxf_layers_by_dxfgrabber, gdsii_layers_by_klamath
+from tests.core.masks.samples import SETS, shape_of
+from tests.core.masks.truth import covered
 
 ROOT = Path(__file__).parents[3]
 PAIR = ["One loop", "Control"]
@@ -51,8 +53,11 @@ def test_all_sets_on_one_mask(tmp_path: Path) -> None:
     assert [file.name for file in report.files] == ["BENCH_7.dxf", "BENCH_7.gds", *WHOLE_SET]
     read = read_gdsii(tmp_path / "BENCH_7.gds")
     assert [element.target for element in read.cells["BENCH_7"]] == ["ONE_LOOP", "CONTROL", "ONE_LOOP_2", "CONTROL_2"]
-    for seen in (seen_by_klamath(tmp_path / "BENCH_7.gds", "BENCH_7"), seen_by_dxfgrabber(tmp_path / "BENCH_7.dxf")):
-        parts = sorted(seen.area.geoms, key=lambda part: -part.bounds[3])
+    for seen in (
+        gdsii_layers_by_klamath(tmp_path / "BENCH_7.gds", "BENCH_7"),
+        dxf_layers_by_dxfgrabber(tmp_path / "BENCH_7.dxf"),
+    ):
+        parts = sorted(covered(seen)["L1_CHAN"].geoms, key=lambda part: -part.bounds[3])
         assert [len(part.interiors) for part in parts] == [1, 0, 1, 0]
         gaps = [above.bounds[1] - below.bounds[3] for above, below in pairwise(parts)]
         assert all(500.0 - 0.05 <= gap <= 501.0 for gap in gaps)
@@ -188,3 +193,10 @@ def test_progress_is_told_and_a_stop_leaves_nothing(tmp_path: Path) -> None:
         write_mask_set([("one", shape), ("two", shape)], folder=tmp_path / "out", chip_name="Chip", report=report)
     assert steps == [(0, 5), (1, 5)]
     assert list(tmp_path.iterdir()) == []
+
+
+def test_a_file_that_shops_find_large_says_so(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr("core.masks.mask_files.LARGE_BYTES", 1000)
+    report = write_mask_set(pair()[:1], folder=tmp_path, chip_name="Bench 7")
+    assert "larger than 50 MB: ask the shop" in report.files[0].proofs[-1]
+    assert "larger than 50 MB" in (tmp_path / "BENCH_7_ORDER.txt").read_text(encoding="utf-8")

@@ -9,8 +9,10 @@ from xml.etree import ElementTree
 import pytest
 
 from core.masks.bare import bare_drawings
+from core.masks.drawing import MaskDrawing
 from core.masks.options import MaskOptions, Tone
 from core.masks.preview import preview_svg, scale_bar_um
+from tests.core.masks.chips import plate, plate_drawing, two_channel_chip
 from tests.core.masks.samples import SETS, drawing_of, shape_of
 
 SVG = "{http://www.w3.org/2000/svg}"
@@ -69,3 +71,41 @@ def test_each_channel_is_drawn_and_the_bar_is_labelled() -> None:
 )
 def test_the_bar_is_round(width: float, bar: float) -> None:
     assert scale_bar_um(width) == pytest.approx(bar)
+
+
+def clear_share(tone: Tone, words: dict[str, str]) -> float:
+    """Return how much of the plate is light in the picture, from fills and areas alone."""
+    root = ElementTree.fromstring(preview_svg(plate_drawing(), tone))
+    (plate,) = (rect for rect in root.findall(f"{SVG}rect") if rect.get("id") == "plate")
+    words["title"] = root.find(f"{SVG}title").text
+    groups = {group.get("id"): group for group in root.iter(f"{SVG}g")}
+
+    def drawn(group: ElementTree.Element) -> float:
+        area = sum(abs(sum(ring_areas(p.get("d")))) for p in group.findall(f"{SVG}path") if p.get("fill") != "none")
+        return area + sum(drawn(groups[use.get("href")[1:]]) for use in group.findall(f"{SVG}use"))
+
+    total = float(plate.get("width")) * float(plate.get("height"))
+    fills = {path.get("fill") for path in root.iter(f"{SVG}path")} - {"none"}
+    lightness = {fill: int(fill[1:3], 16) / 255.0 for fill in (*fills, plate.get("fill"))}
+    assert all(abs(lightness[fill] - lightness[plate.get("fill")]) > 0.5 for fill in fills)  # seen at a glance
+    share = drawn(groups[None]) / total
+    return 1.0 - share if lightness[plate.get("fill")] > 0.5 else share
+
+
+def test_the_tone_is_what_the_picture_shows() -> None:
+    # two words for one plate: what is clear in the one is dark in the other, and both say so
+    words: dict[str, str] = {}
+    clear = clear_share(Tone.CLEAR, words)
+    assert "CLEAR (light here), all else is dark" in words["title"]
+    dark = clear_share(Tone.DARK, words)
+    assert "DARK (dark here), all else is clear" in words["title"]
+    assert clear + dark == pytest.approx(1.0, rel=1e-9)
+    assert 0.001 < clear < 0.5
+    # lines to be cut fill nothing
+    assert clear_share(Tone.CUT, words) == 1.0
+
+
+def test_a_plate_is_drawn_by_use_of_its_chips() -> None:
+    few, many = (plate(two_channel_chip(), columns=n, rows=n) for n in (2, 10))
+    sizes = [len(preview_svg(MaskDrawing(scene, stem="Plate"), Tone.CLEAR)) for scene in (few, many)]
+    assert sizes[1] - sizes[0] < 96 * 60

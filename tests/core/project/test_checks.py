@@ -74,6 +74,19 @@ def test_one_mask_makes_one_depth():
     assert "depths_differ" in codes(project_of(deep, plan=stepped))
 
 
+def test_chips_at_the_ends_of_a_series_are_checked_too():
+    # by hand: 40 um is below the 50 um that a film mask holds, the 100 um of the set and all others are not
+    narrow = WIDE.with_values({"channel_width_um": 100.0, "loop_width_um": 100.0, "depth_um": 60.0})
+    series = (SteppedField(name="channel_width_um", first=100.0, last=40.0, steps=4),)
+    plan = ChipPlan(plate="wafer", chip_width_um=15_000.0, chip_height_um=10_000.0, series=series)
+    found = [each for _, each in order_findings(project_of(narrow, plan=plan)) if each.severity is Severity.ERROR]
+    assert {each.code for each in found} >= {"width_below_min"}
+    assert all(each.message.startswith("on the chip with channel_width_um 40: ") for each in found)
+    assert all((each.x_um, each.cure) == (None, None) for each in found)
+    single = replace(plan, plate="single chip")
+    assert all(each.severity is not Severity.ERROR for _, each in order_findings(project_of(narrow, plan=single)))
+
+
 # --- pressure -------------------------------------------------------------------------------
 
 
