@@ -17,7 +17,7 @@ from core.errors import DesignValueError
 if TYPE_CHECKING:
     from app.document import Document
     from app.settings import Settings
-    from core.chip.plan import SteppedField
+    from core.chip.plan import ChipPlan, SteppedField
     from core.fields import Value
 
 # fields that only mean something for some choices of the plate
@@ -36,6 +36,7 @@ class ChipPanel(FieldColumn):
     def __init__(self, document: Document, settings: Settings) -> None:
         super().__init__(CHIP_FIELDS.values(), document.new_gesture)
         self._document, self._settings = document, settings
+        self._shown: tuple[ChipPlan, ShownUnits, str] | None = None
         self.label_entry = QLineEdit()
         self.label_problem = _small_label("error")
         self.count_label = _small_label("soft")
@@ -66,6 +67,9 @@ class ChipPanel(FieldColumn):
     def refresh(self) -> None:
         """Show what the document holds."""
         plan, units = self._document.plan, ShownUnits.of(self._settings)
+        if (plan, units, self._document.project.name) == self._shown:
+            return
+        self._shown = (plan, units, self._document.project.name)
         self.show_values(plan.as_dict(), units)
         for name, plates in _PLATES_OF_FIELD.items():
             self.editors[name].setVisible(plan.plate in plates)

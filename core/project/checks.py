@@ -6,8 +6,6 @@ import unicodedata
 from dataclasses import replace
 from typing import TYPE_CHECKING
 
-import numpy as np
-
 from core.chip.chip_findings import chip_findings
 from core.chip.plate import distinct_steps, values_of
 from core.errors import CoreError, shown
@@ -15,14 +13,13 @@ from core.fabrication.channel_findings import channel_findings
 from core.fabrication.making import making_of
 from core.findings import Finding, Severity
 from core.geometry.shape import build_shape
-from core.hydraulics.estimate import estimate
 from core.masks.names import safe_name
+from core.project.folds import added_length_um, score_of_made
 from core.project.text import LONGEST_NAME
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
-    from core.parameters import ChannelParameters
     from core.project.chip import ChipProject, ParameterSet
 
 FoundIn = tuple[str, Finding]
@@ -72,7 +69,7 @@ def set_findings(project: ChipProject, chosen: ParameterSet, *, with_cures: bool
     shape = build_shape(chosen.channel)
     if not shape.is_usable:
         return shape.findings
-    pressure_pa, pressure_at = highest_pressure(project, chosen.channel)
+    pressure_pa, pressure_at = highest_pressure(project, chosen)
     found = channel_findings(
         chosen.channel,
         project.process,
@@ -84,33 +81,36 @@ def set_findings(project: ChipProject, chosen: ParameterSet, *, with_cures: bool
     return (*shape.findings, *found)
 
 
-def highest_pressure(project: ChipProject, channel: ChannelParameters) -> tuple[float | None, str]:
+def highest_pressure(project: ChipProject, chosen: ParameterSet) -> tuple[float | None, str]:
     """Return the highest pressure that a channel may have to hold at the operating flow.
 
     Parameters
     ----------
     project : ChipProject
-        Process, operating point and results of flow solves.
-    channel : ChannelParameters
+        Process, operating point, results of flow solves, and how the set is folded on the chip.
+    chosen : ParameterSet
         The channel as wanted.
 
     Returns
     -------
     tuple of (float or None, str)
         The larger of both directions' drops at the upper end of its band [Pa], from a flow solve of what is made if
-        there is one, else from the estimate, None if there is neither; and in words how it was got.
+        there is one, else from the estimate, None if there is neither; and in words how it was got. What folding adds
+        is always estimated.
     """
-    made, operating = making_of(channel, project.process).flow, project.operating
+    made, operating = making_of(chosen.channel, project.process).flow, project.operating
     where = f"at {operating.flow_ul_min:g} uL/min"
-    for result in reversed(project.solved):
-        if result.valid and result.belongs_to(made, operating) and result.highest_pressure_pa is not None:
-            return result.highest_pressure_pa, f"{where}, flow solve with its band"
+    added = added_length_um(project, chosen.name)
     try:
-        flows = np.array([operating.flow_ul_min])
-        score = estimate(made, fluid=operating.fluid_state(), flows_ul_min=flows).score(0)
+        plain = score_of_made(project, chosen.channel).highest_pressure_pa
+        folded = score_of_made(project, chosen.channel, added_um=added).highest_pressure_pa if added else plain
     except CoreError:  # no such fluid, or what is made has no shape: told elsewhere
         return None, ""
-    return score.highest_pressure_pa, f"{where}, estimate with its band"
+    with_bends = ", with the bends of its rows" if added else ""
+    for result in reversed(project.solved):
+        if result.valid and result.belongs_to(made, operating) and result.highest_pressure_pa is not None:
+            return result.highest_pressure_pa + folded - plain, f"{where}, flow solve with its band{with_bends}"
+    return folded, f"{where}, estimate with its band{with_bends}"
 
 
 def placed_sets(project: ChipProject) -> tuple[ParameterSet, ...]:

@@ -15,6 +15,7 @@ from core.masks.mask_set import write_scene
 from core.masks.options import options_of
 from core.masks.order_facts import SheetFacts, process_facts
 from core.project.checks import errors_in, held_name, order_findings, placed_sets
+from core.project.folds import fold_notes
 
 if TYPE_CHECKING:
     import os
@@ -150,7 +151,7 @@ def order_facts(
         author=project.author,
         date=date.isoformat(),
         cautions=cautions_of(project.process.kind),
-        notes=(*_making_notes(project), *_name_notes(project)),
+        notes=(*_making_notes(project), *fold_notes(project), *_name_notes(project)),
         forced=(*map(_told, forced), *missing),
         **process_facts(project.process),  # type: ignore[arg-type]
     )

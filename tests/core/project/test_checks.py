@@ -20,6 +20,7 @@ from core.operating import OperatingPoint
 from core.parameters import ChannelParameters
 from core.project import ChipProject, ParameterSet, SolvedResult
 from core.project.checks import errors_in, held_name, highest_pressure, order_findings, placed_sets
+from core.project.folds import added_length_um, fold_notes, score_of_made
 
 WIDE = ChannelParameters(stages=2)
 IMPOSSIBLE = ChannelParameters(loop_radius_um=10.0)
@@ -98,7 +99,7 @@ def test_the_pressure_is_that_of_what_is_made_in_the_worse_direction_with_its_ba
     flows = np.array([project.operating.flow_ul_min])
     score = estimate(made, fluid=project.operating.fluid_state(), flows_ul_min=flows).score(0)
     worst_pa = max(score.forward_pressure_pa, score.reverse_pressure_pa)
-    pressure_pa, words = highest_pressure(project, channel)
+    pressure_pa, words = highest_pressure(project, project.sets[0])
     assert made != channel
     assert pressure_pa == pytest.approx(worst_pa * (1 + score.error_band_percent / 100), rel=1e-12)
     assert words == "at 1200 uL/min, estimate with its band"
@@ -111,7 +112,10 @@ def solved(channel: ChannelParameters, **values: object) -> SolvedResult:
 
 def test_a_fresh_flow_solve_comes_before_the_estimate():
     project = replace(project_of(WIDE), solved=(solved(making_of(WIDE, project_of(WIDE).process).flow),))
-    assert highest_pressure(project, WIDE) == (pytest.approx(1.03e5), "at 1200 uL/min, flow solve with its band")
+    assert highest_pressure(project, project.sets[0]) == (
+        pytest.approx(1.03e5),
+        "at 1200 uL/min, flow solve with its band",
+    )
     assert codes(project, "a")  # 103 kPa is above the half of 200 kPa
 
 
@@ -127,13 +131,34 @@ def test_a_fresh_flow_solve_comes_before_the_estimate():
 def test_a_stale_or_doubtful_solve_does_not_count(values, operating):
     result = replace(solved(WIDE), **values)
     project = replace(project_of(WIDE), solved=(result,), operating=operating)
-    assert highest_pressure(project, WIDE)[1].endswith("estimate with its band")
+    assert highest_pressure(project, project.sets[0])[1].endswith("estimate with its band")
 
 
 def test_without_a_fluid_there_is_no_pressure():
     project = project_of(WIDE, operating=OperatingPoint(fluid="ethanol", temperature_c=95.0))
-    assert highest_pressure(project, WIDE) == (None, "")
+    assert highest_pressure(project, project.sets[0]) == (None, "")
     assert order_findings(project) == ()
+
+
+def test_folding_adds_its_plain_channel_to_the_pressure_and_tells_so():
+    """Truth: the duct resistance of the added length, by hand, which a longer lead must add to either direction."""
+    channel = ChannelParameters(stages=12)
+    plan = ChipPlan(channels=(ChipChannel(set_name="a", rows=3),), chip_width_um=60000.0, chip_height_um=60000.0)
+    straight, folded = project_of(channel), project_of(channel, plan=plan)
+    added_um = added_length_um(folded, "a")
+    assert added_um > 0.0
+    assert added_length_um(straight, "a") == 0.0
+    width_m = depth_m = 200e-6
+    fluid, flow_m3_s = folded.operating.fluid_state(), folded.operating.flow_ul_min * 1e-9 / 60.0
+    duct_pa = 28.454 * fluid.viscosity_pa_s * added_um * 1e-6 * flow_m3_s / (width_m * depth_m**3)
+    plain, longer = (score_of_made(folded, channel, added_um=length) for length in (0.0, added_um))
+    assert longer.forward_pressure_pa - plain.forward_pressure_pa == pytest.approx(duct_pa, rel=2e-3)
+    assert longer.reverse_pressure_pa - plain.reverse_pressure_pa == pytest.approx(duct_pa, rel=2e-3)
+    pressure_pa, words = highest_pressure(folded, folded.sets[0])
+    assert pressure_pa > highest_pressure(straight, straight.sets[0])[0] + duct_pa
+    assert words.endswith("with the bends of its rows")
+    assert "is folded" in fold_notes(folded)[0]
+    assert fold_notes(straight) == ()
 
 
 # --- names ----------------------------------------------------------------------------------
