@@ -15,7 +15,7 @@ from core.errors import CoreError
 from core.fabrication.channel_findings import channel_findings
 from core.fabrication.making import Making, making_of
 from core.findings import Severity
-from core.geometry.shape import ChannelShape, build_shape
+from core.geometry.shape import build_shape
 from core.hydraulics.estimate import Estimate, Score, estimate
 
 if TYPE_CHECKING:
@@ -66,12 +66,6 @@ class Assessment:
 
 
 @lru_cache(maxsize=_KEPT)
-def shape_of(channel: ChannelParameters) -> ChannelShape:
-    """Return the shape of a parameter set."""
-    return build_shape(channel)
-
-
-@lru_cache(maxsize=_KEPT)
 def making_by(channel: ChannelParameters, process: Process) -> Making:
     """Return what a process makes of a parameter set."""
     return making_of(channel, process)
@@ -116,10 +110,10 @@ def score_of(channel: ChannelParameters, process: Process, operating: OperatingP
 
 def _obstacle(channel: ChannelParameters, making: Making) -> str:
     """Return why there is nothing to score: no shape is wanted, drawn or made; empty when there is."""
-    if not shape_of(channel).is_usable:
+    if not build_shape(channel).is_usable:
         return BLOCKED
     is_made = not any(finding.severity is Severity.ERROR for finding in making.findings)
-    return "" if is_made and shape_of(making.made).is_usable else NOT_MADE
+    return "" if is_made and build_shape(making.made).is_usable else NOT_MADE
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -159,7 +153,7 @@ def cured_findings_of(checked: Checked, on_try: Callable[[], object]) -> tuple[F
 
 
 def _findings(checked: Checked, *, with_cures: bool, on_try: Callable[[], object] | None = None) -> tuple[Finding, ...]:
-    shape = shape_of(checked.channel)
+    shape = build_shape(checked.channel)
     if not shape.is_usable:
         return shape.findings
     of_process = channel_findings(
@@ -167,7 +161,6 @@ def _findings(checked: Checked, *, with_cures: bool, on_try: Callable[[], object
         checked.process,
         pressure_pa=checked.pressure_pa,
         pressure_at=checked.pressure_at,
-        shape=shape,
         with_cures=with_cures,
         on_try=on_try,
     )

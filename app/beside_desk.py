@@ -6,8 +6,8 @@ from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QObject
 
-from app.assessment import shape_of
 from app.drawing.beside import Walls
+from core.geometry.shape import build_shape
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -50,7 +50,7 @@ class BesideDesk(QObject):
         channels = {Walls.DRAWN: making.drawn, Walls.MADE: making.made}
         self._drawing.show_beside(
             {
-                walls: shape_of(channels[walls])
+                walls: build_shape(channels[walls])
                 for walls, switch in self._switches.items()
                 if switch.isChecked() and channels[walls] != making.wanted
             }

@@ -6,7 +6,8 @@ from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QObject, Signal
 
-from app.assessment import Assessment, assessment_of, curve_top_ul_min, shape_of
+from app.assessment import Assessment, assessment_of, curve_top_ul_min
+from core.geometry.shape import build_shape
 
 if TYPE_CHECKING:
     from app.undo import Held
@@ -41,7 +42,7 @@ class InHand(QObject):
         project, index = held.project, held.index
         if not self.is_curve_held:
             self._curve_top_ul_min = curve_top_ul_min(project.operating.flow_ul_min)
-        shape, assessment = shape_of(project.sets[index].channel), self.assessment_of(project, index)
+        shape, assessment = build_shape(project.sets[index].channel), self.assessment_of(project, index)
         is_new_shape, is_new_assessment = shape is not self.shape, assessment is not self.assessment
         self.shape, self.assessment = shape, assessment
         if shape.is_usable:

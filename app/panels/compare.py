@@ -15,10 +15,11 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.assessment import score_of, shape_of
+from app.assessment import score_of
 from app.drawing.thumbnail import set_thumbnail
 from app.look import SPACING, font
 from app.shown_values import DIFFERENT, ShownUnits, diodicity_text, number_text, value_text
+from core.geometry.shape import build_shape
 from core.parameters import CHANNEL_FIELDS
 
 if TYPE_CHECKING:
@@ -130,7 +131,7 @@ class ComparePanel(QWidget):
             item.setData(
                 Qt.ItemDataRole.DecorationRole,
                 set_thumbnail(
-                    shape_of(each.channel),
+                    build_shape(each.channel),
                     width_px=_PICTURE.width(),
                     height_px=_PICTURE.height(),
                     palette=self._palette,

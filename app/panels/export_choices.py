@@ -20,11 +20,11 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.assessment import shape_of
 from app.look import SPACING, font, set_role
 from app.panels.export_work import ExportTask, What
 from app.shown_values import entry_text
 from core.errors import CoreError, ExportError
+from core.geometry.shape import build_shape
 from core.masks.options import MASK_FIELDS, MaskOptions
 from core.units import unit_symbol
 
@@ -82,7 +82,7 @@ class ExportChoices(QWidget):
         rows.setMinimumHeight(80)
         for index, each in enumerate(self._project.sets):
             item = QListWidgetItem(each.name, rows)
-            if shape_of(each.channel).is_usable:
+            if build_shape(each.channel).is_usable:
                 item.setFlags(
                     Qt.ItemFlag.ItemIsEnabled | Qt.ItemFlag.ItemIsUserCheckable | Qt.ItemFlag.ItemIsSelectable
                 )

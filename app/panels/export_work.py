@@ -6,8 +6,8 @@ from dataclasses import dataclass
 from enum import StrEnum
 from typing import TYPE_CHECKING
 
-from app.assessment import shape_of
 from core.errors import CoreError
+from core.geometry.shape import build_shape
 from core.masks.mask_set import mask_summary, scene_summary, write_mask_set
 from core.masks.options import options_of
 from core.project.checks import errors_in, order_findings
@@ -108,7 +108,7 @@ def prospect_of(task: ExportTask, *, day: Date, report: Report | None = None) ->
     project = task.project
     try:
         if task.what is What.BARE:
-            shapes = [(each.name, shape_of(each.channel)) for each in task.sets]
+            shapes = [(each.name, build_shape(each.channel)) for each in task.sets]
             return Prospect(sentences=mask_summary(shapes, task.options(), chip_name=project.name).sentences)
         findings = order_findings(project)
     except CoreError as error:
@@ -148,5 +148,5 @@ def written(task: ExportTask, *, folder: Path, day: Date, is_forced: bool, repor
     named = []
     for step, each in enumerate(task.sets):
         report(step, len(task.sets), f"Drawing {each.name}")
-        named.append((each.name, shape_of(each.channel)))
+        named.append((each.name, build_shape(each.channel)))
     return write_mask_set(named, folder=folder, chip_name=task.project.name, options=task.options(), report=report)

@@ -6,10 +6,11 @@ from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QAbstractListModel, QModelIndex, QPersistentModelIndex, Qt, QTimer, Signal
 
-from app.assessment import score_of, shape_of
+from app.assessment import score_of
 from app.drawing.thumbnail import set_thumbnail
 from app.shown_values import diodicity_text
 from core.errors import DesignValueError
+from core.geometry.shape import build_shape
 
 if TYPE_CHECKING:
     from PySide6.QtGui import QPixmap
@@ -130,7 +131,7 @@ class SetsModel(QAbstractListModel):
             if len(self._pictures) > 4 * len(self._rows):
                 self._pictures.clear()
             self._pictures[each.channel] = set_thumbnail(
-                shape_of(each.channel),
+                build_shape(each.channel),
                 width_px=THUMBNAIL_WIDTH_PX,
                 height_px=THUMBNAIL_HEIGHT_PX,
                 palette=self._palette,

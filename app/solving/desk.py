@@ -7,7 +7,6 @@ from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QObject
 
-from app.assessment import shape_of
 from app.background import Ending
 from app.drawing.flow_overlay import FlowOverlay, Shown
 from app.panels.solve import SolvePanel, Standing
@@ -18,6 +17,7 @@ from app.solving.pictures import write_picture
 from app.solving.process import COMMAND, SolveProcess
 from app.solving.protocol import SolveRequest
 from core.flow.channel_places import curve_flows_ul_min, streamline_seeds_um
+from core.geometry.shape import build_shape
 from core.units import unit_symbol
 
 if TYPE_CHECKING:
@@ -224,7 +224,7 @@ class SolveDesk(QObject):
             self._shown_field = field
             self.overlay.set_field(
                 field,
-                seeds_um=streamline_seeds_um(shape_of(solved), is_forward=panel.is_forward),
+                seeds_um=streamline_seeds_um(build_shape(solved), is_forward=panel.is_forward),
                 cell_um=solved.channel_width_um / _CELLS_PER_WIDTH,
                 caption=f"{direction} flow",
             )

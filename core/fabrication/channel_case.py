@@ -40,22 +40,16 @@ class ChannelCase:
         Largest pressure in the channel, if known [Pa].
     pressure_at : str
         In words, when that pressure is there.
-    known_shape : ChannelShape or None
-        Shape of the design, where it was built before.
     """
 
     wanted: ChannelParameters
     process: Process
     pressure_pa: float | None = None
     pressure_at: str = ""
-    known_shape: ChannelShape | None = None
 
     def with_value(self, field: str, value: Value) -> ChannelCase:
         """Return the case of the same channel with one field changed."""
-        shape = None
-        if field == "depth_um" and self.known_shape is not None:
-            shape = self.known_shape  # the depth is not in the drawing
-        return replace(self, wanted=self.wanted.with_values({field: value}), known_shape=shape)
+        return replace(self, wanted=self.wanted.with_values({field: value}))
 
     @property
     def widths(self) -> tuple[str, ...]:
@@ -75,19 +69,16 @@ class ChannelCase:
     @cached_property
     def shape(self) -> ChannelShape:
         """The design as wanted."""
-        return self.known_shape or build_shape(self.wanted)
+        return build_shape(self.wanted)
 
     @cached_property
     def made_shape(self) -> ChannelShape:
         """As made."""
-        return self.shape if self.making.made == self.wanted else build_shape(self.making.made)
+        return build_shape(self.making.made)
 
     @cached_property
     def drawn_shape(self) -> ChannelShape:
         """As drawn."""
-        for known, shape in ((self.wanted, self.shape), (self.making.made, self.made_shape)):
-            if self.making.drawn == known:
-                return shape
         return build_shape(self.making.drawn)
 
     @property

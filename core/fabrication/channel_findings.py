@@ -15,7 +15,6 @@ if TYPE_CHECKING:
     from core.fabrication.objection import Objection
     from core.fabrication.process import Process
     from core.findings import Finding
-    from core.geometry.shape import ChannelShape
     from core.parameters import ChannelParameters
 
 
@@ -25,7 +24,6 @@ def channel_findings(
     *,
     pressure_pa: float | None = None,
     pressure_at: str = "",
-    shape: ChannelShape | None = None,
     with_cures: bool = True,
     on_try: Callable[[], object] | None = None,
 ) -> tuple[Finding, ...]:
@@ -41,8 +39,6 @@ def channel_findings(
         Largest pressure in the channel [Pa]; without it the bond is not checked.
     pressure_at : str
         In words, when that pressure is there ("at 50 uL/min").
-    shape : ChannelShape, optional
-        Shape of the design if it was built before: saves building it again.
     with_cures : bool
         False: leave out the search for cures, which draws the channel anew for every value tried.
     on_try : callable, optional
@@ -60,7 +56,7 @@ def channel_findings(
     scaling. Nothing is found fault with that misses its limit by 1 nm or less. Roofs are judged by the widths of
     bypass and loop, as the usual rules are: the open places where they meet are wider.
     """
-    case = ChannelCase(channel, process, pressure_pa, pressure_at, shape)
+    case = ChannelCase(channel, process, pressure_pa, pressure_at)
     cures = Cures(case, on_try)
     findings: list[Finding] = []
     for check in CHECKS:

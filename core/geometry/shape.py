@@ -7,7 +7,7 @@ solved, checked and written to masks.
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
-from functools import cached_property
+from functools import cached_property, lru_cache
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -61,8 +61,9 @@ class ChannelShape:
         return build_centreline(p if stage_measures(p).is_possible else replace(p, stages=0))
 
 
+@lru_cache(maxsize=256)
 def build_shape(parameters: ChannelParameters) -> ChannelShape:
-    """Return the shape of a channel.
+    """Return the shape of a channel; the latest are kept, since drawing is what most answers wait for.
 
     Parameters
     ----------

@@ -75,7 +75,6 @@ def set_findings(project: ChipProject, chosen: ParameterSet, *, with_cures: bool
         project.process,
         pressure_pa=pressure_pa,
         pressure_at=pressure_at,
-        shape=shape,
         with_cures=with_cures,
     )
     return (*shape.findings, *found)

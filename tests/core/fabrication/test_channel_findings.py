@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import time
 from dataclasses import replace
 
 import numpy as np
@@ -280,17 +279,3 @@ def test_cures_for_a_gap() -> None:
     name, value = finding.cure
     cured = replace(channel, **{name: value})
     assert 0.0 <= gap_of(cured) - process.min_gap_um + 1e-3 < 8.0  # near, but found by few trials
-
-
-@pytest.mark.benchmark
-@pytest.mark.parametrize("stages", [1, 4, 100])
-def test_findings_follow_a_slider(stages: int) -> None:
-    channel, process = ChannelParameters(stages=stages), shipped_process(ProcessKind.CAST_FILM)
-    shape = build_shape(channel)
-    times = []
-    for _ in range(20):
-        start = time.process_time()
-        channel_findings(channel, process, shape=shape, with_cures=False)
-        times.append(time.process_time() - start)
-    print(f"findings of {stages} stages: {1e3 * np.median(times):.1f} ms of processor time")
-    assert np.median(times) < 0.02  # common practice, no source: a fifth of what feels immediate

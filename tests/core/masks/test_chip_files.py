@@ -42,8 +42,14 @@ def written(scene: Scene, folder: Path, options: MaskOptions) -> MaskSetReport:
     return write_scene(scene, folder=folder, stem="Bench 7 A", options=options, facts=FACTS)
 
 
-@pytest.mark.parametrize("plate_words", ["single chip", pytest.param("wafer", marks=pytest.mark.slow)])
-@pytest.mark.parametrize("kind", ProcessKind)
+@pytest.mark.parametrize(
+    ("kind", "plate_words"),
+    [
+        *((kind, "single chip") for kind in ProcessKind),
+        pytest.param(ProcessKind.CAST_CHROME, "wafer", marks=pytest.mark.slow),
+        pytest.param(ProcessKind.LASER_ACRYLIC, "plate", marks=pytest.mark.slow),
+    ],
+)
 def test_a_chip_made_as_each_process_wants_it(tmp_path: Path, kind: ProcessKind, plate_words: str) -> None:
     process = shipped_process(kind)
     channels = {"Main": ChannelParameters(stages=2, **WIDE), "Control": ChannelParameters(stages=0, **WIDE)}
@@ -66,7 +72,7 @@ def test_a_chip_made_as_each_process_wants_it(tmp_path: Path, kind: ProcessKind,
 )
 def test_a_plate_in_every_way_of_writing(tmp_path: Path, options: dict[str, object]) -> None:
     chosen = MaskOptions(**options)
-    scene = plate(two_channel_chip())
+    scene = plate(two_channel_chip(), rows=1)
     report = written(scene, tmp_path, chosen)
     assert check_files(report, scene, chosen) == 2
     summary = scene_summary(scene, stem="Bench 7 A", options=chosen)
