@@ -14,15 +14,14 @@ from typing import IO, TYPE_CHECKING, NoReturn
 from app.solving.fields import save_fields
 from app.solving.protocol import STOP, Kind, SolveRequest, kept_numbers
 from core.errors import CoreError
-from core.flow.channel import solve_channel
+from core.flow.channel import channel_answers
 from core.flow.newton import FlowStopped
 
 if TYPE_CHECKING:
     from core.flow.channel_result import ChannelFlow
 
 _LEAST_PAUSE_S = 0.05  # between two lines of progress
-_EFFORT = {"coarse": 1.0, "normal": 5.0, "fine": 15.0}  # of the qualities, against one another
-_STEPS = 1000
+_PROCESSES = 2  # forward and reverse side by side, where that pays
 _KINDER_BY = 5  # of the machine's priority: the window comes first
 
 
@@ -41,8 +40,6 @@ class Child:
         self._request, self._out = request, out
         self._stop = threading.Event()
         self._told_at = 0.0
-        efforts = [_EFFORT.get(quality, 1.0) for quality in request.qualities]
-        self._shares = [effort / sum(efforts) for effort in efforts]
 
     def ask_to_stop(self) -> None:
         """Let the solve end at its next step."""
@@ -63,20 +60,18 @@ class Child:
             self._tell(Kind.FAILED, text=f"the flow solve met an error of its own ({type(error).__name__}: {error})")
 
     def _solve(self) -> None:
-        request, stages = self._request, None
-        fluid = request.operating.fluid_state()
-        for number, quality in enumerate(request.qualities):
-            found = solve_channel(
-                request.channel,
-                fluid=fluid,
-                flows_ul_min=request.flows_ul_min,
-                quality=quality,
-                report=lambda step, total, text, number=number: self._report(number, step, total, text),  # type: ignore[misc]
-                should_stop=self._stop.is_set,
-                solved_stages=stages,
-                check_steady=number > 0,
-            )
-            stages = found.solved_stages
+        request = self._request
+        answers = channel_answers(
+            request.channel,
+            fluid=request.operating.fluid_state(),
+            flows_ul_min=request.flows_ul_min,
+            qualities=request.qualities,
+            report=self._report,
+            should_stop=self._stop.is_set,
+            steady_for=request.qualities[1:],
+            processes=_PROCESSES,
+        )
+        for quality, found in zip(request.qualities, answers, strict=True):
             self._tell(
                 Kind.ANSWER,
                 quality=quality,
@@ -97,14 +92,12 @@ class Child:
             return ""
         return str(path)
 
-    def _report(self, number: int, step: int, total: int, text: str) -> None:
+    def _report(self, step: int, total: int, text: str) -> None:
         now = time.monotonic()
         if now - self._told_at < _LEAST_PAUSE_S:
             return
         self._told_at = now
-        done = sum(self._shares[:number]) + self._shares[number] * step / max(total, 1)
-        quality = self._request.qualities[number]
-        self._tell(Kind.PROGRESS, step=round(_STEPS * done), total=_STEPS, text=f"{quality} answer: {text}")
+        self._tell(Kind.PROGRESS, step=step, total=total, text=text)
 
     def _tell(self, kind: Kind, **content: object) -> None:
         self._out.write(json.dumps({"kind": kind, **content}) + "\n")

@@ -40,7 +40,7 @@ def closing(monkeypatch, error) -> dict:
     def fail(*_arguments, **_settings):
         raise error
 
-    monkeypatch.setattr(job, "solve_channel", fail)
+    monkeypatch.setattr(job, "channel_answers", fail)
     out = io.StringIO()
     Child(REQUEST, out).run()
     (line,) = said(out)
