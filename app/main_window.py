@@ -211,9 +211,7 @@ class MainWindow(QMainWindow):
         self.parts.drawing.show_shape(shape, last_good=last_good, keeps_findings=shape.is_usable)
 
     def _show_assessment(self, assessment: Assessment) -> None:
-        score = assessment.score
-        shares = (None, None) if score is None else (score.loop_share_forward, score.loop_share_reverse)
-        self.parts.drawing.show_shares(*shares)
+        self.parts.drawing.show_shares(None if assessment.score is None else assessment.score.shares_of)
 
     def _show_units(self) -> None:
         units = ShownUnits.of(self.settings)

@@ -8,7 +8,7 @@ Use::
     view.show_shape(shape, last_good=usable)     # when ``shape`` has no outline
     view.fit(animated=False)                     # when another parameter set is chosen
     view.highlight_field("loop_radius_um")       # while its slider is handled; None afterwards
-    view.show_shares(0.23, 0.61)                 # loop shares, forward and reverse; None hides them
+    view.show_shares(lambda stage: (0.23, 0.61)) # loop shares of a stage, forward and reverse; None hides them
     view.show_findings(findings)                 # other findings than those of the shape
     view.show_beside({Walls.MADE: made})         # other walls; an empty mapping hides them
 
@@ -38,7 +38,7 @@ from app.drawing.picture import Picture
 from app.drawing.zoom_area import ZoomArea
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping
+    from collections.abc import Callable, Mapping
 
     from PySide6.QtGui import QHelpEvent, QKeyEvent, QPaintEvent
 
@@ -114,15 +114,16 @@ class ChannelView(ZoomArea):
             self._picture.field = name
             self.update()
 
-    def show_shares(self, forward: float | None, reverse: float | None) -> None:
+    def show_shares(self, shares: Callable[[int], tuple[float, float] | None] | None) -> None:
         """Label loop and bypass with their shares of the flow, both ways.
 
         Parameters
         ----------
-        forward, reverse : float or None
-            Loop share, 0 to 1; None hides the labels.
+        shares : callable or None
+            Given a stage, counted from 0 in the reverse flow, returns its loop shares forward and reverse, 0 to 1.
+            None hides the labels.
         """
-        self._picture.shares = None if forward is None or reverse is None else (forward, reverse)
+        self._picture.shares = shares
         self.update()
 
     def use_overlay(self, overlay: FlowOverlay) -> None:

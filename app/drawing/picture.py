@@ -18,6 +18,8 @@ from app.look import LIGHT, SPACING, Palette, font
 from core.parameters import CHANNEL_FIELDS
 
 if TYPE_CHECKING:
+    from collections.abc import Callable
+
     from app.drawing.camera import Camera
     from app.drawing.flow_overlay import FlowOverlay
     from app.drawing.labels import Line
@@ -41,8 +43,8 @@ class Picture:
         The findings, and which of them is picked.
     beside : Beside
         The walls on the mask and those that come out.
-    shares : tuple of two float, or None
-        Loop shares forward and reverse, 0 to 1, to be written beside loop and bypass.
+    shares : callable or None
+        Gives the loop shares of a stage, forward and reverse, 0 to 1, to be written beside loop and bypass.
     has_centrelines, has_dimensions : bool
         What else is drawn.
     overlay : FlowOverlay or None
@@ -56,7 +58,7 @@ class Picture:
         self.field: str | None = None
         self.marks = FindingMarks()
         self.beside = Beside()
-        self.shares: tuple[float, float] | None = None
+        self.shares: Callable[[int], tuple[float, float] | None] | None = None
         self.has_centrelines = False
         self.has_dimensions = True
         self.overlay: FlowOverlay | None = None
@@ -206,7 +208,7 @@ class Picture:
         wanted = [d for d in self._dimensions[1] if self.has_dimensions or d.field == self.field]
         walls = _lines_around(shape, stage, camera)
         placed = place_dimensions(wanted, camera=camera, area=area, taken=taken, walls=walls, handled=self.field)
-        if self.shares is not None and shape.centreline.stages:
+        if shape.centreline.stages:
             self._paint_shares(painter, area, camera, shape, stage, taken, walls)
         draw_dimensions(painter, placed, self.palette)
 
@@ -214,11 +216,13 @@ class Picture:
         self, painter: QPainter, area: QRectF, camera: Camera, shape: ChannelShape, stage: int,
         taken: list[QRectF], walls: list[Line],
     ) -> None:  # fmt: skip
-        assert self.shares is not None
+        shares = None if self.shares is None else self.shares(stage)
+        if shares is None:
+            return
         place = shape.centreline.stages[stage]
         if signs.length_px(camera.to_px(place.fork_um), camera.to_px(place.mouth_um)) < layers.SHARES_ROOM_PX:
             return
-        forward, reverse = self.shares
+        forward, reverse = shares
         for name, section_um, in_forward, in_reverse in (
             ("loop", place.loop_section_um, forward, reverse),
             ("bypass", place.bypass_section_um[::-1], 1.0 - forward, 1.0 - reverse),

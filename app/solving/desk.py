@@ -163,8 +163,8 @@ class SolveDesk(QObject):
         self._show_figures(current)
         score = document.assessment.score
         for each in (current, score):
-            if each is not None and each.loop_share_forward is not None and each.loop_share_reverse is not None:
-                self._parts.drawing.show_shares(each.loop_share_forward, each.loop_share_reverse)
+            if each is not None and each.shares_of(0) is not None:
+                self._parts.drawing.show_shares(each.shares_of)
                 break
         along = store.along(document.making.flow, document.operating)
         points = [each for each in along if each.diodicity is not None]

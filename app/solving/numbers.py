@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 
 from core.operating import OPERATING_FIELDS
 from core.parameters import CHANNEL_FIELDS
+from core.project.solved import LISTS
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -39,12 +40,20 @@ def write_numbers(results: Sequence[SolvedResult], path: Path) -> None:
     try:
         with path.open("w", encoding="utf-8", newline="") as file:
             table = csv.writer(file)
-            table.writerow(["set_name", *_NUMBERS, *_CONDITIONS, *CHANNEL_FIELDS, "notes"])
+            table.writerow(["set_name", *_NUMBERS, *LISTS, *_CONDITIONS, *CHANNEL_FIELDS, "notes"])
             for each in results:
                 numbers = [getattr(each, name) for name in _NUMBERS]
+                stages = ["; ".join(f"{value:.6g}" for value in getattr(each, name)) for name in LISTS]
                 conditions = [getattr(each.operating, name) for name in _CONDITIONS]
                 table.writerow(
-                    [each.set_name, *numbers, *conditions, *each.channel.as_dict().values(), "; ".join(each.notes)]
+                    [
+                        each.set_name,
+                        *numbers,
+                        *stages,
+                        *conditions,
+                        *each.channel.as_dict().values(),
+                        "; ".join(each.notes),
+                    ]
                 )
     except OSError:
         path.unlink(missing_ok=True)

@@ -13,7 +13,7 @@ from typing import TYPE_CHECKING
 
 from core.operating import OperatingPoint
 from core.parameters import ChannelParameters
-from core.project.solved import SolvedResult
+from core.project.solved import LISTS, SolvedResult
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -106,6 +106,7 @@ def kept_numbers(point: FlowPoint) -> dict[str, object]:
         "reverse_pressure_pa": point.reverse_pressure_pa,
         "loop_share_forward": point.loop_share_forward,
         "loop_share_reverse": point.loop_share_reverse,
+        **{name: list(getattr(point, name)) for name in LISTS},
         "error_band_percent": point.error_band_percent,
         "diodicity_band": point.diodicity_band,
         "reached_reynolds": min(point.reached_reynolds_forward, point.reached_reynolds_reverse),

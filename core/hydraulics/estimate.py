@@ -73,6 +73,10 @@ class Score:
         """The larger of both drops at the upper end of its error band: what the chip may have to hold [Pa]."""
         return max(self.forward_pressure_pa, self.reverse_pressure_pa) * (1.0 + self.error_band_percent / 100.0)
 
+    def shares_of(self, _stage: int) -> tuple[float, float]:
+        """Return the loop shares, forward and reverse, of a stage: to the estimate all are alike."""
+        return self.loop_share_forward, self.loop_share_reverse
+
     def as_dict(self) -> dict[str, object]:
         """Return the score with the keys used in machine-readable output."""
         return {**asdict(self), "notes": list(self.notes)}

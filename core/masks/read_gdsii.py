@@ -127,19 +127,6 @@ class ReadGdsii:
             return level
         return max((self.depth(target, level + 1) for target in self.targets(name)), default=level)
 
-    def figures(self, name: str, level: int = 1) -> list[Whole]:
-        """Return all polygons below a cell with their shifts, closing vertex removed [nm]."""
-        found: list[Whole] = []
-        if level > DEEPEST:
-            return found
-        for element in self.cells.get(name, ()):
-            if element.kind == "BOUNDARY":
-                found.append(element.points_nm[:-1])
-            elif element.kind == "SREF" and len(element.points_nm):
-                inner = self.figures(element.target, level + 1)
-                found += [ring + element.points_nm[0] for ring in inner]
-        return found
-
 
 def read_gdsii(path: Path) -> ReadGdsii:
     """Read a GDSII file.

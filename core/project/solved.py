@@ -7,6 +7,7 @@ from dataclasses import dataclass, fields
 from typing import TYPE_CHECKING
 
 from core.errors import DesignValueError
+from core.parameters import CHANNEL_FIELDS
 from core.project.text import checked_line, checked_name
 
 if TYPE_CHECKING:
@@ -39,6 +40,10 @@ class SolvedResult:
         Pressure drops [Pa]; None where no steady flow was found.
     loop_share_forward, loop_share_reverse : float or None
         Mean part of the flow in the loops.
+    loop_shares_forward, loop_shares_reverse : tuple of float
+        The same stage by stage, in the order of the reverse flow.
+    stage_drops_forward_pa, stage_drops_reverse_pa : tuple of float
+        Pressure drops from one stage to the next, in the same order [Pa].
     error_band_percent : float or None
         Error to be expected of either drop [%].
     diodicity_band : float or None
@@ -66,6 +71,10 @@ class SolvedResult:
     reverse_pressure_pa: float | None = None
     loop_share_forward: float | None = None
     loop_share_reverse: float | None = None
+    loop_shares_forward: tuple[float, ...] = ()
+    loop_shares_reverse: tuple[float, ...] = ()
+    stage_drops_forward_pa: tuple[float, ...] = ()
+    stage_drops_reverse_pa: tuple[float, ...] = ()
     error_band_percent: float | None = None
     diodicity_band: float | None = None
     reached_reynolds: float = 0.0
@@ -85,11 +94,24 @@ class SolvedResult:
             )
         for name in NUMBERS:
             put(self, name, _number(name, getattr(self, name)))
+        for name in LISTS:
+            put(self, name, _numbers(name, getattr(self, name)))
 
     @property
     def flow_ul_min(self) -> float:
         """The flow that was solved [uL/min]."""
         return self.operating.flow_ul_min
+
+    def shares_of(self, stage: int) -> tuple[float, float] | None:
+        """Return the loop shares, forward and reverse, of a stage counted from 0 in the reverse flow.
+
+        The mean of all stages stands in where single ones were not kept; None where there is neither.
+        """
+        if stage < min(len(self.loop_shares_forward), len(self.loop_shares_reverse)):
+            return self.loop_shares_forward[stage], self.loop_shares_reverse[stage]
+        if self.loop_share_forward is None or self.loop_share_reverse is None:
+            return None
+        return self.loop_share_forward, self.loop_share_reverse
 
     @property
     def diodicity(self) -> float | None:
@@ -127,6 +149,8 @@ _OPTIONAL = frozenset(
      "diodicity_band"}
 )  # fmt: skip
 NUMBERS = (*sorted(_OPTIONAL), "reynolds", "reached_reynolds")
+LISTS = ("loop_shares_forward", "loop_shares_reverse", "stage_drops_forward_pa", "stage_drops_reverse_pa")
+_LONGEST_LIST = int(CHANNEL_FIELDS["stages"].maximum)
 KEYS = tuple(field.name for field in fields(SolvedResult))
 
 
@@ -155,6 +179,13 @@ def _number(name: str, value: object) -> float | None:
     if isinstance(value, bool) or not isinstance(value, int | float) or not math.isfinite(value):
         raise DesignValueError(field=name, value=value, limit=limit, way_out="solve again")
     return float(value)
+
+
+def _numbers(name: str, given: object) -> tuple[float, ...]:
+    if not isinstance(given, list | tuple) or len(given) > _LONGEST_LIST:
+        limit = f"a list of at most {_LONGEST_LIST} numbers"
+        raise DesignValueError(field=name, value=given, limit=limit, way_out="solve again")
+    return tuple(number for each in given if (number := _number(name, each)) is not None)
 
 
 def _note(note: object) -> str:

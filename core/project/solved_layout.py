@@ -8,7 +8,7 @@ from core.errors import shown
 from core.operating import OPERATING_FIELDS, OperatingPoint
 from core.parameters import CHANNEL_FIELDS, ChannelParameters
 from core.project.reading import entries, tell_unknown, tried, values
-from core.project.solved import KEYS, SolvedResult
+from core.project.solved import KEYS, LISTS, SolvedResult
 
 if TYPE_CHECKING:
     from collections.abc import Iterable
@@ -24,6 +24,7 @@ def _result_data(result: SolvedResult) -> dict[str, object]:
         "channel": result.channel.as_dict(),
         "operating": result.operating.as_dict(),
         "notes": list(result.notes),
+        **{name: list(getattr(result, name)) for name in LISTS},
     }
     return {key: groups.get(key, getattr(result, key)) for key in KEYS}
 

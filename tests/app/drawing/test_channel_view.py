@@ -107,10 +107,26 @@ def test_shares_are_written_and_taken_away(view):
     """Truth: the picture changes and comes back to what it was."""
     view.show_shape(build_shape(ChannelParameters(stages=1)))
     before = view.grab().toImage()
-    view.show_shares(0.23, 0.61)
+    view.show_shares(lambda _stage: (0.23, 0.61))
     assert view.grab().toImage() != before
-    view.show_shares(None, None)
+    view.show_shares(None)
     assert view.grab().toImage() == before
+
+
+def test_the_stage_in_view_is_labelled_with_its_own_shares(view):
+    """Truth: where only the last stage is to be seen, the last stage's shares are asked for."""
+    asked = []
+    shape = build_shape(ChannelParameters(stages=3))
+    view.set_animated(False)
+    view.show_shape(shape)
+    view.show_shares(lambda stage: asked.append(stage) or (0.1 * stage, 0.5))
+    view.grab()
+    assert asked[-1] == 0
+    last = shape.centreline.stages[2]
+    x, y = last.loop_section_um.mean(axis=0)
+    view.show_part((x - 500.0, y - 500.0, x + 500.0, y + 500.0))
+    view.grab()
+    assert asked[-1] == 2
 
 
 # --- zoom, pan, fit

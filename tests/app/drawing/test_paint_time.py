@@ -53,7 +53,7 @@ def test_hundred_stages_are_painted_in_time(qapp, zoom):
     shape = build_shape(ChannelParameters(stages=100))
     picture = Picture()
     picture.set_shape(shape, None)
-    picture.shares = (0.2, 0.6)
+    picture.shares = lambda _stage: (0.2, 0.6)
     camera = Camera.fitting(shape.outline.bounds_um, AREA.adjusted(88, 58, -88, -84))
     fork_px = camera.to_px(shape.centreline.stages[3].fork_um)
     camera = camera.zoomed(zoom, fork_px).moved(600.0 if zoom > 1.0 else 0.0, 0.0)

@@ -70,7 +70,7 @@ def test_the_key_solves_and_the_figures_come_with_their_bands(window, solving, q
     assert values["shares"] == "25.0 % / 55.0 %"
     assert solving.panel.standing_label.text() == Standing.CURRENT
     assert "made up" in solving.panel.notes_label.text()
-    assert window.parts.drawing._picture.shares == (0.25, 0.55)  # the solved ones take the estimate's place
+    assert window.parts.drawing._picture.shares(0) == (0.25, 0.55)  # the solved ones take the estimate's place
     assert window.parts.verdict.diodicity_label.text().startswith("Di 1."), "the estimate stays beside it"
 
 
@@ -117,7 +117,7 @@ def test_changed_parameters_make_it_stale_and_undo_makes_it_good(window, solving
     window.document.settle()
     assert solving.panel.standing_label.text() == Standing.STALE
     assert "earlier parameters" in solving.panel.remark_label.text()
-    assert window.parts.drawing._picture.shares != (0.25, 0.55)
+    assert window.parts.drawing._picture.shares(0) != (0.25, 0.55)
     window.document.undo_stack.undo()
     window.document.settle()
     assert solving.panel.standing_label.text() == Standing.CURRENT

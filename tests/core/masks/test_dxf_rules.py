@@ -7,17 +7,13 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-import ezdxf
 import pytest
 from ezdxf import appsettings
 
 from core.errors import ExportError
-from core.masks.dxf_rules import dxf_problems
-from core.masks.found import found_in_dxf
-from core.masks.found_areas import FoundAreas
 from core.masks.options import DxfVersion
 from core.masks.read_dxf import read_dxf
-from tests.core.masks.judges import dxf_objections
+from tests.core.masks.dxf_masks import BOUNDS, SQUARE, Mask
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -25,60 +21,6 @@ if TYPE_CHECKING:
 
     from ezdxf.document import Drawing
     from ezdxf.layouts import Modelspace
-
-SQUARE = [(0.0, 0.0), (1.0, 0.0), (1.0, 1.0), (0.0, 1.0)]
-BOUNDS = (0.0, 0.0, 9.0, 1.0)
-
-
-class Mask:
-    """A sound drawing of two squares, to be spoilt."""
-
-    is_nested = False
-
-    def __init__(self, version: str) -> None:
-        self.version = DxfVersion(version)
-        self.document = ezdxf.new(version, units=4) if version == "R2000" else ezdxf.document.Drawing.new(version)
-        self.document.layers.remove("Defpoints")
-        self.document.layers.add("L1_CHAN")
-        self.add(SQUARE)
-        self.add([(x + 8.0, y) for x, y in SQUARE])
-
-    @property
-    def space(self) -> Modelspace:
-        return self.document.modelspace()
-
-    def add(
-        self, points: list[tuple[float, ...]], *, close: bool = True, layer: str = "L1_CHAN", **more: object
-    ) -> None:
-        add = self.space.add_lwpolyline if self.version is DxfVersion.R2000 else self.space.add_polyline2d
-        add(points, format="xyb"[: len(points[0])], close=close, dxfattribs={"layer": layer, **more})
-
-    def insert(self, *, block: str = "PIECE", base: tuple[float, float] = (0.0, 0.0), **values: object) -> None:
-        """Add a block of one square, and an insert of it at (4, 0)."""
-        piece = self.document.blocks.new(block, base_point=base)
-        add = piece.add_lwpolyline if self.version is DxfVersion.R2000 else piece.add_polyline2d
-        add(SQUARE, close=True, dxfattribs={"layer": "L1_CHAN"})
-        attributes = {"layer": "L1_CHAN", **values}
-        self.space.add_blockref(attributes.pop("name", block), (4.0, 0.0), dxfattribs=attributes)
-
-    def problems(self, folder: Path, patch: Callable[[str], str] = str) -> list[str]:
-        path = folder / "mask.dxf"
-        # the header takes the extents from here; bounding boxes of arcs are checked elsewhere
-        self.space.reset_extents((*BOUNDS[:2], 0.0), (*BOUNDS[2:], 0.0))
-        self.document.header["$EXTMIN"], self.document.header["$EXTMAX"] = (*BOUNDS[:2], 0.0), (*BOUNDS[2:], 0.0)
-        self.document.saveas(path)
-        path.write_text(patch(path.read_text()))
-        read = read_dxf(path)
-        problems = dxf_problems(read, version=self.version, layers=("L1_CHAN",), bounds_mm=BOUNDS)
-        if not problems:
-            tree = found_in_dxf(read, top="TOP", sagitta_um=0.02)
-            problems = FoundAreas(tree, is_nested=self.is_nested).problems(grain_um=1e-6)
-        # a judge that shares nothing with these rules must come to the same verdict
-        objections = dxf_objections(
-            path, version=str(self.version), layers=("L1_CHAN",), is_nested=self.is_nested, order=["L1_CHAN"]
-        )
-        assert bool(objections) == bool(problems), objections
-        return problems
 
 
 @pytest.fixture(params=["R2000", "R12"])
@@ -190,85 +132,6 @@ def test_curves_and_fills_of_newer_files_are_named(
     mask = Mask("R2000")
     draw(mask.space)
     assert f"entity {kind}; only closed polylines and inserts are allowed" in mask.problems(tmp_path)
-
-
-def test_a_sound_insert_has_no_problems(mask: Mask, tmp_path: Path) -> None:
-    mask.insert()
-    assert mask.problems(tmp_path) == []
-
-
-@pytest.mark.parametrize(
-    ("values", "words"),
-    [
-        ({"xscale": 2.0}, "insert of PIECE that does more than shift"),
-        ({"yscale": -1.0}, "insert of PIECE that does more than shift"),
-        ({"rotation": 90.0}, "insert of PIECE that does more than shift"),
-        ({"column_count": 2, "column_spacing": 5.0}, "insert of PIECE that does more than shift"),
-        ({"layer": "0"}, "insert of PIECE on layer '0'; should be on L1_CHAN"),
-        ({"name": "NOWHERE"}, "insert of block NOWHERE, which is not in the file"),
-    ],
-)
-def test_an_insert_that_does_more_than_shift_is_named(
-    mask: Mask, tmp_path: Path, values: dict[str, object], words: str
-) -> None:
-    mask.insert(**values)
-    assert words in mask.problems(tmp_path)
-
-
-@pytest.mark.parametrize(
-    ("name", "words"),
-    [("L1_CHAN", "block L1_CHAN has the name of a layer"), ("piece", "block name 'piece' is not safe everywhere")],
-)
-def test_a_bad_name_of_a_block_is_named(mask: Mask, tmp_path: Path, name: str, words: str) -> None:
-    mask.insert(block=name)
-    assert mask.problems(tmp_path) == [words]
-
-
-def test_a_base_point_and_an_unused_block_are_named(mask: Mask, tmp_path: Path) -> None:
-    mask.insert(base=(1.0, 0.0))
-    mask.document.blocks.new("SPARE")
-    assert mask.problems(tmp_path) == ["block PIECE has a base point of its own", "block SPARE is not used"]
-
-
-def test_inserts_that_overlap_are_named(mask: Mask, tmp_path: Path) -> None:
-    mask.insert()
-    mask.space.add_blockref("PIECE", (4.5, 0.0), dxfattribs={"layer": "L1_CHAN"})
-    assert mask.problems(tmp_path) == ["block TOP, layer L1_CHAN: PIECE and PIECE overlap"]
-
-
-def test_inserts_that_never_end_are_named(mask: Mask, tmp_path: Path) -> None:
-    mask.insert()
-    block = mask.document.blocks.get("PIECE")
-    path = tmp_path / "mask.dxf"
-    block.add_blockref("PIECE", (0.0, 2.0), dxfattribs={"layer": "L1_CHAN"})
-    mask.document.saveas(path)
-    problems = dxf_problems(read_dxf(path), version=mask.version, layers=("L1_CHAN",), bounds_mm=BOUNDS)
-    assert "inserts are more than 16 levels deep" in problems
-
-
-NESTED = [(2.0, 0.0), (7.0, 0.0), (7.0, 1.0), (2.0, 1.0)]
-INSIDE = [(3.0, 0.3), (4.0, 0.3), (4.0, 0.7), (3.0, 0.7)]
-
-
-@pytest.mark.parametrize(
-    ("rings", "words"),
-    [
-        ([INSIDE, NESTED], None),
-        ([NESTED, INSIDE], "an outer loop comes before one that lies inside it"),
-        ([INSIDE, NESTED, INSIDE[1:] + INSIDE[:1]], "1 figure drawn twice"),
-        ([INSIDE, [(x + 1.0, y) for x, y in INSIDE], NESTED], "cross or touch one another"),
-        ([INSIDE, [(x + 0.5, y + 0.1) for x, y in INSIDE], NESTED], "cross or touch one another"),
-        ([[(3.2, 0.4), (3.8, 0.4), (3.8, 0.6)], INSIDE, NESTED], "a loop lies within a loop that lies within a loop"),
-    ],
-)
-def test_loops_within_loops_for_cutting(
-    mask: Mask, tmp_path: Path, rings: list[list[tuple[float, float]]], words: str | None
-) -> None:
-    mask.is_nested = True
-    for ring in rings:
-        mask.add(ring)
-    problems = mask.problems(tmp_path)
-    assert [words in problem for problem in problems] == [True] if words else problems == []
 
 
 def test_paper_space_is_named(mask: Mask, tmp_path: Path) -> None:

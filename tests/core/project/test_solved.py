@@ -22,6 +22,10 @@ RESULT = SolvedResult(
     reverse_pressure_pa=1600.5,
     loop_share_forward=0.22,
     loop_share_reverse=0.51,
+    loop_shares_forward=(0.2, 0.23, 0.22, 0.23),
+    loop_shares_reverse=(0.5, 0.51, 0.51, 0.52),
+    stage_drops_forward_pa=(250.0, 251.0, 250.5),
+    stage_drops_reverse_pa=(270.0, 271.0, 272.5),
     error_band_percent=0.8,
     diodicity_band=0.004,
     reached_reynolds=74.7,
@@ -50,6 +54,12 @@ def test_diodicity_is_reverse_over_forward():
     assert LOST.diodicity is None
 
 
+def test_loop_shares_are_those_of_the_stage_or_else_the_mean():
+    assert RESULT.shares_of(1) == (0.23, 0.51)
+    assert replace(RESULT, loop_shares_forward=(), loop_shares_reverse=()).shares_of(1) == (0.22, 0.51)
+    assert LOST.shares_of(0) is None
+
+
 def test_a_result_belongs_to_one_design_in_one_condition():
     at_900 = OperatingPoint(flow_ul_min=900.0)
     assert RESULT.belongs_to(ChannelParameters(), at_900)
@@ -68,6 +78,9 @@ def test_a_result_belongs_to_one_design_in_one_condition():
         ({"channel": {"depth_um": -1}}, "depth_um is -1"),
         ({"operating": []}, "no group of fields"),
         ({"set_name": ""}, "set_name"),
+        ({"loop_shares_forward": 0.2}, "loop_shares_forward is 0.2"),
+        ({"stage_drops_reverse_pa": [1.0, None]}, "stage_drops_reverse_pa is None"),
+        ({"loop_shares_reverse": [0.5] * 101}, "at most 100 numbers"),
         ({"notes": "x"}, "no list of texts"),
         ({"notes": [1]}, "notes is 1"),
         ({"preassure": 1}, "'preassure' is unknown"),
