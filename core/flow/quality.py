@@ -262,7 +262,7 @@ def check_size(domain: FlowDomain, level: Level, memory_limit_mb: float) -> None
 
 def needed_memory_mb(entries: int, unknowns: int) -> float:
     """Return the memory of one level [MB]: a factor of known size, matrices and work space."""
-    return float(250 + (entries * 5 + unknowns * 3000) / 1e6)
+    return float(250 + (entries * 5 + unknowns * 4000) / 1e6)
 
 
 def check_memory(megabytes: float, stages: int, memory_limit_mb: float) -> None:
