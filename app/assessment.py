@@ -21,6 +21,8 @@ from core.hydraulics.estimate import Estimate, Score, estimate
 if TYPE_CHECKING:
     from collections.abc import Callable
 
+    from numpy.typing import NDArray
+
     from core.fabrication.process import Process
     from core.findings import Finding
     from core.fluids import FluidState
@@ -88,7 +90,7 @@ def assessment_of(
         if obstacle := _obstacle(channel, making):
             return Assessment(flow_ul_min=flow_ul_min, making=making, fluid=fluid, obstacle=obstacle)
         flows_ul_min = np.union1d(np.linspace(0.001 * curve_top_ul_min, curve_top_ul_min, CURVE_POINTS), flow_ul_min)
-        curve = estimate(making.flow, fluid=fluid, flows_ul_min=flows_ul_min)
+        curve = _estimate(making, process, fluid, flows_ul_min)
         score = curve.score(int(np.searchsorted(flows_ul_min, flow_ul_min)))
         return Assessment(flow_ul_min=flow_ul_min, making=making, fluid=fluid, estimate=curve, score=score)
     except CoreError as error:
@@ -103,9 +105,13 @@ def score_of(channel: ChannelParameters, process: Process, operating: OperatingP
         fluid = fluid_of(operating)
         if _obstacle(channel, making):
             return None
-        return estimate(making.flow, fluid=fluid, flows_ul_min=np.array([operating.flow_ul_min])).score(0)
+        return _estimate(making, process, fluid, np.array([operating.flow_ul_min])).score(0)
     except CoreError:
         return None
+
+
+def _estimate(making: Making, process: Process, fluid: FluidState, flows_ul_min: NDArray[np.float64]) -> Estimate:
+    return estimate(making.flow, fluid=fluid, flows_ul_min=flows_ul_min, has_stiff_walls=process.has_stiff_walls)
 
 
 def _obstacle(channel: ChannelParameters, making: Making) -> str:

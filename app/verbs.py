@@ -72,7 +72,8 @@ def score_verb(arguments: argparse.Namespace) -> Answer:
     chosen = _chosen_set(project, arguments)
     fluid = project.operating.fluid_state()
     made, notes = _made(project, chosen)
-    found = estimate(made, fluid=fluid, flows_ul_min=np.array(flows))
+    is_stiff = project.process.has_stiff_walls
+    found = estimate(made, fluid=fluid, flows_ul_min=np.array(flows), has_stiff_walls=is_stiff)
     points = [_with_notes(found.score(index).as_dict(), notes) for index in range(len(flows))]
     if arguments.json:
         return Answer(text=as_json(points[0] if len(points) == 1 else {"points": points}))

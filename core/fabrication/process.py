@@ -37,6 +37,7 @@ class ProcessKind(StrEnum):
 MASK_KINDS = frozenset({ProcessKind.CAST_FILM, ProcessKind.CAST_CHROME, ProcessKind.WET_GLASS, ProcessKind.DRY_SILICON})
 ETCHED_KINDS = frozenset({ProcessKind.WET_GLASS, ProcessKind.DRY_SILICON})
 MILLED_KINDS = frozenset({ProcessKind.MILLED_CHANNEL, ProcessKind.MILLED_MOULD})
+STIFF_KINDS = ETCHED_KINDS | {ProcessKind.LASER_ACRYLIC, ProcessKind.MILLED_CHANNEL}
 CUT_KINDS = frozenset({ProcessKind.LASER_ACRYLIC, ProcessKind.LASER_FILM, ProcessKind.KNIFE_FILM})
 
 _CUT_TONE = "drawn lines are CUT"
@@ -166,6 +167,11 @@ class Process(CheckedValues):
     def table(cls) -> Mapping[str, Field]:
         """Return the table that describes the fields."""
         return PROCESS_FIELDS
+
+    @property
+    def has_stiff_walls(self) -> bool:
+        """Whether the chip is of glass, silicon or hard plastic, which do not bulge under the pressure of a bond."""
+        return self.kind in STIFF_KINDS
 
     def __post_init__(self) -> None:
         """Check every value, and those that must go together."""

@@ -56,8 +56,9 @@ class Quality:
         measured by mirroring it.
     excess_growth_percent : float
         What the error of Di - 1 gains up to Re 150 on the width, beyond what two coarse answers show:
-        coarse triangles lose the thin jets of fast flow (measured against the normal quality: a
-        third at Re 110, nearly half at Re 150).
+        coarse triangles lose the thin jets of fast flow. Measured against the normal quality: a third
+        at Re 110, nearly half at Re 150; with it all of 30 random channels of Re 8 to 200 lie in the
+        bands.
     """
 
     name: str
@@ -80,14 +81,14 @@ QUALITIES = {
             name="coarse",
             steps=((-2, 0.75), (-1, 0.5)),
             pressure_tolerance_percent=3.0,
-            excess_tolerance_percent=65.0,
+            excess_tolerance_percent=80.0,
             excess_floor=0.02,
             smallest_size=0.5,
             most_modes=-1,
             newton_tolerance=1e-5,
             least_pressure_percent=2.0,
-            least_excess_percent=15.0,
-            excess_growth_percent=35.0,
+            least_excess_percent=25.0,
+            excess_growth_percent=45.0,
         ),
         Quality(
             name="normal",

@@ -112,6 +112,8 @@ class Estimate:
         The design.
     fluid : FluidState
         What flows.
+    has_stiff_walls : bool
+        Whether walls keep their place under pressure.
     method : str
         How the numbers were got.
     """
@@ -132,6 +134,7 @@ class Estimate:
     notes: tuple[str, ...]
     parameters: ChannelParameters
     fluid: FluidState
+    has_stiff_walls: bool = False
     method: str = METHOD
 
     def score(self, index: int) -> Score:
@@ -155,6 +158,7 @@ class Estimate:
             reynolds=reynolds,
             rectification=rectification,
             pressure_pa=max(forward, reverse),
+            has_stiff_walls=self.has_stiff_walls,
         )
         return Score(
             flow_ul_min=float(self.flow_ul_min[index]),
@@ -174,7 +178,9 @@ class Estimate:
         )
 
 
-def estimate(parameters: ChannelParameters, *, fluid: FluidState, flows_ul_min: ArrayLike) -> Estimate:
+def estimate(
+    parameters: ChannelParameters, *, fluid: FluidState, flows_ul_min: ArrayLike, has_stiff_walls: bool = False
+) -> Estimate:
     """Estimate pressure drops, diodicity and loop shares of a channel in both directions.
 
     Straight channels by the exact duct series; fork, mouth and turn by published formulas that are
@@ -190,6 +196,8 @@ def estimate(parameters: ChannelParameters, *, fluid: FluidState, flows_ul_min: 
         Density and viscosity.
     flows_ul_min : float or array, shape (n,)
         Flows, each the same in both directions [uL/min].
+    has_stiff_walls : bool
+        True where the chip is too stiff to bulge; else ``score`` warns of it at higher pressures.
 
     Returns
     -------
@@ -238,6 +246,7 @@ def estimate(parameters: ChannelParameters, *, fluid: FluidState, flows_ul_min: 
         notes=design_notes(parameters, fluid=fluid),
         parameters=parameters,
         fluid=fluid,
+        has_stiff_walls=has_stiff_walls,
     )
 
 

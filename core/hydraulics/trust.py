@@ -172,7 +172,13 @@ def design_notes(parameters: ChannelParameters, *, fluid: FluidState) -> tuple[s
 
 
 def flow_notes(
-    parameters: ChannelParameters, *, fluid: FluidState, reynolds: float, rectification: float, pressure_pa: float
+    parameters: ChannelParameters,
+    *,
+    fluid: FluidState,
+    reynolds: float,
+    rectification: float,
+    pressure_pa: float,
+    has_stiff_walls: bool,
 ) -> tuple[str, ...]:
     """Return cautions that depend on the flow.
 
@@ -188,6 +194,8 @@ def flow_notes(
         Di - 1 [-].
     pressure_pa : float
         The larger of both drops [Pa].
+    has_stiff_walls : bool
+        Whether walls keep their place at any pressure that the bonds hold, as those of glass or silicon do.
 
     Returns
     -------
@@ -212,7 +220,7 @@ def flow_notes(
             f"{_plain(pressure_pa / 1e3)} kPa: gas expands noticeably along the channel above "
             f"{GAS_PRESSURE_PA / 1e3:g} kPa; lower the flow or read the numbers as a guide."
         )
-    if pressure_pa > SOFT_WALL_PA:
+    if pressure_pa > SOFT_WALL_PA and not has_stiff_walls:
         notes.append(
             f"{_plain(pressure_pa / 1e3)} kPa: rigid walls are assumed; a soft chip bulges above about "
             f"{SOFT_WALL_PA / 1e3:g} kPa and drops less; use a stiff material or lower the flow."

@@ -56,7 +56,8 @@ def score_of_made(project: ChipProject, channel: ChannelParameters, *, added_um:
     longest = CHANNEL_FIELDS["lead_in_um"].maximum
     longer = replace(made, lead_in_um=min(made.lead_in_um + added_um, longest))
     flows = np.array([project.operating.flow_ul_min])
-    return estimate(longer, fluid=project.operating.fluid_state(), flows_ul_min=flows).score(0)
+    fluid, is_stiff = project.operating.fluid_state(), project.process.has_stiff_walls
+    return estimate(longer, fluid=fluid, flows_ul_min=flows, has_stiff_walls=is_stiff).score(0)
 
 
 def fold_notes(project: ChipProject) -> tuple[str, ...]:

@@ -113,3 +113,11 @@ def test_notes_are_single_lines(flow_ul_min):
     for note in _notes(flow_ul_min=flow_ul_min, depth_um=30.0):
         assert "\n" not in note
         assert note.endswith(".")
+
+
+def test_stiff_walls_do_not_bulge():
+    """Truth: silicone of some MPa bulges, glass and silicon of some 100 GPa do not (common practice, no source)."""
+    channel = ChannelParameters(depth_um=40.0, stages=10)
+    stiff = estimate(channel, fluid=WATER, flows_ul_min=1200.0, has_stiff_walls=True).score(0)
+    assert stiff.highest_pressure_pa > 2e4
+    assert not _has(stiff.notes, "soft chip")
