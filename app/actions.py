@@ -99,6 +99,7 @@ ACTIONS: tuple[ActionWords, ...] = (
         ("unfold_placed", "&Unfold by one row", "Ctrl+["),
         ("remove_placed", "&Remove from the chip", "Ctrl+Shift+Del", "part"),
         ("pack_chip", "&Pack all anew", "Ctrl+K", "part"),
+        ("fold_to_fit", "Fold to f&it", "Ctrl+Shift+F"),
     ),
     *_words(
         "S&olve",

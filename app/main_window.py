@@ -22,6 +22,7 @@ from app.panels.cautions import cautions_page
 from app.panels.chip_desk import ChipDesk
 from app.panels.chip_places import PLACING
 from app.panels.export import ExportDialog
+from app.panels.fold_notes_desk import FoldNotesDesk
 from app.panels.pages import ABOUT_PAGE, PageDialog, details_dialog, notes_dialog
 from app.shown_values import ShownUnits, number_text, screen_words
 from app.solving.desk import SolveDesk
@@ -112,6 +113,7 @@ class MainWindow(QMainWindow):
             refuse=self._show_refusal,
             parent=self,
         )
+        self.fold_notes = FoldNotesDesk(document, parts=parts, parent=self)
         switches["show_made"].setChecked(True)
         walls = {Walls.DRAWN: switches["show_drawn"], Walls.MADE: switches["show_made"]}
         self.beside = BesideDesk(document, drawing=parts.drawing, switches=walls, parent=self)
@@ -273,6 +275,7 @@ class MainWindow(QMainWindow):
             return
         self.solving.end_now()
         self.chip.end_now()
+        self.fold_notes.end_now()
         self.files.forget_copy()
         self.parts.remember()
         self.settings.set_arrangement("window", self.saveGeometry())

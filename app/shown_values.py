@@ -143,4 +143,4 @@ def screen_words(sentence: str) -> str:
     "raise 'Loop radius' to 40 µm"
     """
     named = _FIELD_NAMES.sub(lambda match: f"'{_LABELS[match[0]]}'", sentence)
-    return re.sub(r"(?<=\d) um\b", f" {unit_symbol('um')}", named)
+    return re.sub(r"(?<=\d) (um|uL/min)\b", lambda match: f" {unit_symbol(match[1])}", named)

@@ -31,6 +31,7 @@ QPushButton:pressed, QToolButton:pressed, QToolButton:checked, QPushButton:check
 }
 QPushButton:focus, QToolButton:focus { border: 2px solid $accent; padding: 2px 11px; }
 QToolButton:focus { padding: 2px 5px; }
+QToolButton[low="true"], QToolButton[low="true"]:focus { min-height: 0; padding: 0; }
 QPushButton:default { background: $accent; color: $on_accent; border-color: $accent; }
 QPushButton:disabled, QToolButton:disabled { color: $pale_edge; background: $ground; }
 QSlider::groove:horizontal { height: 3px; background: $rule; border-radius: 1px; }

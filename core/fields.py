@@ -13,7 +13,7 @@ from typing import TYPE_CHECKING, NoReturn, Self
 from core.errors import DesignValueError, did_you_mean
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping
+    from collections.abc import Iterable, Mapping
 
 Value = float | int | str
 
@@ -98,7 +98,7 @@ class Field:
 
     def _checked_choice(self, value: object) -> str:
         if isinstance(value, str) and value in self.choices:
-            return value
+            return str(value)  # the bare word of an enum
         return self._refuse(value, did_you_mean(str(value), self.choices))
 
     def _number(self, value: object) -> float:
@@ -160,36 +160,47 @@ class CheckedValues(ABC):
         return {name: getattr(self, name) for name in self.table()}
 
 
-def table_of(*fields: Field) -> dict[str, Field]:
-    """Return fields as an ordered table, name first."""
-    return {field.name: field for field in fields}
-
-
-def problems_in(values: Mapping[str, object], table: Mapping[str, Field]) -> list[DesignValueError]:
-    """Return every problem of a set of named values, not only the first.
+def length_field(
+    name: str, label: str, group: str, default: float, bounds: tuple[float, float], step: float, text: str
+) -> Field:
+    """Return the field of a length: one row of a table, all lengths in it in micrometres.
 
     Parameters
     ----------
-    values : mapping
-        Field names to values; missing fields are fine.
-    table : mapping
-        Known fields.
-
-    Returns
-    -------
-    list of DesignValueError
-        Empty when all is well.
+    name, label, group : str
+        As for ``Field``; the name ends in ``_um``.
+    default : float
+        Value of a new design [um].
+    bounds : tuple of float
+        Smallest and largest value [um].
+    step : float
+        One press of an arrow key [um].
+    text : str
+        Its help.
     """
-    problems: list[DesignValueError] = []
-    for name, value in values.items():
-        if name not in table:
-            problems.append(unknown_field(name, value, table))
-            continue
-        try:
-            table[name].checked(value)
-        except DesignValueError as error:
-            problems.append(error)
-    return problems
+    return Field(name=name, label=label, group=group, default=default, unit="um",
+                 minimum=bounds[0], maximum=bounds[1], step=step, help=text)  # fmt: skip
+
+
+def choice_field(name: str, label: str, group: str, choices: Iterable[str], text: str) -> Field:
+    """Return the field of a choice between words: one row of a table.
+
+    Parameters
+    ----------
+    name, label, group : str
+        As for ``Field``.
+    choices : iterable of str
+        Words, or an enum of words; the first is the default.
+    text : str
+        Its help.
+    """
+    words = tuple(map(str, choices))
+    return Field(name=name, label=label, group=group, default=words[0], choices=words, help=text)
+
+
+def table_of(*fields: Field) -> dict[str, Field]:
+    """Return fields as an ordered table, name first."""
+    return {field.name: field for field in fields}
 
 
 def unknown_field(name: str, value: object, table: Mapping[str, Field]) -> DesignValueError:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from core.fields import CheckedValues, Field, problems_in, table_of
+from core.fields import CheckedValues, Field, table_of
 from core.fluids import FLUID_RANGES_C, FluidState, fluid_state
 
 if TYPE_CHECKING:
@@ -68,8 +68,3 @@ class OperatingPoint(CheckedValues):
             own_density_kg_m3=self.own_density_kg_m3,
             own_viscosity_mpa_s=self.own_viscosity_mpa_s,
         )
-
-
-def operating_problems(values: Mapping[str, object]) -> list[str]:
-    """Return every problem of values meant for an operating point, each in one line."""
-    return [str(problem) for problem in problems_in(values, OPERATING_FIELDS)]

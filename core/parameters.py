@@ -9,21 +9,12 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from core.fields import CheckedValues, Field, problems_in, table_of
+from core.fields import CheckedValues, Field, length_field, table_of
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
 STAGE, CHAIN, DEPTH, MAKING = "Stage shape", "Chain", "Section", "Making it"
-
-
-def _length(
-    name: str, label: str, group: str, default: float, bounds: tuple[float, float], step: float, text: str
-) -> Field:
-    return Field(
-        name=name, label=label, group=group, default=default, unit="um",
-        minimum=bounds[0], maximum=bounds[1], step=step, help=text,
-    )  # fmt: skip
 
 
 def _angle(name: str, label: str, default: float, bounds: tuple[float, float], text: str) -> Field:
@@ -41,28 +32,29 @@ CHANNEL_FIELDS: dict[str, Field] = table_of(
            "the leg goes straight on and the bypass bends away. 0: the bypass goes straight on."),
     _angle("loop_turn_deg", "Loop turn", 180.0, (60.0, 280.0),
            "How far the loop's arc bends back towards the bypass."),
-    _length("loop_radius_um", "Loop radius", STAGE, 320.0, (5.0, 10000.0), 5.0,
-            "Radius of the loop's turn, on its centre line."),
-    _length("return_length_um", "Return length", STAGE, 0.0, (0.0, 10000.0), 10.0,
-            "Straight piece between the turn and the mouth."),
-    _length("loop_width_um", "Loop width", STAGE, 200.0, (5.0, 3000.0), 5.0, "Width of the loop path."),
+    length_field("loop_radius_um", "Loop radius", STAGE, 320.0, (5.0, 10000.0), 5.0,
+                 "Radius of the loop's turn, on its centre line."),
+    length_field("return_length_um", "Return length", STAGE, 0.0, (0.0, 10000.0), 10.0,
+                 "Straight piece between the turn and the mouth."),
+    length_field("loop_width_um", "Loop width", STAGE, 200.0, (5.0, 3000.0), 5.0, "Width of the loop path."),
     Field(name="stages", label="Stages", group=CHAIN, default=4, minimum=0, maximum=100, step=1, whole=True,
           help="Number of loops in series. 0 makes a plain straight channel to measure against."),
     Field(name="sides", label="Sides", group=CHAIN, default="alternate", choices=("alternate", "same"),
           help="Loops left and right in turn, or all on one side."),
-    _length("stage_gap_um", "Stage gap", CHAIN, 400.0, (0.0, 20000.0), 10.0,
-            "Centre-line distance from one mouth to the next fork."),
-    _length("lead_in_um", "Lead in", CHAIN, 1000.0, (10.0, 100000.0), 50.0,
-            "Straight from the open end where forward flow enters to the last mouth."),
-    _length("lead_out_um", "Lead out", CHAIN, 1000.0, (10.0, 100000.0), 50.0,
-            "Straight from the first fork to the open end where forward flow leaves."),
-    _length("channel_width_um", "Channel width", DEPTH, 200.0, (5.0, 3000.0), 5.0,
-            "Width of the bypass and the leads."),
-    _length("depth_um", "Depth", DEPTH, 200.0, (1.0, 3000.0), 5.0, "Depth of the whole channel, out of the drawing."),
-    _length("nose_radius_um", "Nose radius", MAKING, 10.0, (0.0, 1000.0), 1.0,
-            "Rounding of the island's corners that the process will cause anyway. 0 is sharp."),
-    _length("corner_radius_um", "Corner radius", MAKING, 10.0, (0.0, 1000.0), 1.0,
-            "Rounding of all other inner corners. 0 is sharp."),
+    length_field("stage_gap_um", "Stage gap", CHAIN, 400.0, (0.0, 20000.0), 10.0,
+                 "Centre-line distance from one mouth to the next fork."),
+    length_field("lead_in_um", "Lead in", CHAIN, 1000.0, (10.0, 100000.0), 50.0,
+                 "Straight from the open end where forward flow enters to the last mouth."),
+    length_field("lead_out_um", "Lead out", CHAIN, 1000.0, (10.0, 100000.0), 50.0,
+                 "Straight from the first fork to the open end where forward flow leaves."),
+    length_field("channel_width_um", "Channel width", DEPTH, 200.0, (5.0, 3000.0), 5.0,
+                 "Width of the bypass and the leads."),
+    length_field("depth_um", "Depth", DEPTH, 200.0, (1.0, 3000.0), 5.0,
+                 "Depth of the whole channel, out of the drawing."),
+    length_field("nose_radius_um", "Nose radius", MAKING, 10.0, (0.0, 1000.0), 1.0,
+                 "Rounding of the island's corners that the process will cause anyway. 0 is sharp."),
+    length_field("corner_radius_um", "Corner radius", MAKING, 10.0, (0.0, 1000.0), 1.0,
+                 "Rounding of all other inner corners. 0 is sharp."),
 )  # fmt: skip
 
 
@@ -100,8 +92,3 @@ class ChannelParameters(CheckedValues):
     def table(cls) -> Mapping[str, Field]:
         """Return the table that describes the fields."""
         return CHANNEL_FIELDS
-
-
-def channel_problems(values: Mapping[str, object]) -> list[str]:
-    """Return every problem of values meant for a parameter set, each in one line."""
-    return [str(problem) for problem in problems_in(values, CHANNEL_FIELDS)]

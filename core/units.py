@@ -9,11 +9,13 @@ from __future__ import annotations
 from core.errors import DesignValueError, did_you_mean
 
 M_PER_UM = 1e-6
+UM_PER_MM = 1000.0
+NM_PER_UM = 1000.0
 M3_S_PER_UL_MIN = 1e-9 / 60.0
 
 # quantity -> unit -> size of that unit in the quantity's first (base) unit
 UNITS: dict[str, dict[str, float]] = {
-    "length": {"um": 1.0, "mm": 1000.0},
+    "length": {"um": 1.0, "mm": UM_PER_MM},
     "flow": {"uL/min": 1.0, "mL/min": 1000.0},
     "pressure": {"Pa": 1.0, "kPa": 1000.0, "mbar": 100.0, "psi": 6894.757293168},
 }

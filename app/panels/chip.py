@@ -79,7 +79,6 @@ class ChipPanel(FieldColumn):
         self.label_entry.setPlaceholderText(self._document.project.name)
         self.series.setVisible(plan.plate != "single chip" or bool(plan.series))
         self.series.show_series(plan.series, units)
-        self.fit_width()
 
     def show_count(self, text: str) -> None:
         """Say how many chips there are on the plate."""

@@ -10,8 +10,8 @@ from app.drawing.chip_shown import NONE
 from app.panels.chip_drawer import ChipDrawer
 from core.chip.adding import added
 from core.chip.bodies import channel_of, level_turn, title_of
-from core.chip.fitting import packed
-from core.errors import CoreError, DesignValueError
+from core.chip.fitting import folded, packed, too_large
+from core.errors import CoreError, DesignValueError, GeometryError
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -116,6 +116,21 @@ class ChipDesk(ChipDrawer):
         task = ChipTask.of(self._document.project)
         self._try(lambda plan: (packed(plan, task.channels, task.process, chip_name=task.chip_name), "Pack the chip"))
 
+    def fold_to_fit(self) -> None:
+        """Fold what is longer than the chip into the fewest rows that fit, and pack; tell what fits in no way."""
+        task = ChipTask.of(self._document.project)
+
+        def change(plan: ChipPlan) -> tuple[ChipPlan, str]:
+            plan = folded(plan, task.channels, task.process, chip_name=task.chip_name)
+            large.extend(too_large(plan, task.channels, task.process))
+            if len(large) == len(plan.channels):
+                raise _too_large(large)
+            return plan, "Fold to fit"
+
+        large: list[str] = []
+        if self._try(change) and large:
+            self._refuse(_too_large(large))
+
     def turn(self) -> None:
         """Turn the channel in hand by a quarter."""
         self._change_chosen("Turn", lambda _plan, channel: {"turn_deg": (channel.turn_deg + _QUARTER_DEG) % 360.0})
@@ -164,6 +179,12 @@ def _channel(plan: ChipPlan, index: int) -> ChipChannel:
 
 def _with_channel(plan: ChipPlan, index: int, channel: ChipChannel) -> ChipPlan:
     return replace(plan, channels=(*plan.channels[:index], channel, *plan.channels[index + 1 :]))
+
+
+def _too_large(titles: list[str]) -> GeometryError:
+    names = ", ".join(f"'{title}'" for title in titles)
+    verb = "fits" if len(titles) == 1 else "fit"
+    return GeometryError(f"{names} {verb} this chip in no number of rows; enlarge the chip, or take fewer stages.")
 
 
 def _last_one() -> DesignValueError:

@@ -20,6 +20,7 @@ from PySide6.QtWidgets import (
 
 from app.look import SPACING, font, set_role
 from app.panels.chip_places_model import PlacesModel
+from app.panels.low_notes import LowNotes
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Sequence
@@ -42,9 +43,10 @@ PLACING: dict[str, Callable[[ChipDesk], object]] = {
     "unfold_placed": lambda desk: desk.fold(-1),
     "remove_placed": lambda desk: desk.remove(),
     "pack_chip": lambda desk: desk.pack(),
+    "fold_to_fit": lambda desk: desk.fold_to_fit(),
 }
 _BUTTONS_ACROSS = 2
-_NARROWEST_PX, _ROW_PX = 88, 24
+_ROW_PX = 24
 
 
 class PlacesPanel(QWidget):
@@ -73,8 +75,10 @@ class PlacesPanel(QWidget):
         self.table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
         self.table.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)
         self.table.setShowGrid(False)
-        self.table.horizontalHeader().setMinimumSectionSize(_NARROWEST_PX)
-        self.table.horizontalHeader().setSectionResizeMode(QHeaderView.ResizeMode.Stretch)
+        header = self.table.horizontalHeader()
+        header.setResizeContentsPrecision(0)  # of the rows in sight: a held channel changes them all the time
+        header.setSectionResizeMode(QHeaderView.ResizeMode.ResizeToContents)
+        header.setSectionResizeMode(0, QHeaderView.ResizeMode.Stretch)  # the numbers are never cut short
         self.table.verticalHeader().setDefaultSectionSize(_ROW_PX)
         self.table.verticalHeader().setSectionResizeMode(QHeaderView.ResizeMode.Fixed)
         self.table.verticalHeader().hide()
@@ -82,10 +86,13 @@ class PlacesPanel(QWidget):
         self.heading.setFont(font("small"))
         self.heading.setWordWrap(True)
         set_role(self.heading, "soft")
+        self.notes = LowNotes()
+        self.notes.setAccessibleName("What folding costs")
         left = QVBoxLayout()
         left.setSpacing(SPACING.hair)
         left.addWidget(self.heading)
         left.addWidget(self.table, 1)
+        left.addWidget(self.notes)
         layout = QHBoxLayout(self)
         layout.setContentsMargins(0, 0, 0, 0)
         layout.setSpacing(SPACING.small)

@@ -18,6 +18,9 @@ if TYPE_CHECKING:
 
     Index = QModelIndex | QPersistentModelIndex
 
+# of numbers as they are read, and as they are typed
+_DECIMALS = {Qt.ItemDataRole.DisplayRole: 3, Qt.ItemDataRole.EditRole: 6}
+
 COLUMNS: tuple[Field | None, ...] = (None, *PLACE_FIELDS.values())  # the first one is the name
 
 
@@ -82,11 +85,14 @@ class PlacesModel(QAbstractTableModel):
         if not index.isValid() or index.row() >= len(self._channels):
             return None
         channel, field = self._channels[index.row()], COLUMNS[index.column()]
-        if role in (Qt.ItemDataRole.DisplayRole, Qt.ItemDataRole.EditRole):
+        if role in _DECIMALS:
             if field is None:
                 return title_of(channel)
-            # what turning has left behind the sixth digit is nothing; and nothing has no sign
-            return entry_text(round(self._units.shown(getattr(channel, field.name), field.unit), 6) + 0.0)
+            # what turning has left behind the last digit is nothing; and nothing has no sign
+            shown = self._units.shown(getattr(channel, field.name), field.unit)
+            return entry_text(round(shown, _DECIMALS[Qt.ItemDataRole(role)]) + 0.0)
+        if role == Qt.ItemDataRole.ToolTipRole and field is None:
+            return title_of(channel)  # a long one is cut short
         if role == Qt.ItemDataRole.TextAlignmentRole and field is not None:
             return Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter
         return None
@@ -98,7 +104,7 @@ class PlacesModel(QAbstractTableModel):
         field = COLUMNS[index.column()]
         if field is None:
             return False
-        if str(value).strip() == self.data(index):
+        if str(value).strip() == self.data(index, role):
             return True
         try:
             number = float(self._units.field(field).checked(str(value).strip()))

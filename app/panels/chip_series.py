@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtWidgets import QGridLayout, QLabel, QLineEdit, QWidget
+from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QLabel, QLineEdit, QWidget
 
 from app.look import SPACING, font, set_role
 from app.panels.field_column import FieldGroup
@@ -21,7 +21,6 @@ if TYPE_CHECKING:
 
 _STEPS = int(SERIES_FIELDS["steps"].default)
 _ENTRY_PX = 54
-_COLUMNS = (1, 2, 4)  # of the entries; the unit stands behind both ends
 _DIRECTIONS = ("Along x", "Along y")
 
 
@@ -56,20 +55,24 @@ class SeriesRow(QWidget):
         name_label = QLabel(direction)
         name_label.setBuddy(self.box)
         layout.addWidget(name_label, 0, 0)
-        layout.addWidget(self.box, 0, 1, 1, 6)
-        for place, (name, entry) in enumerate(self.entries.items()):
+        layout.addWidget(self.box, 0, 1)
+        layout.setColumnStretch(1, 1)
+        for name, entry in self.entries.items():
             entry.setAlignment(Qt.AlignmentFlag.AlignRight)
             entry.setFixedWidth(_ENTRY_PX)
             entry.setAccessibleName(f"{direction}: {SERIES_FIELDS[name].label}")
             entry.setToolTip(SERIES_FIELDS[name].help)
             entry.setPlaceholderText(SERIES_FIELDS[name].label.lower())
             entry.editingFinished.connect(self._on_entry_finished)
-            layout.addWidget(entry, 1, _COLUMNS[place])
         self.steps_label = QLabel("steps")
         set_role(self.steps_label, "soft")
-        layout.addWidget(self.unit_label, 1, 3)
-        layout.addWidget(self.steps_label, 1, 5)
-        layout.setColumnStretch(6, 1)
+        across = QHBoxLayout()
+        across.setSpacing(SPACING.small)
+        across.addStretch(1)
+        entries = self.entries
+        for part in (entries["first"], entries["last"], self.unit_label, entries["steps"], self.steps_label):
+            across.addWidget(part)
+        layout.addLayout(across, 1, 0, 1, 2)
         self.box.activated.connect(self._on_box_activated)
         self.show_series(None, self._units)
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import Qt, Signal
+from PySide6.QtCore import QEvent, QObject, Qt, Signal
 from PySide6.QtWidgets import QFrame, QScrollArea, QToolButton, QVBoxLayout, QWidget
 
 from app.look import SPACING, font
@@ -83,7 +83,7 @@ class FieldColumn(QScrollArea):
             self._add(editor_for(field, new_gesture))
         self._layout.addStretch(1)
         self.setWidget(self.column)
-        self.fit_width()
+        self._fit_width()
 
     def _add(self, editor: FieldEditor) -> None:
         title = editor.field.group
@@ -107,9 +107,14 @@ class FieldColumn(QScrollArea):
     def add_below(self, part: QWidget) -> None:
         """Put a part below the groups."""
         self._layout.insertWidget(self._layout.count() - 1, part)
-        self.fit_width()
 
-    def fit_width(self) -> None:
+    def eventFilter(self, watched: QObject, event: QEvent) -> bool:
+        """Follow rows that come, go and grow: the column never scrolls sideways."""
+        if watched is self.column and event.type() == QEvent.Type.LayoutRequest:
+            self._fit_width()
+        return super().eventFilter(watched, event)
+
+    def _fit_width(self) -> None:
         """Be as wide as the widest row needs."""
         self.setMinimumWidth(self.column.minimumSizeHint().width() + self.verticalScrollBar().sizeHint().width())
 

@@ -77,6 +77,7 @@ class FieldEditor(QWidget):
         button = QToolButton()
         button.setText("\N{ANTICLOCKWISE OPEN CIRCLE ARROW}")
         button.setAutoRaise(True)
+        button.setProperty("low", True)
         button.setFixedSize(QSize(24, 24))
         button.setAccessibleName(f"Back to the default of {self.field.label}")
         policy = button.sizePolicy()

@@ -45,7 +45,17 @@ class Stance:
 
 
 def stance_of(plan: ChipPlan, entry: ChipChannel, channel: ChannelParameters, process: Process) -> Stance:
-    """Return how a channel of a plan stands on the chip."""
+    """Return how a channel of a plan stands on the chip.
+
+    Parameters
+    ----------
+    plan, entry : ChipPlan, ChipChannel
+        The chip, and what is placed on it.
+    channel : ChannelParameters
+        Its parameters on the chip; see ``channel_of``.
+    process : Process
+        How it is made.
+    """
     wall = max(process.min_wall_um, plan.spacing_um) if entry.rows > 1 else 0.0
     pad = pad_radius_um(plan, channel)
     return Stance(rows=entry.rows, turn_deg=entry.turn_deg, pad_radius_um=pad, wall_um=wall)
@@ -94,6 +104,11 @@ def title_of(entry: ChipChannel) -> str:
 def wanted_body(plan: ChipPlan, entry: ChipChannel, channel: ChannelParameters, process: Process) -> ChannelBody:
     """Return the area that a channel shall have on the part, the middle of its bounds at the origin.
 
+    Parameters
+    ----------
+    plan, entry, channel, process
+        As for ``stance_of``.
+
     Raises
     ------
     GeometryError
@@ -109,6 +124,19 @@ def changed_body(
     """Return the area to be drawn for a channel, or the one that is made of it, before scaling.
 
     Centre lines, pads and bends are those of the area as wanted.
+
+    Parameters
+    ----------
+    channel : ChannelParameters
+        Its parameters on the chip, as wanted.
+    stance : Stance
+        How it stands there.
+    process : Process
+        How it is made.
+    title : str
+        What it is called when something is wrong.
+    drawn : bool
+        True: as drawn. False: as made.
 
     Raises
     ------
@@ -132,6 +160,11 @@ def level_turn(plan: ChipPlan, entry: ChipChannel, channel: ChannelParameters, p
     """Return the turn that puts both ports of a channel at one height [deg].
 
     A chain folded into an even number of rows has both ports on one side: it is left with its rows as they are.
+
+    Parameters
+    ----------
+    plan, entry, channel, process
+        As for ``stance_of``; the turn of the entry is left aside.
 
     Raises
     ------

@@ -7,17 +7,18 @@ from functools import lru_cache
 from typing import TYPE_CHECKING
 
 from core.chip.bodies import changed_body, channel_of, stance_of, title_of, wanted_body
-from core.chip.figures import enlarged
 from core.chip.fitting import packed, wanted_stamps
 from core.chip.free_space import Obstacle
 from core.chip.furniture import Furniture, furnished
 from core.chip.marks import words_stamp
+from core.chip.plan import PlateKind
 from core.chip.plate import checked_grid, distinct_steps, label_lines, steps_of, values_of
 from core.chip.plate_marks import plate_blocks
 from core.chip.ports import cut_shift_um, port_figures
 from core.chip.scene import Block, BlockKind, Figure, PlacedBlock, Scene
 from core.errors import CoreError, GeometryError
 from core.fabrication.making import scale_of
+from core.units import NM_PER_UM
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping
@@ -85,7 +86,7 @@ def chip_scene(
         if report is not None:
             report(number, len(distinct), "drawing chips")
         chips[each] = builder.chip(each)
-    if full.plate == "single chip":
+    if full.plate == PlateKind.SINGLE:
         return Scene(top=chips[steps[0]], scale=builder.scale)
     pitch, first = map(builder.on_grid, grid.pitch_um), map(builder.on_grid, grid.offset_um)
     (px, py), (x0, y0) = pitch, first
@@ -180,7 +181,15 @@ def furniture_of(
 
 
 def obstacles_of(plan: ChipPlan, channels: Mapping[str, ChannelParameters], process: Process) -> tuple[Obstacle, ...]:
-    """Return every channel of every copy of the chip at its place; those that cannot be built are left out."""
+    """Return every channel of every copy of the chip at its place; those that cannot be built are left out.
+
+    Parameters
+    ----------
+    plan : ChipPlan
+        With channels.
+    channels, process
+        As for ``chip_scene``.
+    """
     found: dict[tuple[int, ChannelParameters], Obstacle] = {}
     for steps in distinct_steps(plan):
         for number, entry in enumerate(plan.channels):
@@ -195,7 +204,7 @@ def obstacles_of(plan: ChipPlan, channels: Mapping[str, ChannelParameters], proc
 
 
 def _on_grid(length_um: float, grid_nm: int) -> float:
-    return round(round(length_um * 1000.0 / grid_nm) * grid_nm / 1000.0, 3)
+    return round(round(length_um * NM_PER_UM / grid_nm) * grid_nm / NM_PER_UM, 3)
 
 
 @lru_cache(maxsize=1024)
@@ -233,4 +242,4 @@ def _enlarged_block(block: Block, scale: float, grid_nm: int) -> Block:
 
 
 def _enlarged_figure(figure: Figure, scale: float) -> Figure:
-    return figure if scale == 1.0 else replace(figure, outline=enlarged(figure.outline, scale))
+    return figure if scale == 1.0 else replace(figure, outline=figure.outline.scaled(scale))

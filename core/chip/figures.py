@@ -60,16 +60,6 @@ def thick_line(points_um: Floats, thickness_um: float) -> Outline:
     return polygon(np.concatenate((points_um - offset, (points_um + offset)[::-1])))
 
 
-def enlarged(outline: Outline, factor: float) -> Outline:
-    """Return an area enlarged about the origin."""
-    return Outline(*_scaled_rings(outline, factor))
-
-
-def _scaled_rings(outline: Outline, factor: float) -> tuple[Contour, tuple[Contour, ...]]:
-    outer, *islands = (Contour(ring.vertices_um * factor, ring.bulges) for ring in outline.contours)
-    return outer, tuple(islands)
-
-
 def shifted_box(box_um: Box, dx_um: float, dy_um: float) -> Box:
     """Return a box moved by a shift."""
     x0, y0, x1, y1 = box_um

@@ -6,7 +6,7 @@ from dataclasses import replace
 from math import ceil
 from typing import TYPE_CHECKING
 
-from core.chip.bodies import channel_of, level_turn, wanted_body
+from core.chip.bodies import channel_of, level_turn, title_of, wanted_body
 from core.chip.packing import packing_of, with_all_sets
 from core.chip.plan import CHIP_FIELDS, PLACE_FIELDS
 from core.chip.plate import distinct_steps, label_lines, values_of
@@ -156,17 +156,18 @@ def rows_that_fit(plan: ChipPlan, entry: ChipChannel, channel: ChannelParameters
     int or None
         None when no number of rows does.
     """
-    room = tuple(size - 2.0 * plan.edge_clearance_um for size in (plan.chip_width_um, plan.chip_height_um))
+    room = _room_um(plan)
     stage = _stage_length_um(plan, entry, channel, process)
     for rows in range(1, min(int(PLACE_FIELDS["rows"].maximum), max(channel.stages, 1)) + 1):
         if (ceil(channel.stages / rows) - 1) * stage > room[0]:
             continue  # its stages alone are too long, leads and pads left aside
         size = _level_size_um(plan, replace(entry, rows=rows), channel, process)
-        if size is not None and size[0] <= room[0]:
-            if size[1] <= room[1]:
-                return rows
-            if rows > 1:
-                return None  # more rows are higher still
+        if size is None:
+            continue
+        if size[0] <= room[0] and size[1] <= room[1]:
+            return rows
+        if rows > 1 and size[1] > room[1]:
+            return None  # more rows are higher still
     return None
 
 
@@ -193,7 +194,44 @@ def _level_size_um(
     return x1 - x0, y1 - y0
 
 
-def folded(plan: ChipPlan, channels: Mapping[str, ChannelParameters], process: Process) -> ChipPlan:
+def too_large(plan: ChipPlan, channels: Mapping[str, ChannelParameters], process: Process) -> tuple[str, ...]:
+    """Return the titles of channels that do not fit the chip, folded as they are and turned level.
+
+    Parameters
+    ----------
+    plan : ChipPlan
+        The chip, with what is placed on it.
+    channels : mapping
+        Parameter sets by name.
+    process : Process
+        How the chip is made.
+
+    Returns
+    -------
+    tuple of str
+        Channels that cannot be built are not among them: they are findings of their own.
+    """
+    room = _room_um(plan)
+    titles = []
+    for entry in plan.channels:
+        try:
+            channel = channel_of(entry, channels)
+        except CoreError:
+            continue
+        size = _level_size_um(plan, entry, channel, process)
+        if size is not None and (size[0] > room[0] or size[1] > room[1]):
+            titles.append(title_of(entry))
+    return tuple(dict.fromkeys(titles))
+
+
+def _room_um(plan: ChipPlan) -> tuple[float, float]:
+    """Return width and height of the chip between its edge clearances [um]."""
+    return plan.chip_width_um - 2.0 * plan.edge_clearance_um, plan.chip_height_um - 2.0 * plan.edge_clearance_um
+
+
+def folded(
+    plan: ChipPlan, channels: Mapping[str, ChannelParameters], process: Process, *, chip_name: str = ""
+) -> ChipPlan:
     """Return the plan with channels that are longer than the chip folded into the fewest rows that fit, and packed.
 
     Parameters
@@ -204,6 +242,8 @@ def folded(plan: ChipPlan, channels: Mapping[str, ChannelParameters], process: P
         Parameter sets by name.
     process : Process
         How the chip is made.
+    chip_name : str
+        Name that is written on the chip when the plan has no label.
 
     Returns
     -------
@@ -215,4 +255,4 @@ def folded(plan: ChipPlan, channels: Mapping[str, ChannelParameters], process: P
     for entry in full.channels:
         rows = rows_that_fit(full, entry, channels[entry.set_name], process) if entry.set_name in channels else None
         entries.append(replace(entry, rows=rows) if rows and not entry.is_control else entry)
-    return packed(replace(full, channels=tuple(entries)), channels, process)
+    return packed(replace(full, channels=tuple(entries)), channels, process, chip_name=chip_name)

@@ -10,6 +10,7 @@ import numpy as np
 from core.chip.figures import Box, grown_box, rectangle, shifted_box
 from core.chip.free_space import Obstacle, free_places
 from core.chip.marks import MOST_UNITS, Stamp, corner_mark
+from core.chip.plan import CutLines
 from core.chip.scene import Figure, Layer, PlacedBlock
 
 if TYPE_CHECKING:
@@ -92,7 +93,7 @@ def furnished(plan: ChipPlan, stamps: Stamps, obstacles: Sequence[Obstacle], *, 
         right, near the centre line; words and bars along the edges, elsewhere if they must.
     """
     search = _Search(plan, stamps, obstacles)
-    if plan.cut_lines == "ticks":
+    if plan.cut_lines == CutLines.TICKS:
         search.corners("cutting ticks", "cut_lines", Layer.CUT, inset_um=0.0, arm=MOST_UNITS + 2)
     if plan.corner_marks == "yes":
         search.corners("corner marks", "corner_marks", Layer.MARKS, inset_um=2.0 * stamps.unit_um, arm=MOST_UNITS)
@@ -103,7 +104,7 @@ def furnished(plan: ChipPlan, stamps: Stamps, obstacles: Sequence[Obstacle], *, 
     if stamps.bars is not None:
         search.along_edges(stamps.bars, "test bars", "test_bars", is_upper=False, is_right=True)
     figures: tuple[Figure, ...] = ()
-    if plan.cut_lines == "outline":
+    if plan.cut_lines == CutLines.OUTLINE:
         figures = (Figure(layer=Layer.CUT, outline=rectangle(grown_box(chip_box(plan), cut_shift_um))),)
     return Furniture(placed=tuple(search.placed), figures=figures, label_at_um=label_at, missing=tuple(search.missing))
 
@@ -153,7 +154,10 @@ class _Search:
     def along_edges(self, stamp: Stamp, what: str, field: str, *, is_upper: bool, is_right: bool) -> None:
         """Put a mark along an edge, beginning in the given corner."""
         places = self._places(stamp.box_um, is_upper=is_upper, is_right=is_right)
-        if not self._put(stamp, places, within=self.within):
+        place = next(self._free(stamp, places, self.within), None)
+        if place is not None:
+            self._take(stamp, place, gap_um=self.stamps.word_gap_um)
+        else:
             self.missing.append(Missing(what=what, field=field, x_um=0.0, y_um=self.chip[3 if is_upper else 1]))
 
     def label(self) -> tuple[float, float] | None:
@@ -163,7 +167,7 @@ class _Search:
         places = self._places(box, is_upper=True, is_right=False)
         place = next(self._free(box, places, self.within), None)
         if place is not None:
-            self.taken.append(grown_box(shifted_box(box, *place), self.unit))
+            self.taken.append(grown_box(shifted_box(box, *place), self.stamps.word_gap_um))
         else:
             self.missing.append(Missing(what="label", field="text_height_um", x_um=0.0, y_um=self.chip[3]))
         return place
@@ -194,8 +198,9 @@ class _Search:
             places, box, taken=self.taken, obstacles=self.obstacles, within=within, clearance_um=self.stamps.gap_um
         )
 
-    def _take(self, stamp: Stamp, place: tuple[float, float]) -> None:
+    def _take(self, stamp: Stamp, place: tuple[float, float], *, gap_um: float | None = None) -> None:
+        """Place a mark and keep a gap round it: 0.99 units, or another one [um]."""
         at = round(place[0], 3), round(place[1], 3)
         self.placed.append(PlacedBlock(block=stamp.block, dx_um=at[0], dy_um=at[1]))
         for part in stamp.parts_um or (stamp.box_um,):
-            self.taken.append(grown_box(shifted_box(part, *at), 0.99 * self.unit))
+            self.taken.append(grown_box(shifted_box(part, *at), 0.99 * self.unit if gap_um is None else gap_um))

@@ -12,6 +12,7 @@ import numpy as np
 from core.chip.figures import polygon, thick_line
 from core.chip.glyphs import BETWEEN_SIGNS, LEAST_GAP, SPACE, STAND_INS, STROKE, STROKES, UNITS_HIGH
 from core.chip.scene import Block, BlockKind, Figure, Layer, PlacedBlock
+from core.units import NM_PER_UM
 
 if TYPE_CHECKING:
     from core.geometry.contour import Outline
@@ -100,7 +101,7 @@ def lettered(text: str, *, height_um: float) -> Lettering:
 def _sign_block(sign: str, height_um: float) -> tuple[Block, float]:
     """Return the block of a sign with its lower left corner at the origin, and its width [um]."""
     outlines = [_outline(stroke.split(), height_um / UNITS_HIGH) for stroke in STROKES[sign].split("|")]
-    name = f"SIGN_{ord(sign):X}_{round(height_um * 1000.0)}"
+    name = f"SIGN_{ord(sign):X}_{round(height_um * NM_PER_UM)}"
     figures = tuple(Figure(layer=Layer.TEXT, outline=outline) for outline in outlines)
     return Block(name=name, kind=BlockKind.SIGN, title=sign, figures=figures), max(
         outline.bounds_um[2] for outline in outlines

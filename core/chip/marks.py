@@ -14,7 +14,9 @@ from typing import TYPE_CHECKING
 from core.chip.figures import Box, polygon, rectangle
 from core.chip.lettering import lettered
 from core.chip.scene import Block, BlockKind, Figure, Layer, PlacedBlock
+from core.fabrication.choices import Allowance
 from core.fabrication.making import wall_shift_um
+from core.units import UM_PER_MM
 
 if TYPE_CHECKING:
     from collections.abc import Iterable
@@ -60,7 +62,7 @@ def finest_um(process: Process, *, depth_um: float) -> float:
         Largest depth on the chip. Marks and words are drawn as they shall be: unless the shop allows for it, walls
         of lines and gaps move by bias, undercut and kerf, and stay apart at four times that shift [um].
     """
-    by_shop = process.allowance == "by the shop"
+    by_shop = process.allowance == Allowance.BY_SHOP
     shift = 0.0 if by_shop else abs(wall_shift_um(process, depth_um=depth_um))
     return max(process.min_drawn_um, 4.0 * shift)
 
@@ -138,7 +140,7 @@ def _box_of(x_um: float, y_um: float) -> Box:
 
 
 def round_length_um(most_um: float) -> float:
-    """Return the longest of 1, 2 or 5 times a power of ten that is not above a length.
+    """Return the longest of 1, 2 or 5 times a power of ten that is not above a length [um].
 
     Examples
     --------
@@ -162,7 +164,7 @@ def scale_bar(*, length_um: float, unit_um: float, text_height_um: float) -> Sta
     """
     n, u = length_um, unit_um
     bar = polygon([(0, 0), (n, 0), (n, 3 * u), (n - u, 3 * u), (n - u, u), (u, u), (u, 3 * u), (0, 3 * u)])
-    words = f"{n / 1000.0:g} MM" if n >= 1000.0 else f"{n:g} UM"
+    words = f"{n / UM_PER_MM:g} MM" if n >= UM_PER_MM else f"{n:g} UM"
     return _with_words(_marks("SCALE_BAR", f"Scale bar, {words}", [bar]), (n, 3.0 * u), words, text_height_um)
 
 

@@ -109,6 +109,13 @@ def pair_findings(first: Stand, second: Stand, rules: Rules) -> Iterator[Finding
     """Yield what is wrong between two channels: the wall between them, or the clearance of their ports.
 
     Measured on the true outlines; boxes only tell which pairs are worth it.
+
+    Parameters
+    ----------
+    first, second : Stand
+        Two channels of one chip.
+    rules : Rules
+        The chip and its limits.
     """
     if not boxes_overlap(grown_box(first.box_um, rules.widest_um), second.box_um):
         return
@@ -183,19 +190,22 @@ def _way_apart(first: Stand, second: Stand, limit: float) -> tuple[float, float]
     if apart.um > 0.0:  # a shorter move, where walls are only near
         short = _up(limit - apart.um + SAME_UM)
         for sx, sy in ((0.0, 1.0), (0.0, -1.0), (1.0, 0.0), (-1.0, 0.0)):
-            trial = _shifted(second.outline, sx * short, sy * short)
+            trial = second.outline.placed(Placement(dx_um=sx * short, dy_um=sy * short))
             if short < abs(dx) + abs(dy) and wall_between(first.outline, trial).um >= limit:
                 return sx * short, sy * short
     return _up(dx), _up(dy)
 
 
-def _shifted(outline: Outline, dx_um: float, dy_um: float) -> Outline:
-    outer, *islands = (ring.placed(Placement(dx_um=dx_um, dy_um=dy_um)) for ring in outline.contours)
-    return Outline(outer, tuple(islands))
-
-
 def pitch_findings(first: Stand, second: Stand, rules: Rules) -> Iterator[Finding]:
-    """Yield the finding of two ports, of two channels or of one, that stand closer than the pitch."""
+    """Yield the finding of two ports that stand closer than the pitch.
+
+    Parameters
+    ----------
+    first, second : Stand
+        Two channels of one chip, or twice the same one for its own two ports.
+    rules : Rules
+        The chip and its limits.
+    """
     pitch = rules.plan.port_pitch_um
     pairs = [(0, 1)] if first is second else [(i, j) for i in (0, 1) for j in (0, 1)]
     apart = {(i, j): hypot(*(second.ports_um[j] - first.ports_um[i])) for i, j in pairs}

@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field
+from enum import StrEnum
 from typing import TYPE_CHECKING
 
 from core.errors import DesignValueError, did_you_mean
-from core.fields import CheckedValues, Field, table_of
+from core.fields import CheckedValues, Field, choice_field, length_field, table_of
 from core.parameters import CHANNEL_FIELDS
 
 if TYPE_CHECKING:
@@ -19,52 +20,67 @@ MOST_SERIES = 2
 LONGEST_WORDS = 60  # signs of a label or of a set's name
 
 
-def _um(
-    name: str, label: str, group: str, default: float, bounds: tuple[float, float], step: float, text: str
-) -> Field:
-    return Field(name=name, label=label, group=group, default=default, unit="um",
-                 minimum=bounds[0], maximum=bounds[1], step=step, help=text)  # fmt: skip
+class CutLines(StrEnum):
+    """What shows where a chip is cut."""
+
+    TICKS = "ticks"
+    OUTLINE = "outline"
+    NONE = "none"
 
 
-def _word(name: str, label: str, group: str, choices: tuple[str, ...], text: str) -> Field:
-    return Field(name=name, label=label, group=group, default=choices[0], choices=choices, help=text)
+class PlateKind(StrEnum):
+    """What is written at once."""
+
+    SINGLE = "single chip"
+    WAFER = "wafer"
+    PLATE = "plate"
 
 
 CHIP_FIELDS: dict[str, Field] = table_of(
-    _um("chip_width_um", "Chip width", CHIP, 40000.0, (500.0, 500000.0), 1000.0, "Outline of the chip along x."),
-    _um("chip_height_um", "Chip height", CHIP, 20000.0, (500.0, 500000.0), 1000.0, "Outline of the chip along y."),
-    _um("edge_clearance_um", "Edge clearance", CHIP, 1000.0, (0.0, 50000.0), 100.0,
-        "Solid left between the chip's edge and any channel or port."),
-    _um("spacing_um", "Channel spacing", CHIP, 1000.0, (0.0, 50000.0), 100.0,
-        "Solid left between neighbouring channels when they are packed."),
-    _um("port_diameter_um", "Port diameter", PORTS, 1000.0, (10.0, 20000.0), 50.0, "Round hole at every open end."),
-    _um("pad_margin_um", "Pad margin", PORTS, 250.0, (0.0, 10000.0), 50.0,
-        "Ring of channel around a port, so that a hole that is a little off still meets the channel."),
-    _um("port_pitch_um", "Port pitch", PORTS, 0.0, (0.0, 100000.0), 250.0,
-        "Smallest distance from centre to centre of two ports; 0 where any clearance will do."),
-    _um("port_clearance_um", "Port clearance", PORTS, 500.0, (0.0, 50000.0), 100.0,
-        "Solid left between a port's pad and another port or a channel that is not its own."),
+    length_field("chip_width_um", "Chip width", CHIP, 40000.0, (500.0, 500000.0), 1000.0,
+                 "Outline of the chip along x."),
+    length_field("chip_height_um", "Chip height", CHIP, 20000.0, (500.0, 500000.0), 1000.0,
+                 "Outline of the chip along y."),
+    length_field("edge_clearance_um", "Edge clearance", CHIP, 1000.0, (0.0, 50000.0), 100.0,
+                 "Solid left between the chip's edge and any channel or port."),
+    length_field("spacing_um", "Channel spacing", CHIP, 1000.0, (0.0, 50000.0), 100.0,
+                 "Solid left between neighbouring channels when they are packed."),
+    length_field("port_diameter_um", "Port diameter", PORTS, 1000.0, (10.0, 20000.0), 50.0,
+                 "Round hole at every open end."),
+    length_field("pad_margin_um", "Pad margin", PORTS, 250.0, (0.0, 10000.0), 50.0,
+                 "Ring of channel around a port, so that a hole that is a little off still meets the channel."),
+    length_field("port_pitch_um", "Port pitch", PORTS, 0.0, (0.0, 100000.0), 250.0,
+                 "Smallest distance from centre to centre of two ports; 0 where any clearance will do."),
+    length_field("port_clearance_um", "Port clearance", PORTS, 500.0, (0.0, 50000.0), 100.0,
+                 "Solid left between a port's pad and another port or a channel that is not its own."),
     Field(name="alignment_pairs", label="Alignment marks", group=FURNITURE, default=1, minimum=0, maximum=4, step=1,
           whole=True, help="Pairs of alignment marks, one pair for every further layer; 0 for none."),
-    _word("corner_marks", "Corner marks", FURNITURE, YES_NO, "Marks at the four corners of the chip."),
-    _word("cut_lines", "Cutting", FURNITURE, ("ticks", "outline", "none"),
-          "Short ticks where the chip is cut, its closed outline, or nothing."),
-    _word("scale_bar", "Scale bar", FURNITURE, YES_NO, "A bar of known length, to check the scale on the part."),
-    _word("test_bars", "Test bars", FURNITURE, YES_NO, "Lines and gaps of the critical widths, to measure."),
-    _um("text_height_um", "Lettering", FURNITURE, 800.0, (20.0, 20000.0), 100.0, "Height of capitals."),
-    _word("plate", "Plate", PLATE, ("single chip", "wafer", "plate"), "One chip, or copies over a wafer or a plate."),
-    _um("wafer_diameter_um", "Wafer diameter", PLATE, 100000.0, (10000.0, 450000.0), 1000.0, "Of a round wafer."),
-    _um("plate_width_um", "Plate width", PLATE, 120000.0, (1000.0, 1000000.0), 1000.0, "Of a square plate, along x."),
-    _um("plate_height_um", "Plate height", PLATE, 120000.0, (1000.0, 1000000.0), 1000.0,
-        "Of a square plate, along y."),
-    _um("edge_exclusion_um", "Edge exclusion", PLATE, 4000.0, (0.0, 50000.0), 500.0, "Rim kept free of chips."),
-    _um("street_um", "Street", PLATE, 200.0, (0.0, 20000.0), 50.0, "Free strip between chips, for saw or blade."),
+    choice_field("corner_marks", "Corner marks", FURNITURE, YES_NO, "Marks at the four corners of the chip."),
+    choice_field("cut_lines", "Cutting", FURNITURE, CutLines,
+                 "Short ticks where the chip is cut, its closed outline, or nothing."),
+    choice_field("scale_bar", "Scale bar", FURNITURE, YES_NO, "A bar of known length, to check the scale on the part."),
+    choice_field("test_bars", "Test bars", FURNITURE, YES_NO, "Lines and gaps of the critical widths, to measure."),
+    length_field("text_height_um", "Lettering", FURNITURE, 800.0, (20.0, 20000.0), 100.0, "Height of capitals."),
+    choice_field("plate", "Plate", PLATE, PlateKind,
+                 "One chip, or copies over a wafer or a plate."),
+    length_field("wafer_diameter_um", "Wafer diameter", PLATE, 100000.0, (10000.0, 450000.0), 1000.0,
+                 "Of a round wafer."),
+    length_field("plate_width_um", "Plate width", PLATE, 120000.0, (1000.0, 1000000.0), 1000.0,
+                 "Of a square plate, along x."),
+    length_field("plate_height_um", "Plate height", PLATE, 120000.0, (1000.0, 1000000.0), 1000.0,
+                 "Of a square plate, along y."),
+    length_field("edge_exclusion_um", "Edge exclusion", PLATE, 4000.0, (0.0, 50000.0), 500.0,
+                 "Rim kept free of chips."),
+    length_field("street_um", "Street", PLATE, 200.0, (0.0, 20000.0), 50.0,
+                 "Free strip between chips, for saw or blade."),
 )  # fmt: skip
 
 
 PLACE_FIELDS: dict[str, Field] = table_of(
-    _um("x_um", "Across", PLACE, 0.0, (-500000.0, 500000.0), 100.0, "Middle of the channel, from the chip's middle."),
-    _um("y_um", "Up", PLACE, 0.0, (-500000.0, 500000.0), 100.0, "Middle of the channel, from the chip's middle."),
+    length_field("x_um", "Across", PLACE, 0.0, (-500000.0, 500000.0), 100.0,
+                 "Middle of the channel, from the chip's middle."),
+    length_field("y_um", "Up", PLACE, 0.0, (-500000.0, 500000.0), 100.0,
+                 "Middle of the channel, from the chip's middle."),
     Field(name="turn_deg", label="Turn", group=PLACE, default=0.0, unit="deg", minimum=-360.0, maximum=360.0, step=1.0,
           help="Turn from the drawing of the set, counter-clockwise."),
     Field(name="rows", label="Rows", group=PLACE, default=1, minimum=1, maximum=20, step=1, whole=True,
@@ -214,11 +230,11 @@ class ChipPlan(CheckedValues):
     port_clearance_um: float = 500.0
     alignment_pairs: int = 1
     corner_marks: str = "yes"
-    cut_lines: str = "ticks"
+    cut_lines: str = str(CutLines.TICKS)
     scale_bar: str = "yes"
     test_bars: str = "yes"
     text_height_um: float = 800.0
-    plate: str = "single chip"
+    plate: str = str(PlateKind.SINGLE)
     wafer_diameter_um: float = 100000.0
     plate_width_um: float = 120000.0
     plate_height_um: float = 120000.0

@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from core.chip.plan import PlateKind
 from core.errors import GeometryError
 
 if TYPE_CHECKING:
@@ -44,8 +45,8 @@ class PlateGrid:
         return len(self.columns)
 
 
-def chip_centres(plan: ChipPlan) -> Floats:
-    """Return the middle of every copy of the chip, shape (n, 2) [um].
+def plate_grid(plan: ChipPlan) -> PlateGrid:
+    """Return the copies of a chip on its plate; none if not even one fits.
 
     Parameters
     ----------
@@ -54,16 +55,11 @@ def chip_centres(plan: ChipPlan) -> Floats:
         the natural grids (a chip or a street in the middle, along and across) the one that holds most is taken.
         On a square plate the copies are centred within the edge exclusion.
     """
-    return plate_grid(plan).centres_um
-
-
-def plate_grid(plan: ChipPlan) -> PlateGrid:
-    """Return the copies of a chip on its plate; none if not even one fits."""
     width, height, street = plan.chip_width_um, plan.chip_height_um, plan.street_um
-    if plan.plate == "single chip":
+    if plan.plate == PlateKind.SINGLE:
         return _grid([1], (0.0, 0.0), (width, height))
     pitch = (width + street, height + street)
-    if plan.plate == "plate":
+    if plan.plate == PlateKind.PLATE:
         free = (plan.plate_width_um - 2.0 * plan.edge_exclusion_um, plan.plate_height_um - 2.0 * plan.edge_exclusion_um)
         columns, rows = (max(0, floor((room + street) / step + _SLACK)) for room, step in zip(free, pitch, strict=True))
         return _grid([columns] * rows, (0.0, -0.5 * (rows - 1) * pitch[1]), pitch)
@@ -128,7 +124,7 @@ def steps_of(plan: ChipPlan, grid: PlateGrid) -> list[tuple[int, ...]]:
     The first series steps from column to column from the left, the second from row to row from below; both begin
     again where the plate is larger than the series. A single chip has no series.
     """
-    if plan.plate == "single chip":
+    if plan.plate == PlateKind.SINGLE:
         return [()] * len(grid)
     ways = zip(plan.series, (grid.columns, grid.rows), strict=False)
     stepped = [(place % series.steps).tolist() for series, place in ways]
@@ -141,7 +137,17 @@ def values_of(plan: ChipPlan, steps: tuple[int, ...]) -> dict[str, Value]:
 
 
 def label_lines(plan: ChipPlan, chip_name: str, steps: tuple[int, ...]) -> tuple[str, ...]:
-    """Return the words on a chip: its label, then one line for each stepped value."""
+    """Return the words on a chip: its label, then one line for each stepped value.
+
+    Parameters
+    ----------
+    plan : ChipPlan
+        The chip.
+    chip_name : str
+        Stands where the plan has no label.
+    steps : tuple of int
+        Which value of each series this chip has; see ``steps_of``.
+    """
     lines = [
         f"{series.field.label} {series.values[step]:g} {series.field.unit}".strip()
         for series, step in zip(plan.series, steps, strict=False)

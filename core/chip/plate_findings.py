@@ -10,10 +10,11 @@ from typing import TYPE_CHECKING
 from core.chip.build import furniture_of
 from core.chip.lettering import THINNEST, drawable
 from core.chip.marks import finest_um
-from core.chip.plan import CHIP_FIELDS
+from core.chip.plan import CHIP_FIELDS, CutLines, PlateKind
 from core.chip.plate import MOST_CHIPS, distinct_steps, label_lines, plate_grid
 from core.chip.ports import cut_shift_um
 from core.findings import Finding, Severity
+from core.units import UM_PER_MM
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterator, Mapping
@@ -29,12 +30,12 @@ _USUAL_STREET_UM = 200.0  # of a saw; common practice
 
 def plate_findings(plan: ChipPlan, process: Process) -> Iterator[Finding]:
     """Yield what is wrong between a chip and its plate, and with its series."""
-    if plan.plate == "single chip":
+    if plan.plate == PlateKind.SINGLE:
         if plan.series:
             yield _warning(
                 "series_unused", "plate", "a stepped series needs a wafer or a plate of chips; one chip has the values "
                 "of its sets alone; set plate to wafer or plate, or take the series away",
-                cure=_tried(plan, "plate", "wafer", lambda changed: len(plate_grid(changed)) > 1),
+                cure=_tried(plan, "plate", PlateKind.WAFER, lambda changed: len(plate_grid(changed)) > 1),
             )  # fmt: skip
         return
     count = len(plate_grid(plan))
@@ -54,13 +55,13 @@ def plate_findings(plan: ChipPlan, process: Process) -> Iterator[Finding]:
 
 def _no_chip_fits(plan: ChipPlan) -> Finding:
     wide, high, rim = plan.chip_width_um, plan.chip_height_um, 2.0 * plan.edge_exclusion_um
-    if plan.plate == "wafer":
+    if plan.plate == PlateKind.WAFER:
         field, value, limit = "wafer_diameter_um", hypot(wide, high) + rim, plan.wafer_diameter_um
     elif wide + rim > plan.plate_width_um:
         field, value, limit = "plate_width_um", wide + rim, plan.plate_width_um
     else:
         field, value, limit = "plate_height_um", high + rim, plan.plate_height_um
-    cure = _tried(plan, field, ceil(value / 1000.0) * 1000.0, lambda changed: len(plate_grid(changed)) > 0)
+    cure = _tried(plan, field, ceil(value / UM_PER_MM) * UM_PER_MM, lambda changed: len(plate_grid(changed)) > 0)
     return Finding(
         code="chip_larger_than_plate", severity=Severity.ERROR, field=field, value_um=value, limit_um=limit, cure=cure,
         message=f"not one chip of {wide:g} x {high:g} um fits on the {plan.plate}: with edge_exclusion_um "
@@ -72,8 +73,8 @@ def _no_chip_fits(plan: ChipPlan) -> Finding:
 
 def _streets(plan: ChipPlan, process: Process) -> Iterator[Finding]:
     """Yield the finding of cutting lines of neighbouring chips that fall on one another."""
-    grown = 2.0 * cut_shift_um(process) if plan.cut_lines == "outline" else 0.0
-    if plan.cut_lines == "none" or plan.street_um > grown or len(plate_grid(plan)) == 1:
+    grown = 2.0 * cut_shift_um(process) if plan.cut_lines == CutLines.OUTLINE else 0.0
+    if plan.cut_lines == CutLines.NONE or plan.street_um > grown or len(plate_grid(plan)) == 1:
         return
     value = max(_USUAL_STREET_UM, ceil(grown + process.min_wall_um))
     yield Finding(
@@ -100,7 +101,19 @@ def _series(plan: ChipPlan) -> Iterator[Finding]:
 def word_findings(
     plan: ChipPlan, channels: Mapping[str, ChannelParameters], process: Process, *, chip_name: str
 ) -> Iterator[Finding]:
-    """Yield what is wrong with the words and marks of a chip."""
+    """Yield what is wrong with the words and marks of a chip.
+
+    Parameters
+    ----------
+    plan : ChipPlan
+        With channels.
+    channels : mapping
+        Parameter sets by name, as wanted.
+    process : Process
+        How the chip is made.
+    chip_name : str
+        Written on the chip where the plan has no label.
+    """
     _, unknown = drawable(" ".join(label_lines(plan, chip_name, distinct_steps(plan)[0])))
     if unknown:
         yield _warning(

@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING
 
 from core.chip.lettering import lettered
 from core.chip.marks import MOST_UNITS, corner_mark, mark_unit_um
+from core.chip.plan import PlateKind
 from core.chip.scene import PlacedBlock
 
 if TYPE_CHECKING:
@@ -33,7 +34,7 @@ def plate_blocks(plan: ChipPlan, process: Process, *, chip_name: str, scale: flo
         Factor of the whole scene.
     """
     unit = mark_unit_um(process, depth_um=0.0)
-    if plan.plate == "wafer":
+    if plan.plate == PlateKind.WAFER:
         half = (0.5 * plan.wafer_diameter_um, 0.5 * plan.wafer_diameter_um)
         rim = TITLE_HEIGHT_UM / _SHARE
     else:
@@ -41,7 +42,7 @@ def plate_blocks(plan: ChipPlan, process: Process, *, chip_name: str, scale: flo
         rim = plan.edge_exclusion_um
     marks: list[PlacedBlock] = []
     arm = MOST_UNITS * unit
-    if plan.corner_marks == "yes" and (plan.plate == "wafer" or rim >= arm + 2.0 * unit):
+    if plan.corner_marks == "yes" and (plan.plate == PlateKind.WAFER or rim >= arm + 2.0 * unit):
         for across in (-1, 1):
             for up in (-1, 1):
                 stamp = corner_mark(arm_um=arm, unit_um=unit, across=across, up=up)
@@ -53,7 +54,7 @@ def plate_blocks(plan: ChipPlan, process: Process, *, chip_name: str, scale: flo
         line = lettered(title, height_um=height)
         right = left + line.width_um
         far = half[0] - arm
-        if plan.plate == "wafer":
+        if plan.plate == PlateKind.WAFER:
             far = -((half[0] ** 2 - min(0.0, low + height) ** 2) ** 0.5)
         if right <= far and low + height <= -half[1] + rim - unit:
             return marks + [PlacedBlock(block=s.block, dx_um=left + s.dx_um, dy_um=low) for s in line.placed]

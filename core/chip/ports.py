@@ -9,6 +9,7 @@ import numpy as np
 
 from core.chip.figures import circle, polygon
 from core.chip.scene import Figure, Layer
+from core.fabrication.choices import Allowance
 from core.fabrication.process import ProcessKind
 
 if TYPE_CHECKING:
@@ -57,7 +58,7 @@ def cut_shift_um(process: Process) -> float:
     Bias and half the kerf, as for channels; not the undercut, which grows with the depth of the channel and
     does not hold for a hole through the whole part. Nothing where the drawing does not allow for it.
     """
-    if process.allowance != "in the drawing" or port_way(process) is not PortWay.CUT:
+    if process.allowance != Allowance.IN_DRAWING or port_way(process) is not PortWay.CUT:
         return 0.0
     return process.bias_um + 0.5 * process.kerf_um
 

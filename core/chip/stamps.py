@@ -50,6 +50,7 @@ class Stamps:
 
     unit_um: float
     gap_um: float  # between marks and channels
+    word_gap_um: float  # between words that belong to different things: one height of their letters
     pairs: tuple[Stamp, ...]
     label_um: tuple[float, float]
     scale_bar: Stamp | None
@@ -67,7 +68,7 @@ class Stamps:
     @property
     def least_width_um(self) -> float:
         """Width of a chip on which label, and scale bar beside test bars, have room between the corner marks [um]."""
-        low = sum(stamp.box_um[2] + 2.0 * self.unit_um for stamp in (self.scale_bar, self.bars) if stamp)
+        low = sum(stamp.box_um[2] + self.word_gap_um for stamp in (self.scale_bar, self.bars) if stamp)
         return max(self.label_um[0], low) + 2.0 * (MOST_UNITS + 4) * self.unit_um
 
 
@@ -103,7 +104,10 @@ def stamps_of(
             length_um=max(6.0 * unit, text), text_height_um=text,
         )  # fmt: skip
     gap = max(process.min_wall_um, unit)
-    return Stamps(unit_um=unit, gap_um=gap, pairs=tuple(pairs), label_um=label_um, scale_bar=bar, bars=bars)
+    return Stamps(
+        unit_um=unit, gap_um=gap, word_gap_um=max(text, unit), pairs=tuple(pairs), label_um=label_um,
+        scale_bar=bar, bars=bars,
+    )  # fmt: skip
 
 
 def label_size_um(labels: Iterable[tuple[str, ...]], *, height_um: float) -> tuple[float, float]:

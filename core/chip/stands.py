@@ -53,9 +53,7 @@ class Stand:
     @cached_property
     def outline(self) -> Outline:
         """Its area at its place."""
-        move = Placement(dx_um=self.at_um[0], dy_um=self.at_um[1])
-        outer, *islands = (ring.placed(move) for ring in self.body.outline.contours)
-        return Outline(outer, tuple(islands))
+        return self.body.outline.placed(Placement(dx_um=self.at_um[0], dy_um=self.at_um[1]))
 
     @cached_property
     def box_um(self) -> Box:
@@ -94,6 +92,15 @@ def stands_of(
     """Yield for each different chip of the plate its channels in the order of the plan, or why one cannot be built.
 
     Channels of sets that are not there are left out.
+
+    Parameters
+    ----------
+    plan : ChipPlan
+        With channels.
+    channels : mapping
+        Parameter sets by name, as wanted.
+    process : Process
+        How the chip is made.
     """
     titles = _titles(plan)
     for steps in distinct_steps(plan):

@@ -13,6 +13,7 @@ from core.fabrication.existence import RADII, SAME_UM, WIDTHS
 from core.fabrication.making import Making, making_of
 from core.geometry.clearances import Gap, narrowest_gap
 from core.geometry.shape import ChannelShape, build_shape
+from core.units import NM_PER_UM
 
 if TYPE_CHECKING:
     from core.fabrication.process import Process
@@ -96,7 +97,7 @@ class ChannelCase:
     @property
     def grid_limit_um(self) -> float:
         """The shortest length that the drawing grid holds well [um]."""
-        return 1e-3 * self.process.grid_nm * FEWEST_STEPS
+        return self.process.grid_nm / NM_PER_UM * FEWEST_STEPS
 
     @cached_property
     def _gap(self) -> Gap | None:

@@ -5,8 +5,9 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from core.fabrication.channel_case import FEWEST_STEPS
+from core.fabrication.choices import Allowance, ToolRuns
 from core.fabrication.existence import RADII, SAME_UM
-from core.fabrication.making import IN_DRAWING, smallest_radius_um, wall_shift_um
+from core.fabrication.making import smallest_radius_um, wall_shift_um
 from core.fabrication.objection import Objection, gap_objection, too_short
 from core.findings import Finding, Severity
 from core.parameters import CHANNEL_FIELDS
@@ -53,7 +54,7 @@ def check_shapes(case: ChannelCase) -> Iterator[Objection]:
 def check_widths(case: ChannelCase) -> Iterator[Objection]:
     """Yield widths that come out narrower than the process or its tool can make."""
     process = case.process
-    tool = process.tool_diameter_um if process.tool_runs == "in the channel" else 0.0
+    tool = process.tool_diameter_um if process.tool_runs == ToolRuns.IN_CHANNEL else 0.0
     is_tool = tool > process.min_width_um
     limit = max(tool, process.min_width_um)
     for name in case.widths:
@@ -150,7 +151,7 @@ def check_grid(case: ChannelCase) -> Iterator[Objection]:
 def _depths_for(case: ChannelCase, name: str, least_um: float) -> tuple[tuple[str, float], ...]:
     """Return the depth at which a width on the drawing is the least there may be, where the depth decides it."""
     process = case.process
-    if process.undercut_ratio == 0.0 or process.allowance != IN_DRAWING:
+    if process.undercut_ratio == 0.0 or process.allowance != Allowance.IN_DRAWING:
         return ()
     room = 0.5 * (getattr(case.wanted, name) - least_um) - process.bias_um - 0.5 * process.kerf_um
     return (("depth_um", room / process.undercut_ratio),) if room > 0.0 else ()

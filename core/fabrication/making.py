@@ -12,6 +12,7 @@ from __future__ import annotations
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
+from core.fabrication.choices import Allowance, ToolRuns
 from core.fabrication.existence import RADII, SAME_UM, STEPS, WIDTHS, what_cannot_exist
 from core.fabrication.section import side_loss_um, stand_in_note
 
@@ -22,7 +23,6 @@ if TYPE_CHECKING:
     from core.findings import Finding
     from core.parameters import ChannelParameters
 
-IN_DRAWING, BY_SHOP = "in the drawing", "by the shop"
 _NOISE_UM = 1e-9  # of adding and taking away
 
 
@@ -94,62 +94,8 @@ def smallest_radius_um(process: Process) -> float:
     A tool that runs outside the channel, round a raised mould, cannot reach deeper into a corner than its own
     radius. One that runs in the channel goes round such corners and can leave them sharp.
     """
-    runs_outside = process.tool_runs == "outside the channel"
+    runs_outside = process.tool_runs == ToolRuns.OUTSIDE_CHANNEL
     return max(process.min_radius_um, 0.5 * process.tool_diameter_um if runs_outside else 0.0)
-
-
-def moved(channel: ChannelParameters, outwards_um: float) -> ChannelParameters:
-    """Return the channel whose walls are those of another, all moved by one distance.
-
-    Parameters
-    ----------
-    channel : ChannelParameters
-        Any. Of a plain channel without stages only the width counts.
-    outwards_um : float
-        Shift of every wall into the solid; negative: into the channel [um].
-
-    Returns
-    -------
-    ChannelParameters
-        Widths changed by twice the shift, radii by the shift the other way, none below 0.
-
-    Raises
-    ------
-    DesignValueError
-        If a width or radius leaves the bounds that any channel has.
-    """
-    if outwards_um == 0.0:
-        return channel
-    values = {name: getattr(channel, name) + 2.0 * outwards_um for name in WIDTHS[: 2 if channel.stages else 1]}
-    if channel.stages:
-        values |= {name: max(getattr(channel, name) - outwards_um, 0.0) for name in RADII}
-    return replace(channel, **values)
-
-
-def as_made(drawn: ChannelParameters, process: Process) -> ChannelParameters:
-    """Return what the process makes of a given drawing.
-
-    Parameters
-    ----------
-    drawn : ChannelParameters
-        What is on the mask, before scaling.
-    process : Process
-        How it is made. When the shop allows for bias, undercut and kerf, walls come out where they are drawn.
-
-    Returns
-    -------
-    ChannelParameters
-        Walls moved outwards by ``wall_shift_um``, then no corner sharper than ``smallest_radius_um``.
-
-    Raises
-    ------
-    DesignValueError
-        If nothing is left of a width, or it leaves the bounds that any channel has.
-    """
-    made = moved(drawn, 0.0 if process.allowance == BY_SHOP else wall_shift_um(process, depth_um=drawn.depth_um))
-    least = smallest_radius_um(process)
-    sharp = {name: least for name in RADII if getattr(made, name) < least}
-    return replace(made, **sharp) if sharp else made  # type: ignore[arg-type]  # radii are floats
 
 
 def making_of(channel: ChannelParameters, process: Process) -> Making:
@@ -183,8 +129,8 @@ def _ways(channel: ChannelParameters, process: Process) -> dict[str, dict[str, f
     """Return the lengths that change on the way to the part: field -> step -> value [um]."""
     shift = wall_shift_um(process, depth_um=channel.depth_um)
     half_loss = 0.5 * side_loss_um(process, depth_um=channel.depth_um)
-    to_drawn = -shift if process.allowance == IN_DRAWING else 0.0
-    to_made = to_drawn if process.allowance == BY_SHOP else to_drawn + shift
+    to_drawn = -shift if process.allowance == Allowance.IN_DRAWING else 0.0
+    to_made = to_drawn if process.allowance == Allowance.BY_SHOP else to_drawn + shift
     least = smallest_radius_um(process)
     ways: dict[str, dict[str, float]] = {}
     for name in WIDTHS[: 2 if channel.stages else 1]:
@@ -227,8 +173,9 @@ def _notes(wanted: ChannelParameters, made: ChannelParameters, process: Process,
 def _shift_note(process: Process, shift_um: float) -> str:
     wider = f"{2.0 * abs(shift_um):.6g} um {'wider' if shift_um > 0.0 else 'narrower'}"
     who = {
-        IN_DRAWING: "the drawing allows for it",
-        BY_SHOP: "the shop allows for it, and the drawing shows the walls as wanted",
-    }.get(process.allowance, f"nobody allows for it: channels come out {wider} than drawn")
+        Allowance.IN_DRAWING: "the drawing allows for it",
+        Allowance.BY_SHOP: "the shop allows for it, and the drawing shows the walls as wanted",
+        Allowance.NOT_AT_ALL: f"nobody allows for it: channels come out {wider} than drawn",
+    }[Allowance(process.allowance)]
     way = "outwards" if shift_um > 0.0 else "inwards"
     return f"every wall moves {abs(shift_um):.6g} um {way} in making (bias, undercut and half the kerf); {who}"

@@ -47,7 +47,27 @@ def too_short(
     per_um: float = 1.0, severity: Severity = Severity.ERROR, also: tuple[tuple[str, float], ...] = (),
     is_depth_first: bool = False,
 ) -> Iterator[Objection]:  # fmt: skip
-    """Yield the objection to a width below its limit, if it is; ``per_um``: how much it grows with the field."""
+    """Yield the objection to a width below its limit, if it is.
+
+    Parameters
+    ----------
+    case : ChannelCase
+        The channel and its process.
+    name : str
+        Field of the width.
+    value, limit : float
+        The width, as drawn or as made, and the least it may be [um].
+    code, severity, way_out
+        As for ``Finding`` and ``Objection``.
+    words : str
+        What is wrong, with ``{value}`` and ``{limit}`` where the numbers go.
+    per_um : float
+        How much the width grows with its field: the scale, for a width on the drawing.
+    also : tuple of (str, float)
+        Further fields and values that ought to cure it.
+    is_depth_first : bool
+        True: a depth lower in the same proportion is tried before a wider channel.
+    """
     if case.making.findings or value >= limit - SAME_UM:
         return
     wider = (name, getattr(case.wanted, name) + (limit - value) / per_um)
@@ -66,7 +86,19 @@ def too_short(
 def placed(
     case: ChannelCase, name: str, value: float, *, code: str, limit: float, severity: Severity, message: str
 ) -> Finding:
-    """Return a finding about a width, with a place on the drawing."""
+    """Return a finding about a width, with a place on the drawing.
+
+    Parameters
+    ----------
+    case : ChannelCase
+        The channel and its process.
+    name : str
+        Field of the width.
+    value, limit : float
+        The width and its limit [um].
+    code, severity, message
+        As for ``Finding``.
+    """
     ends = case.width_ends(name, getattr(case.making.made, name))
     return Finding(
         code=code, severity=severity, message=message, field=name, value_um=value, limit_um=limit, ends_um=ends,
@@ -79,7 +111,21 @@ def gap_objection(
     case: ChannelCase, code: str, value: float, limit: float, words: str, way_out: str, *,
     severity: Severity = Severity.ERROR, values: tuple[tuple[str, float], ...] = (),
 ) -> Objection:  # fmt: skip
-    """Return the objection to the narrowest gap; ``values``: what to try before fields are searched."""
+    """Return the objection to the narrowest gap.
+
+    Parameters
+    ----------
+    case : ChannelCase
+        The channel and its process.
+    code, severity, way_out
+        As for ``Finding`` and ``Objection``.
+    value, limit : float
+        The gap, as drawn or as made, and the least it may be [um].
+    words : str
+        What is wrong, with ``{value}`` where the number goes.
+    values : tuple of (str, float)
+        What to try before fields are searched.
+    """
     ends, in_island = case.gap_ends, case.is_gap_in_island
     searched = (*_ISLAND_FIELDS, *_OUTER_FIELDS) if in_island else (*_OUTER_FIELDS, *_ISLAND_FIELDS)
     where = "the solid of an island" if in_island else "the solid between two parts of the channel"

@@ -10,7 +10,8 @@ from enum import StrEnum
 from typing import TYPE_CHECKING, NoReturn
 
 from core.errors import DesignValueError
-from core.fields import CheckedValues, Field, table_of
+from core.fabrication.choices import Allowance, CopyMode, DxfVersion, IslandMode, ReadingSide, Tone, ToolRuns
+from core.fields import CheckedValues, Field, choice_field, length_field, table_of
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -40,36 +41,26 @@ MILLED_KINDS = frozenset({ProcessKind.MILLED_CHANNEL, ProcessKind.MILLED_MOULD})
 STIFF_KINDS = ETCHED_KINDS | {ProcessKind.LASER_ACRYLIC, ProcessKind.MILLED_CHANNEL}
 CUT_KINDS = frozenset({ProcessKind.LASER_ACRYLIC, ProcessKind.LASER_FILM, ProcessKind.KNIFE_FILM})
 
-_CUT_TONE = "drawn lines are CUT"
-_TOOL_SIDE = "as seen from the side where the tool enters"
 
-
-def _um(
-    name: str, label: str, group: str, default: float, bounds: tuple[float, float], step: float, text: str
-) -> Field:
-    return Field(name=name, label=label, group=group, default=default, unit="um",
-                 minimum=bounds[0], maximum=bounds[1], step=step, help=text)  # fmt: skip
-
-
-def _word(name: str, label: str, group: str, choices: tuple[str, ...], text: str) -> Field:
-    return Field(name=name, label=label, group=group, default=choices[0], choices=choices, help=text)
+def tool_runs_of(kind: ProcessKind) -> ToolRuns:
+    """Return where a tool runs: round the channels of a raised mould, else in the channel itself."""
+    return ToolRuns.OUTSIDE_CHANNEL if kind is ProcessKind.MILLED_MOULD else ToolRuns.IN_CHANNEL
 
 
 PROCESS_FIELDS: dict[str, Field] = table_of(
-    Field(name="kind", label="Process", group=LIMITS, default=str(ProcessKind.CAST_FILM),
-          choices=tuple(map(str, ProcessKind)), help="How the chip is made."),
-    _um("min_width_um", "Smallest width", LIMITS, 50.0, (0.1, 5000.0), 5.0,
-        "Narrowest channel that comes out reliably."),
-    _um("min_gap_um", "Smallest gap", LIMITS, 50.0, (0.1, 5000.0), 5.0,
-        "Narrowest solid between two walls of one channel, an island's neck for instance."),
-    _um("min_wall_um", "Smallest wall", LIMITS, 200.0, (0.1, 10000.0), 50.0,
-        "Narrowest solid between two channels, or between a channel and a foreign port, that keeps tight."),
-    _um("min_drawn_um", "Smallest drawn feature", LIMITS, 48.0, (0.1, 5000.0), 5.0,
-        "Narrowest line or gap on the mask or tool path itself, after all compensation."),
-    _um("min_radius_um", "Smallest radius", LIMITS, 8.0, (0.0, 5000.0), 1.0,
-        "Corners come out at least this round, whatever is drawn."),
-    _um("min_depth_um", "Smallest depth", DEPTHS, 5.0, (0.1, 10000.0), 5.0, "Shallowest channel."),
-    _um("max_depth_um", "Largest depth", DEPTHS, 200.0, (0.1, 10000.0), 10.0, "Deepest channel."),
+    choice_field("kind", "Process", LIMITS, ProcessKind, "How the chip is made."),
+    length_field("min_width_um", "Smallest width", LIMITS, 50.0, (0.1, 5000.0), 5.0,
+                 "Narrowest channel that comes out reliably."),
+    length_field("min_gap_um", "Smallest gap", LIMITS, 50.0, (0.1, 5000.0), 5.0,
+                 "Narrowest solid between two walls of one channel, an island's neck for instance."),
+    length_field("min_wall_um", "Smallest wall", LIMITS, 200.0, (0.1, 10000.0), 50.0,
+                 "Narrowest solid between two channels, or between a channel and a foreign port, that keeps tight."),
+    length_field("min_drawn_um", "Smallest drawn feature", LIMITS, 48.0, (0.1, 5000.0), 5.0,
+                 "Narrowest line or gap on the mask or tool path itself, after all compensation."),
+    length_field("min_radius_um", "Smallest radius", LIMITS, 8.0, (0.0, 5000.0), 1.0,
+                 "Corners come out at least this round, whatever is drawn."),
+    length_field("min_depth_um", "Smallest depth", DEPTHS, 5.0, (0.1, 10000.0), 5.0, "Shallowest channel."),
+    length_field("max_depth_um", "Largest depth", DEPTHS, 200.0, (0.1, 10000.0), 10.0, "Deepest channel."),
     Field(name="max_depth_to_width", label="Depth to width at most", group=DEPTHS, default=2.0, unit="",
           minimum=0.01, maximum=100.0, step=0.1,
           help="Channels deeper, or solids taller, than this many times their width lean, break off or stay closed."),
@@ -79,19 +70,19 @@ PROCESS_FIELDS: dict[str, Field] = table_of(
     Field(name="collapse_width_to_depth", label="Width to depth at most", group=DEPTHS, default=20.0, unit="",
           minimum=0.1, maximum=1000.0, step=1.0,
           help="Wider channels than this many times their depth close: an error."),
-    _um("bias_um", "Edge bias", CHANGES, 0.0, (-500.0, 500.0), 0.5,
-        "How far every wall moves outwards from the drawing to the part; negative where channels come out narrower."),
+    length_field("bias_um", "Edge bias", CHANGES, 0.0, (-500.0, 500.0), 0.5,
+                 "How far every wall moves outwards from the drawing to the part; negative where channels narrow."),
     Field(name="undercut_ratio", label="Undercut", group=CHANGES, default=0.0, unit="",
           minimum=0.0, maximum=3.0, step=0.05,
           help="Sideways etching on each side, as a part of the depth; 1 for isotropic etching."),
-    _um("kerf_um", "Kerf", CHANGES, 0.0, (0.0, 3000.0), 10.0,
-        "Width that the beam or blade takes away, centred on the drawn line."),
-    _um("tool_diameter_um", "Tool diameter", CHANGES, 0.0, (0.0, 6000.0), 50.0,
-        "Diameter of the smallest tool that runs along the walls; 0 for none."),
-    _word("tool_runs", "Tool runs", CHANGES, ("in the channel", "outside the channel"),
-          "In the channel when it is milled straight into the part; outside when a raised mould is milled."),
-    _word("allowance", "Allowance", CHANGES, ("in the drawing", "by the shop", "not at all"),
-          "Who allows for bias, undercut, kerf and tool: the drawing, the shop, or nobody. Never both."),
+    length_field("kerf_um", "Kerf", CHANGES, 0.0, (0.0, 3000.0), 10.0,
+                 "Width that the beam or blade takes away, centred on the drawn line."),
+    length_field("tool_diameter_um", "Tool diameter", CHANGES, 0.0, (0.0, 6000.0), 50.0,
+                 "Diameter of the smallest tool that runs along the walls; 0 for none."),
+    choice_field("tool_runs", "Tool runs", CHANGES, ToolRuns,
+                 "In the channel when it is milled straight into the part; outside when a raised mould is milled."),
+    choice_field("allowance", "Allowance", CHANGES, Allowance,
+                 "Who allows for bias, undercut, kerf and tool: the drawing, the shop, or nobody. Never both."),
     Field(name="shrink_percent", label="Shrinkage", group=CHANGES, default=1.5, unit="%",
           minimum=0.0, maximum=20.0, step=0.1,
           help="How much smaller the part comes out than its mould, along the plane."),
@@ -105,21 +96,18 @@ PROCESS_FIELDS: dict[str, Field] = table_of(
           help="The bond's limit is divided by this before the pressure in the channel is compared with it."),
     Field(name="grid_nm", label="Drawing grid", group=FILES, default=1, unit="nm", minimum=1, maximum=10000, step=1,
           whole=True, help="Every corner of a mask lies on a multiple of this. The writer's address unit, if known."),
-    _word("tone", "Tone", FILES, ("drawn shapes are CLEAR", "drawn shapes are DARK", "drawn lines are CUT"),
-          "What the drawn shapes become on the mask."),
-    _word("reading", "Reading side", FILES,
-          ("right-reading, chrome or emulsion side DOWN", "right-reading, chrome or emulsion side UP",
-           "as seen from the side where the tool enters"),
-          "From which side the drawing reads correctly. Files are never mirrored."),
-    _word("formats", "Formats", FILES, ("DXF and GDSII", "DXF", "GDSII"), "Which files are written."),
-    _word("dxf_version", "DXF version", FILES, ("R2000", "R12"), "R12 for the oldest readers only."),
-    _word("islands", "Islands", FILES, ("pieces", "loops", "nested"),
-          "Pieces: butting shapes without holes. Loops: islands on a layer of their own, combined by NOT. "
-          "Nested: plain loops within loops, inner ones first, for cutting."),
-    _word("dxf_copies", "Copies in DXF", FILES, ("inserts", "flat"),
-          "Repeated shapes as inserts of a block, or everything written out."),
-    _um("chord_tolerance_um", "Chord tolerance", FILES, 0.02, (0.002, 5.0), 0.01,
-        "Largest distance between an arc and the straight edges that stand for it in GDSII files."),
+    choice_field("tone", "Tone", FILES, Tone, "What the drawn shapes become on the mask."),
+    choice_field("reading", "Reading side", FILES, ReadingSide,
+                 "From which side the drawing reads correctly. Files are never mirrored."),
+    choice_field("formats", "Formats", FILES, ("DXF and GDSII", "DXF", "GDSII"), "Which files are written."),
+    choice_field("dxf_version", "DXF version", FILES, DxfVersion, "R12 for the oldest readers only."),
+    choice_field("islands", "Islands", FILES, IslandMode,
+                 "Pieces: butting shapes without holes. Loops: islands on a layer of their own, combined by NOT. "
+                 "Nested: plain loops within loops, inner ones first, for cutting."),
+    choice_field("dxf_copies", "Copies in DXF", FILES, CopyMode,
+                 "Repeated shapes as inserts of a block, or everything written out."),
+    length_field("chord_tolerance_um", "Chord tolerance", FILES, 0.02, (0.002, 5.0), 0.01,
+                 "Largest distance between an arc and the straight edges that stand for it in GDSII files."),
 )  # fmt: skip
 
 
@@ -148,19 +136,19 @@ class Process(CheckedValues):
     undercut_ratio: float = 0.0
     kerf_um: float = 0.0
     tool_diameter_um: float = 0.0
-    tool_runs: str = "in the channel"
-    allowance: str = "in the drawing"
+    tool_runs: str = str(ToolRuns.IN_CHANNEL)
+    allowance: str = str(Allowance.IN_DRAWING)
     shrink_percent: float = 1.5
     wall_lean_deg: float = 0.0
     bond_limit_kpa: float = 200.0
     safety_factor: float = 2.0
     grid_nm: int = 1
-    tone: str = "drawn shapes are CLEAR"
-    reading: str = "right-reading, chrome or emulsion side DOWN"
+    tone: str = str(Tone.CLEAR)
+    reading: str = str(ReadingSide.LAYER_DOWN)
     formats: str = "DXF and GDSII"
-    dxf_version: str = "R2000"
-    islands: str = "pieces"
-    dxf_copies: str = "inserts"
+    dxf_version: str = str(DxfVersion.R2000)
+    islands: str = str(IslandMode.PIECES)
+    dxf_copies: str = str(CopyMode.INSERTS)
     chord_tolerance_um: float = 0.02
 
     @classmethod
@@ -199,20 +187,19 @@ class Process(CheckedValues):
             self._refuse("wall_lean_deg", f"0 for {kind}, whose walls are round",
                          "set it to 0, or undercut_ratio to 0 and give the shift as bias_um")  # fmt: skip
         if kind in MILLED_KINDS:
-            runs = "outside the channel" if kind is ProcessKind.MILLED_MOULD else "in the channel"
-            self._must_be("tool_runs", (runs,))
+            self._must_be("tool_runs", (tool_runs_of(kind),))
 
     def _files_suit_the_kind(self) -> None:
         """Refuse words for a mask where lines are cut or milled, and the other way round."""
         choices = {name: PROCESS_FIELDS[name].choices for name in ("tone", "reading", "islands")}
         if self.kind in MASK_KINDS:
-            self._must_be("tone", tuple(word for word in choices["tone"] if word != _CUT_TONE))
-            self._must_be("reading", tuple(word for word in choices["reading"] if word != _TOOL_SIDE))
-            self._must_be("islands", tuple(word for word in choices["islands"] if word != "nested"))
+            self._must_be("tone", tuple(word for word in choices["tone"] if word != Tone.CUT))
+            self._must_be("reading", tuple(word for word in choices["reading"] if word != ReadingSide.TOOL_SIDE))
+            self._must_be("islands", tuple(word for word in choices["islands"] if word != IslandMode.NESTED))
             return
-        self._must_be("tone", (_CUT_TONE,))
-        self._must_be("reading", (_TOOL_SIDE,))
-        self._must_be("islands", ("nested",))
+        self._must_be("tone", (Tone.CUT,))
+        self._must_be("reading", (ReadingSide.TOOL_SIDE,))
+        self._must_be("islands", (IslandMode.NESTED,))
         self._must_be("formats", ("DXF",))
 
     def _must_be(self, name: str, words: tuple[str, ...]) -> None:

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from math import pi, radians, tan
 
-from core.errors import DesignValueError
 from core.fabrication.process import Process, ProcessKind
 
 # Relative error in the flow, in percent, of a rectangle of equal depth and area, over (depth / mean width) and the
@@ -38,8 +37,17 @@ def side_loss_um(process: Process, *, depth_um: float) -> float:
 
     Notes
     -----
-    Isotropic etching under a mask opening of width w gives w h + pi h^2 / 2, so the sides are quarter circles;
-    for an undercut other than 1 quarter ellipses are assumed (common practice, no source).
+    The section area is depth times mean width. Isotropic etching (undercut 1) under a mask opening of width w gives
+    w h + pi h^2 / 2, so the sides are quarter circles; for other undercuts quarter ellipses are assumed (common
+    practice, no source).
+
+    Examples
+    --------
+    An opening of 20 um, etched 50 um deep, is 120 um wide at the top; its area [um^2]:
+
+    >>> glass = Process(kind="wet-etched glass", undercut_ratio=1.0, shrink_percent=0.0)
+    >>> round(50.0 * (120.0 - side_loss_um(glass, depth_um=50.0)), 3)
+    4926.991
     """
     if has_round_sides(process):
         return 2.0 * process.undercut_ratio * depth_um * (1.0 - 0.25 * pi)
@@ -51,46 +59,6 @@ def floor_width_um(process: Process, *, width_um: float, depth_um: float) -> flo
     if has_round_sides(process):
         return width_um - 2.0 * process.undercut_ratio * depth_um
     return width_um - 2.0 * depth_um * tan(radians(process.wall_lean_deg))
-
-
-def section_area_um2(width_um: float, depth_um: float, process: Process) -> float:
-    """Return the area of the section across a channel.
-
-    Parameters
-    ----------
-    width_um : float
-        Width as made, where the channel is widest [um].
-    depth_um : float
-        Depth [um].
-    process : Process
-        Tells the shape of the walls.
-
-    Returns
-    -------
-    float
-        Area [um^2]. For isotropic etching (undercut 1) under a mask opening w it is w h + pi h^2 / 2.
-
-    Raises
-    ------
-    DesignValueError
-        If the walls meet before the depth is reached.
-
-    Examples
-    --------
-    An opening of 20 um, etched 50 um deep:
-
-    >>> glass = Process(kind="wet-etched glass", undercut_ratio=1.0, shrink_percent=0.0)
-    >>> round(section_area_um2(20.0 + 2 * 50.0, 50.0, glass), 3)
-    4926.991
-    """
-    if floor_width_um(process, width_um=width_um, depth_um=depth_um) < 0.0:
-        raise DesignValueError(
-            field="width_um",
-            value=width_um,
-            limit=f"wide enough for walls that do not meet above the floor at depth {depth_um:g} um",
-            way_out="widen the channel or make it shallower",
-        )
-    return depth_um * (width_um - side_loss_um(process, depth_um=depth_um))
 
 
 def stand_in_error_percent(process: Process, *, mean_width_um: float, depth_um: float) -> float:

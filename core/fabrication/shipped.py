@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 from core.errors import DesignValueError, did_you_mean
-from core.fabrication.process import MASK_KINDS, MILLED_KINDS, Process, ProcessKind
+from core.fabrication.choices import Allowance, CopyMode, IslandMode, ReadingSide, Tone
+from core.fabrication.process import MASK_KINDS, MILLED_KINDS, Process, ProcessKind, tool_runs_of
 from core.fabrication.shipped_values import VALUES
 
 CONFIRM = "These values are starting points: confirm every one of them with the shop that makes the chip."
@@ -126,11 +127,11 @@ def _words(kind: ProcessKind) -> dict[str, str]:
     if kind in MASK_KINDS:
         return {}
     return {
-        "allowance": "by the shop" if kind in MILLED_KINDS else "in the drawing",
-        "tool_runs": "outside the channel" if kind is ProcessKind.MILLED_MOULD else "in the channel",
-        "tone": "drawn lines are CUT",
-        "reading": "as seen from the side where the tool enters",
+        "allowance": Allowance.BY_SHOP if kind in MILLED_KINDS else Allowance.IN_DRAWING,
+        "tool_runs": tool_runs_of(kind),
+        "tone": Tone.CUT,
+        "reading": ReadingSide.TOOL_SIDE,
         "formats": "DXF",
-        "islands": "nested",
-        "dxf_copies": "flat",
+        "islands": IslandMode.NESTED,
+        "dxf_copies": CopyMode.FLAT,
     }

@@ -93,7 +93,9 @@ def _serve(link: Connection, domain: FlowDomain, memory_limit_mb: float) -> None
     """Run in the other process: answer until the link is closed."""
     from core.flow.following import follow_direction
     from core.flow.levels import Levels
+    from core.flow.threads import one_thread
 
+    one_thread()
     threading.Thread(target=_end_with_parent, daemon=True).start()
     levels = Levels(domain, memory_limit_mb)
     while True:

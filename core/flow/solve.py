@@ -10,6 +10,7 @@ from core.flow.ladder import Ladder, Progress
 from core.flow.quality import quality_named
 from core.flow.reporting import as_result
 from core.flow.scales import scales
+from core.flow.threads import one_thread
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Sequence
@@ -162,12 +163,13 @@ def solve_on(
     liquid = {"density_kg_m3": density_kg_m3, "viscosity_pa_s": viscosity_pa_s}
     units = [scales(ladder.domain, flow_m3_s=flow, **liquid) for flow in ascending]
     progress = Progress(len(wanted.steps) * (1 + 2 * len(ascending)) + 1, report, should_stop)
-    climbs = ladder.climb([unit.width_reynolds for unit in units], wanted, progress)
     solved = {}
-    for flow, unit, climb in zip(ascending, units, climbs, strict=True):
-        share = (time.perf_counter() - began) / len(ascending)
-        solved[flow] = as_result(
-            ladder, climb, unit, flow_m3_s=flow, seconds=share, progress=progress, check_steady=check_steady
-        )
+    with one_thread():
+        climbs = ladder.climb([unit.width_reynolds for unit in units], wanted, progress)
+        for flow, unit, climb in zip(ascending, units, climbs, strict=True):
+            share = (time.perf_counter() - began) / len(ascending)
+            solved[flow] = as_result(
+                ladder, climb, unit, flow_m3_s=flow, seconds=share, progress=progress, check_steady=check_steady
+            )
     progress.tick("done")
     return [solved[flow] for flow in flows_m3_s]

@@ -4,14 +4,14 @@ from __future__ import annotations
 
 from dataclasses import dataclass, replace
 from functools import cached_property
-from math import atan2, degrees, hypot, radians
+from math import hypot, radians
 from typing import TYPE_CHECKING
 
 import numpy as np
 
 from core.errors import GeometryError
 from core.geometry.body_pieces import body_pieces
-from core.geometry.contour import Contour, Outline, Placement
+from core.geometry.contour import Outline, Placement
 from core.geometry.edges import Edges
 from core.geometry.folding import folded, usable_shape
 from core.geometry.pads import Pad, pad_reach_um
@@ -47,11 +47,9 @@ class ChannelBody:
     @cached_property
     def outline(self) -> Outline:
         """The area: one outer ring with bends and pads in it, and all islands in the order of the reverse flow."""
-        islands = [island for row in self.folding.rows for island in row.islands()]
-        ring = self.folding.outer()
-        if self.scale == 1.0:
-            return Outline(ring, tuple(islands))
-        return Outline(_scaled(ring, self.scale), tuple(_scaled(island, self.scale) for island in islands))
+        islands = tuple(island for row in self.folding.rows for island in row.islands())
+        outline = Outline(self.folding.outer(), islands)
+        return outline if self.scale == 1.0 else outline.scaled(self.scale)
 
     @property
     def bounds_um(self) -> tuple[float, float, float, float]:
@@ -165,19 +163,6 @@ def channel_body(
     return _checked(ChannelBody(channel=channel, folding=folding))
 
 
-def level_turn_deg(
-    channel: ChannelParameters, *, rows: int = 1, pad_radius_um: float = 0.0, wall_um: float | None = None
-) -> float:
-    """Return the turn that puts both pads, or both open ends, at one height [deg, -90 to 90].
-
-    Parameters and errors are those of ``channel_body``.
-    """
-    body = channel_body(channel, rows=rows, pad_radius_um=pad_radius_um, wall_um=wall_um)
-    dx, dy = body.ends_um[1] - body.ends_um[0]
-    turn = -degrees(atan2(dy, dx))
-    return turn if abs(turn) <= 90.0 else turn - 180.0 if turn > 0.0 else turn + 180.0
-
-
 def _alike(channel: ChannelParameters, like: ChannelBody) -> Folding:
     """Return the folding of another body with the shapes of a channel that has the same centre lines."""
     narrower = 0.5 * (like.channel.channel_width_um - channel.channel_width_um)
@@ -204,10 +189,6 @@ def _alike(channel: ChannelParameters, like: ChannelBody) -> Folding:
 
 def _reach(radius_um: float, channel: ChannelParameters) -> float:
     return pad_reach_um(radius_um, width_um=channel.channel_width_um)
-
-
-def _scaled(contour: Contour, factor: float) -> Contour:
-    return Contour(factor * contour.vertices_um, contour.bulges)
 
 
 def _checked(body: ChannelBody) -> ChannelBody:

@@ -13,7 +13,7 @@ import numpy as np
 
 from core.geometry.contour import Contour, Placement
 from core.geometry.pads import LeadEnd, end_index, finished
-from core.geometry.pieces import SAME_UM, ChannelPieces, Piece, PlacedPiece, cut_pieces
+from core.geometry.pieces import ChannelPieces, Piece, PieceCollector, PlacedPiece, cut_pieces
 
 if TYPE_CHECKING:
     from core.geometry.contour import Floats
@@ -38,7 +38,7 @@ def body_pieces(folding: Folding, *, link_um: float = 0.0, scale: float = 1.0) -
     ChannelPieces
         In the order of the reverse flow. Chords across stages come in pairs, those at bends singly.
     """
-    collector = _Collector(scale)
+    collector = PieceCollector()
     last = len(folding.rows) - 1
     shapes = {id(row.shape): row.shape for row in folding.rows}
     cut = {key: cut_pieces(shape, link_um=link_um) for key, shape in shapes.items()}
@@ -47,37 +47,11 @@ def body_pieces(folding: Folding, *, link_um: float = 0.0, scale: float = 1.0) -
         _add_row(collector, row, parts, link_um=link_um, is_start_open=number > 0, is_far_open=number < last)
         if number < last:
             _add_bend(collector, folding.bends[number], row.far, folding.rows[number + 1].start)
-    return ChannelPieces(tuple(collector.found), tuple(collector.placed))
-
-
-class _Collector:
-    """Distinct pieces so far, and where they are placed."""
-
-    def __init__(self, scale: float) -> None:
-        self.scale = scale
-        self.found: list[Piece] = []
-        self.placed: list[PlacedPiece] = []
-
-    def number(self, piece: Piece) -> int:
-        """Return the number of a piece: an earlier one of the same shape, or a new one."""
-        piece = _scaled(piece, self.scale)
-        for number, old in enumerate(self.found):
-            if _is_same(old, piece):
-                return number
-        kind = piece.name if piece.name in ("START", "END", "WHOLE") else piece.name.split("_")[0]
-        alike = sum(old.name.split("_")[0] == kind for old in self.found)
-        name = kind if kind == piece.name and not alike else f"{kind}_{chr(ord('A') + alike)}"
-        self.found.append(replace(piece, name=name))
-        return len(self.found) - 1
-
-    def place(self, number: int, at_um: Floats) -> None:
-        """Place a piece."""
-        dx, dy = self.scale * at_um
-        self.placed.append(PlacedPiece(number, float(dx), float(dy)))
+    return collector.pieces() if scale == 1.0 else _scaled(collector.pieces(), scale)
 
 
 def _add_row(
-    collector: _Collector, row: Row, parts: ChannelPieces, *, link_um: float, is_start_open: bool, is_far_open: bool
+    collector: PieceCollector, row: Row, parts: ChannelPieces, *, link_um: float, is_start_open: bool, is_far_open: bool
 ) -> None:
     turn = Placement(angle=row.placement.angle, is_mirrored=row.placement.is_mirrored)
     numbers: dict[tuple[int, bool, bool], int] = {}
@@ -97,7 +71,7 @@ def _add_row(
         collector.place(numbers[key], at)
 
 
-def _add_bend(collector: _Collector, bend: Bend, start: LeadEnd, end: LeadEnd) -> None:
+def _add_bend(collector: PieceCollector, bend: Bend, start: LeadEnd, end: LeadEnd) -> None:
     origin = start.middle_um
     right, left = bend.walls(_moved(start, -origin), _moved(end, -origin))
     ring = Contour.joined((run.vertices_um, run.bulges) for run in (right, left))
@@ -111,7 +85,7 @@ def _turned(piece: Piece, turn: Placement) -> Piece:
         moved = (turn.points(chord) for chord in ends)
         return tuple(chord[::-1] if turn.is_mirrored else chord for chord in moved)
 
-    return Piece(piece.name, piece.contour.placed(turn), chords(piece.entry), chords(piece.exit))
+    return Piece(piece.kind, piece.contour.placed(turn), chords(piece.entry), chords(piece.exit))
 
 
 def _ended(piece: Piece, end: LeadEnd, *, link_um: float, is_far: bool = False) -> Piece:
@@ -138,23 +112,15 @@ def _moved(end: LeadEnd, by_um: Floats) -> LeadEnd:
     return replace(end, drawn_um=end.drawn_um + by_um)
 
 
-def _scaled(piece: Piece, factor: float) -> Piece:
-    if factor == 1.0:
-        return piece
-    return Piece(
-        piece.name,
-        Contour(factor * piece.contour.vertices_um, piece.contour.bulges),
-        tuple(factor * chord for chord in piece.entry),
-        tuple(factor * chord for chord in piece.exit),
+def _scaled(pieces: ChannelPieces, factor: float) -> ChannelPieces:
+    enlarged = (
+        replace(
+            piece,
+            contour=piece.contour.scaled(factor),
+            entry=tuple(factor * chord for chord in piece.entry),
+            exit=tuple(factor * chord for chord in piece.exit),
+        )
+        for piece in pieces.pieces
     )
-
-
-def _is_same(one: Piece, other: Piece) -> bool:
-    a, b = one.contour, other.contour
-    return (
-        a.vertices_um.shape == b.vertices_um.shape
-        and len(one.entry) == len(other.entry)
-        and len(one.exit) == len(other.exit)
-        and bool(np.allclose(a.vertices_um, b.vertices_um, rtol=0.0, atol=SAME_UM))
-        and bool(np.allclose(a.bulges, b.bulges, rtol=0.0, atol=1e-9))
-    )
+    placed = (PlacedPiece(each.piece, factor * each.dx_um, factor * each.dy_um) for each in pieces.placed)
+    return ChannelPieces(tuple(enlarged), tuple(placed))

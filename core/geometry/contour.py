@@ -120,6 +120,10 @@ class Contour:
             found.append(centre[hit] + radius[hit, None] * direction)
         return found
 
+    def scaled(self, factor: float) -> Contour:
+        """Return the ring enlarged about the origin; arcs stay true."""
+        return Contour(factor * self.vertices_um, self.bulges)
+
     def placed(self, placement: Placement) -> Contour:
         """Return a moved copy; a mirrored one is turned round so that it keeps its sense."""
         moved = Contour(placement.points(self.vertices_um), self.bulges)
@@ -160,7 +164,7 @@ class Contour:
 def arc_data(contour: Contour) -> tuple[Floats, Floats, Floats, Floats]:
     """Return centre (n, 2), radius, start angle and signed sweep (n,) of every edge.
 
-    Straight edges have radius infinity, centre and angles zero.
+    Lengths are micrometres, angles radians. Straight edges have radius infinity, centre and angles zero.
     """
     return arcs_between(contour.vertices_um, np.roll(contour.vertices_um, -1, axis=0), contour.bulges)
 
@@ -180,7 +184,7 @@ def arcs_between(start_um: Floats, end_um: Floats, bulges: Floats) -> tuple[Floa
 
 
 def arc_run(centre: Floats, radius: float, start: float, sweep: float) -> tuple[Floats, Floats]:
-    """Return (vertices, bulges) of an arc without its last point, in steps of a quarter turn at most."""
+    """Return (vertices, bulges) of an arc without its last point, in steps of a quarter turn at most [um, rad]."""
     count = max(1, int(np.ceil(abs(sweep) / LARGEST_SWEEP - 1e-9)))
     angles = start + sweep / count * np.arange(count)
     points = centre + radius * np.stack((np.cos(angles), np.sin(angles)), axis=1)
@@ -216,3 +220,13 @@ class Outline:
     def contours(self) -> tuple[Contour, ...]:
         """All rings, the outer one first."""
         return (self.outer, *self.islands)
+
+    def placed(self, placement: Placement) -> Outline:
+        """Return the area at another place."""
+        outer, *islands = (ring.placed(placement) for ring in self.contours)
+        return Outline(outer, tuple(islands))
+
+    def scaled(self, factor: float) -> Outline:
+        """Return the area enlarged about the origin."""
+        outer, *islands = (ring.scaled(factor) for ring in self.contours)
+        return Outline(outer, tuple(islands))

@@ -6,7 +6,8 @@ neighbouring stages is the same shape again and again, so that it can be drawn o
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections import Counter
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -23,6 +24,7 @@ if TYPE_CHECKING:
     from core.geometry.shape import ChannelShape
 
 SAME_UM = 1e-4  # pieces that differ by less than a tenth of the finest mask grid are one shape
+LONGEST_PIECE_NAME = 7  # characters
 
 
 @dataclass(frozen=True)
@@ -31,19 +33,30 @@ class Piece:
 
     Attributes
     ----------
-    name : str
-        ``START``, ``END``, ``STEP_A`` and so on, or ``WHOLE``.
+    kind : str
+        ``START``, ``STEP``, ``END``, ``BEND``, or ``WHOLE`` for a channel or row that is not cut.
     contour : Contour
         Counter-clockwise ring.
     entry, exit : tuple of array, each shape (2, 2)
         Chords at which the piece before and the piece after join, in the order of the reverse
         flow: across the bypass, then across the loop. Their ends are vertices of the contour.
+    number : int
+        Its number among the distinct pieces of its kind, from 0.
     """
 
-    name: str
+    kind: str
     contour: Contour
     entry: tuple[Floats, ...] = ()
     exit: tuple[Floats, ...] = ()
+    number: int = 0
+
+    @property
+    def name(self) -> str:
+        """Unique within a channel, at most ``LONGEST_PIECE_NAME`` characters: ``START``, ``STEP_A``, ``STEP_AB``."""
+        if self.number == 0 and self.kind != "STEP":
+            return self.kind
+        letters = _letters(self.number)
+        return f"{self.kind[: LONGEST_PIECE_NAME - 1 - len(letters)]}_{letters}"
 
 
 @dataclass(frozen=True, slots=True)
@@ -69,6 +82,32 @@ class ChannelPieces:
 
     pieces: tuple[Piece, ...]
     placed: tuple[PlacedPiece, ...]
+
+
+class PieceCollector:
+    """Distinct pieces so far, and where all of them are placed."""
+
+    def __init__(self) -> None:
+        self._found: list[Piece] = []
+        self._placed: list[PlacedPiece] = []
+        self._kinds: Counter[str] = Counter()
+
+    def number(self, piece: Piece) -> int:
+        """Return the number of a piece: an earlier one of the same shape, or a new one."""
+        for number, old in enumerate(self._found):
+            if _is_same(old, piece):
+                return number
+        self._found.append(replace(piece, number=self._kinds[piece.kind]))
+        self._kinds[piece.kind] += 1
+        return len(self._found) - 1
+
+    def place(self, number: int, at_um: Floats) -> None:
+        """Place a piece by its number, shifted by a vector of shape (2,) [um]."""
+        self._placed.append(PlacedPiece(number, float(at_um[0]), float(at_um[1])))
+
+    def pieces(self) -> ChannelPieces:
+        """Return everything collected."""
+        return ChannelPieces(tuple(self._found), tuple(self._placed))
 
 
 def cut_pieces(shape: ChannelShape, *, link_um: float = 0.0) -> ChannelPieces:
@@ -105,8 +144,7 @@ class _Cutter:
         self.chain = chain
         self.link_um = link_um
         self.outer = chain.outers[0]
-        self.found: list[Piece] = []
-        self.placed: list[PlacedPiece] = []
+        self.collector = PieceCollector()
 
     def pieces(self, stages: int) -> ChannelPieces:
         drawn = self.chain.parameters.stages
@@ -120,30 +158,18 @@ class _Cutter:
             source = cell - periods * step
             self._place(cells[source], source + 1, periods * shift)
         self._place(self._distinct("END", self._end(drawn - 1), drawn - 1), drawn - 1, extra * shift)
-        return ChannelPieces(tuple(self.found), tuple(self.placed))
+        return self.collector.pieces()
 
-    def _distinct(self, name: str, piece: tuple[Contour, list[Floats], list[Floats]], stage: int) -> int:
+    def _distinct(self, kind: str, piece: tuple[Contour, list[Floats], list[Floats]], stage: int) -> int:
         """Return the number of a shape, in coordinates from the fork of a stage: a new or an earlier one."""
         contour, entry, leaving = piece
         origin = self.chain.centreline.stages[stage].fork_um
-        vertices = contour.vertices_um - origin
-        for number, old in enumerate(self.found):
-            if _is_same(old.contour, vertices):
-                return number
-        letter = chr(ord("A") + sum(old.name.startswith("STEP") for old in self.found))
-        self.found.append(
-            Piece(
-                f"STEP_{letter}" if name == "STEP" else name,
-                Contour(vertices, contour.bulges),
-                tuple(chord - origin for chord in entry),
-                tuple(chord - origin for chord in leaving),
-            )
-        )
-        return len(self.found) - 1
+        shifted = Contour(contour.vertices_um - origin, contour.bulges)
+        before, after = (tuple(chord - origin for chord in ends) for ends in (entry, leaving))
+        return self.collector.number(Piece(kind, shifted, before, after))
 
     def _place(self, number: int, stage: int, shift: Floats) -> None:
-        dx, dy = self.chain.centreline.stages[stage].fork_um + shift
-        self.placed.append(PlacedPiece(number, float(dx), float(dy)))
+        self.collector.place(number, self.chain.centreline.stages[stage].fork_um + shift)
 
     def _start(self) -> tuple[Contour, list[Floats], list[Floats]]:
         before = self._spots(0, -1.0)
@@ -217,6 +243,18 @@ def _chord(above: Ring, upper: Spot, below: Ring, lower: Spot) -> Floats:
     return np.array([above.curves[upper[0]].at(upper[1]), below.curves[lower[0]].at(lower[1])])
 
 
-def _is_same(contour: Contour, vertices: Floats) -> bool:
-    old = contour.vertices_um
-    return old.shape == vertices.shape and bool(np.allclose(old, vertices, rtol=0.0, atol=SAME_UM))
+def _is_same(one: Piece, other: Piece) -> bool:
+    a, b = one.contour, other.contour
+    return (
+        a.vertices_um.shape == b.vertices_um.shape
+        and len(one.entry) == len(other.entry)
+        and len(one.exit) == len(other.exit)
+        and bool(np.allclose(a.vertices_um, b.vertices_um, rtol=0.0, atol=SAME_UM))
+        and bool(np.allclose(a.bulges, b.bulges, rtol=0.0, atol=1e-9))
+    )
+
+
+def _letters(number: int) -> str:
+    """Return A to Z, then AA, AB and so on, for 0, 1, 2 ..."""
+    ahead, last = divmod(number, 26)
+    return (_letters(ahead - 1) if ahead else "") + chr(ord("A") + last)

@@ -6,10 +6,10 @@ from dataclasses import replace
 from math import isfinite
 from typing import TYPE_CHECKING
 
+from core.fabrication.choices import Tone
 from core.geometry.clearances import narrowest
-from core.masks.grid import NM_PER_UM
-from core.masks.options import Tone
 from core.masks.order_facts import TO_FILL_IN, CriticalDimension
+from core.units import NM_PER_UM, UM_PER_MM
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -84,8 +84,8 @@ def _words(critical: CriticalDimension, options: MaskOptions) -> str:
         f"+-{usual_tolerance_um(critical.value_um):g} um unless the shop promises otherwise"
     )  # fmt: skip
     return (
-        f"{critical.what}, {critical.value_um:.6g} um as drawn, at x {critical.x_um / 1000.0:.6f} mm, "
-        f"y {critical.y_um / 1000.0:.6f} mm; {_tone_of(critical, options)}; tolerance {given}."
+        f"{critical.what}, {critical.value_um:.6g} um as drawn, at x {critical.x_um / UM_PER_MM:.6f} mm, "
+        f"y {critical.y_um / UM_PER_MM:.6f} mm; {_tone_of(critical, options)}; tolerance {given}."
     )
 
 

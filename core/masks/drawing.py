@@ -10,9 +10,11 @@ import numpy as np
 
 from core.chip.scene import Layer
 from core.errors import ExportError, GeometryError, shown
-from core.masks.grid import NM_PER_UM, on_grid_nm
+from core.geometry.pieces import LONGEST_PIECE_NAME
+from core.masks.grid import on_grid_nm
 from core.masks.layers import LAYER_NAMES
-from core.masks.names import LONGEST_CELL_NAME, safe_name, unique_safe_names
+from core.masks.names import LONGEST_CELL_NAME, PIECE_MARK, safe_name, unique_safe_names
+from core.units import NM_PER_UM, UM_PER_MM
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
@@ -23,7 +25,7 @@ if TYPE_CHECKING:
 
     Bounds = tuple[float, float, float, float]
 
-LONGEST_CHANNEL_NAME = 18  # leaves room for "__START_B" within a cell name
+LONGEST_CHANNEL_NAME = LONGEST_CELL_NAME - len(PIECE_MARK) - LONGEST_PIECE_NAME
 LONGEST_STEM = 24
 LARGEST_COORDINATE_UM = 2e6  # 2 m either way: what mask writers take, and nearly what 32-bit nanometres reach
 
@@ -76,8 +78,8 @@ class MaskDrawing:
         reach = max(abs(value) for value in self.bounds_um)
         if reach > LARGEST_COORDINATE_UM:
             raise ExportError(
-                f"mask {self.stem} would reach {reach / 1000.0:.0f} mm from its origin; "
-                f"allowed: {LARGEST_COORDINATE_UM / 1000.0:.0f} mm; use fewer stages or shorter leads"
+                f"mask {self.stem} would reach {reach / UM_PER_MM:.0f} mm from its origin; "
+                f"allowed: {LARGEST_COORDINATE_UM / UM_PER_MM:.0f} mm; use fewer stages or shorter leads"
             )
 
     def name_of(self, block: Block) -> str:

@@ -8,7 +8,8 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from core.masks.options import DxfVersion
+from core.fabrication.choices import DxfVersion
+from core.units import UM_PER_MM
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
@@ -18,7 +19,7 @@ if TYPE_CHECKING:
 
     from core.masks.dxf_blocks import DxfBlock
 
-MM_PER_UM = 1e-3
+MM_PER_UM = 1.0 / UM_PER_MM
 _MILLIMETRES, _METRIC = 4, 1  # values of $INSUNITS and $MEASUREMENT
 
 

@@ -9,12 +9,12 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from core.chip.scene import Layer
+from core.fabrication.choices import IslandMode
 from core.geometry.contour import Contour
 from core.masks.arcs import with_short_arcs
 from core.masks.drawing import pieces_of
-from core.masks.grid import NM_PER_UM
 from core.masks.layers import ISLAND_LAYER, LAYERS, WORKING_ORDER
-from core.masks.options import IslandMode
+from core.units import NM_PER_UM
 
 if TYPE_CHECKING:
     from collections.abc import Iterator

@@ -7,8 +7,8 @@ from itertools import pairwise
 from math import pi, tan
 from typing import TYPE_CHECKING
 
+from core.fabrication.choices import DxfVersion
 from core.masks.layers import DXF_LAYER_PATTERN
-from core.masks.options import DxfVersion
 
 if TYPE_CHECKING:
     from collections.abc import Sequence

@@ -13,8 +13,8 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from core.masks.dxf_blocks import flat_runs, rings_of
-from core.masks.grid import NM_PER_UM
 from core.masks.layers import NAME_OF_NUMBER
+from core.units import NM_PER_UM, UM_PER_MM
 
 if TYPE_CHECKING:
     from collections.abc import Collection, Sequence
@@ -26,8 +26,7 @@ if TYPE_CHECKING:
     from core.masks.read_gdsii import ReadGdsii
     from core.masks.read_loop import ReadLoop
 
-UM_PER_MM = 1000.0
-NM_PER_MM = 1e6
+NM_PER_MM = NM_PER_UM * UM_PER_MM
 SAME_PLACE_NM = 1e-3  # for numbers that were written in full
 SAME_MM = 1e-9
 

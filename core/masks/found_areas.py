@@ -8,7 +8,7 @@ import numpy as np
 
 from core.masks.drawing import around
 from core.masks.figure_rules import area_of, figure_problems, rings_within
-from core.masks.grid import NM_PER_UM
+from core.units import NM_PER_UM
 
 if TYPE_CHECKING:
     from collections.abc import Mapping

@@ -16,8 +16,10 @@ import numpy as np
 from core.errors import ExportError, shown
 from core.masks.arcs import with_outermost_points
 from core.masks.drawing import pieces_of
-from core.masks.grid import NM_PER_UM, on_grid_nm, split_ring, tidy_ring
+from core.masks.grid import on_grid_nm, split_ring, tidy_ring
 from core.masks.layers import CHANNEL_LAYER, LAYERS
+from core.masks.names import PIECE_MARK
+from core.units import NM_PER_UM
 
 if TYPE_CHECKING:
     from core.chip.scene import Block
@@ -27,7 +29,6 @@ if TYPE_CHECKING:
     from core.masks.drawing import MaskDrawing
     from core.masks.grid import Whole
 
-PIECE_MARK = "__"  # no safe name of a block has two underscores in a row
 LONGEST_LINK_UM = 1.0
 LINK_STEPS = 4  # of the grid, at least, where the turn allows it
 

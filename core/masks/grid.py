@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from core.errors import ExportError
+from core.units import NM_PER_UM
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -15,7 +16,6 @@ if TYPE_CHECKING:
 
     Whole = NDArray[np.int64]
 
-NM_PER_UM = 1000.0
 MOST_VERTICES = 199  # with the repeated first one 200, the limit of the first GDSII definition
 _ENDS = 100  # vertices of a long ring at which cuts are looked for
 _BATCH = 64  # cuts looked at together

@@ -5,12 +5,13 @@ from __future__ import annotations
 import hashlib
 from typing import TYPE_CHECKING
 
+from core.fabrication.choices import DxfVersion
 from core.masks.dxf import dxf_text
 from core.masks.dxf_blocks import dxf_blocks
 from core.masks.gdsii import gdsii_bytes
 from core.masks.gdsii_cells import gdsii_cells
 from core.masks.layers import LAYERS
-from core.masks.options import DxfVersion, MaskFormat
+from core.masks.options import MaskFormat
 from core.masks.placing import write_durably
 from core.masks.preview import preview_svg
 from core.masks.proof import drawn_layers, prove_dxf, prove_gdsii

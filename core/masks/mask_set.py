@@ -6,11 +6,12 @@ from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+from core.fabrication.choices import CopyMode, IslandMode
 from core.masks.bare import bare_drawings
 from core.masks.drawing import LONGEST_STEM, MaskDrawing
 from core.masks.mask_files import kept, planned_files, written_mask, written_picture
 from core.masks.names import safe_name
-from core.masks.options import CopyMode, IslandMode, MaskFormat, MaskOptions
+from core.masks.options import MaskFormat, MaskOptions
 from core.masks.order_facts import SheetFacts
 from core.masks.package import archive_bytes, checksum_list, prove_archive
 from core.masks.placing import put_in_place, told_plainly, workshop
@@ -18,6 +19,7 @@ from core.masks.report import MaskFile, MaskSetReport, MaskSummary, PlannedFile
 from core.masks.sheet import order_sheet
 from core.masks.sheet_pdf import sheet_pdf
 from core.masks.sheet_text import sheet_text
+from core.units import UM_PER_MM
 
 if TYPE_CHECKING:
     import os
@@ -245,7 +247,7 @@ def _planned_sentence(file: PlannedFile) -> str:
     plural = "s" * (len(file.layers) > 1)
     return (
         f"{file.name}: {file.format}, layer{plural} {', '.join(file.layers)}, "
-        f"{file.width_um / 1000.0:.3f} x {file.height_um / 1000.0:.3f} mm, "
+        f"{file.width_um / UM_PER_MM:.3f} x {file.height_um / UM_PER_MM:.3f} mm, "
         f"{file.channel_count} channel{'s' * (file.channel_count != 1)}, "
         f"{file.island_count} island{'s' * (file.island_count != 1)}, "
         f"{file.figure_count} figures with {file.vertex_count} vertices."

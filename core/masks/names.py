@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 if TYPE_CHECKING:
     from collections.abc import Iterable
 
+PIECE_MARK = "__"  # before the name of a piece; no safe name has two underscores in a row
 LONGEST_CELL_NAME = 27  # the strictest published limit for GDSII is "fewer than 28"
 
 

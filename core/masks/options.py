@@ -7,6 +7,7 @@ from enum import StrEnum
 from typing import TYPE_CHECKING, TypeVar
 
 from core.errors import DesignValueError, did_you_mean
+from core.fabrication.choices import CopyMode, DxfVersion, IslandMode, ReadingSide, Tone
 from core.fabrication.process import PROCESS_FIELDS
 from core.fields import Field, table_of
 
@@ -23,36 +24,6 @@ class MaskFormat(StrEnum):
 
     DXF = "DXF"
     GDSII = "GDSII"
-
-
-class DxfVersion(StrEnum):
-    """Version of the DXF files: R2000 is taken nearly everywhere, R12 by the oldest readers."""
-
-    R2000 = "R2000"
-    R12 = "R12"
-
-
-class IslandMode(StrEnum):
-    """How islands are left out in DXF files; GDSII files always hold pieces."""
-
-    PIECES = "pieces"  # the channel is cut into butting pieces without holes
-    LOOPS = "loops"  # outer loops and island loops on two layers, to be combined by NOT
-    NESTED = "nested"  # plain loops within loops on one layer, inner ones first, for cutting
-
-
-class CopyMode(StrEnum):
-    """How repeated shapes stand in DXF files; GDSII files always refer to cells."""
-
-    INSERTS = "inserts"  # drawn once as a block and inserted, shifted only
-    FLAT = "flat"  # written out again and again
-
-
-class Tone(StrEnum):
-    """What the drawn shapes become."""
-
-    CLEAR = "drawn shapes are CLEAR"
-    DARK = "drawn shapes are DARK"
-    CUT = "drawn lines are CUT"
 
 
 MASK_FIELDS: dict[str, Field] = table_of(
@@ -106,7 +77,7 @@ class MaskOptions:
     islands: IslandMode = IslandMode.PIECES
     copies: CopyMode = CopyMode.INSERTS
     tone: Tone = Tone.CLEAR
-    reading: str = str(PROCESS_FIELDS["reading"].default)
+    reading: str = str(ReadingSide.LAYER_DOWN)
     chord_tolerance_um: float = 0.02
     grid_nm: int = 1
     one_file_per_set: bool = True

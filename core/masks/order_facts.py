@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from core.fabrication.choices import Allowance
 from core.fabrication.process import PROCESS_FIELDS, ProcessKind
 
 if TYPE_CHECKING:
@@ -152,8 +153,9 @@ def _allowance_sentences(process: Process) -> tuple[str, ...]:
     if not what:
         return ("No edge bias, undercut or kerf is to be allowed for.", *tool)
     who = {
-        "in the drawing": f"Already allowed for IN THE DRAWING: {what}. The shop must not allow for it again.",
-        "by the shop": f"NOT in the drawing: {what}. The SHOP is asked to allow for it, once.",
-        "not at all": f"Allowed for by NOBODY: {what}. The drawing has the nominal size and the shop changes nothing.",
+        Allowance.IN_DRAWING: f"Already allowed for IN THE DRAWING: {what}. The shop must not allow for it again.",
+        Allowance.BY_SHOP: f"NOT in the drawing: {what}. The SHOP is asked to allow for it, once.",
+        Allowance.NOT_AT_ALL: f"Allowed for by NOBODY: {what}. The drawing has the nominal size, "
+        "and the shop changes nothing.",
     }
-    return (who[process.allowance], *tool)
+    return (who[Allowance(process.allowance)], *tool)

@@ -7,21 +7,22 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from core.chip.marks import round_length_um
 from core.chip.scene import Layer
 from core.geometry.contour import arc_data
 from core.masks.drawing import own_outlines
-from core.masks.grid import NM_PER_UM
-from core.masks.preview import MARGIN, bar_words, scale_bar_um
+from core.masks.preview import BAR_SHARE, MARGIN, bar_words
 from core.masks.tones import look_of
+from core.units import NM_PER_UM
 
 if TYPE_CHECKING:
     from reportlab.pdfgen.canvas import Canvas
     from reportlab.pdfgen.pathobject import PDFPathObject
 
     from core.chip.scene import Block
+    from core.fabrication.choices import Tone
     from core.geometry.contour import Contour
     from core.masks.drawing import MaskDrawing
-    from core.masks.options import Tone
     from core.masks.tones import Look
 
 _EVEN_ODD = 0
@@ -66,7 +67,7 @@ def draw_picture(
     canvas.scale(scale, scale)
     symbols.draw(top)
     canvas.restoreState()
-    bar = scale_bar_um(x1 - x0)
+    bar = round_length_um(BAR_SHARE * (x1 - x0))
     canvas.setFillColor("#222222")
     canvas.rect(left, low - 10.0, scale * bar, _BAR_POINTS, stroke=0, fill=1)
     canvas.drawString(left, low - 20.0, bar_words(bar))

@@ -2,27 +2,27 @@
 
 from __future__ import annotations
 
-from math import ceil, floor, log10
+from math import ceil, log10
 from typing import TYPE_CHECKING
 
+from core.chip.marks import round_length_um
 from core.chip.scene import Layer
 from core.geometry.contour import arc_data
 from core.masks.drawing import own_outlines
-from core.masks.grid import NM_PER_UM
 from core.masks.tones import look_of
+from core.units import NM_PER_UM, UM_PER_MM
 
 if TYPE_CHECKING:
     from core.chip.scene import Block
+    from core.fabrication.choices import Tone
     from core.geometry.contour import Contour
     from core.masks.drawing import MaskDrawing
-    from core.masks.options import Tone
     from core.masks.tones import Look
 
 MARGIN = 0.04  # of the larger side
 _WIDTH_PX = 960
-_BAR_SHARE = 0.2  # of the width, at most
+BAR_SHARE = 0.2  # of the width, at most
 _SIGN_WIDTH = 0.6  # of the size of the lettering, on the average and generously
-_UM_PER_MM = 1000.0
 _FINEST = 1e-6  # of the larger side; finer digits are left out
 
 
@@ -45,7 +45,7 @@ def preview_svg(drawing: MaskDrawing, tone: Tone) -> str:
     picture = _Picture(drawing, look_of(tone))
     x0, y0, x1, y1 = drawing.bounds_um
     margin = MARGIN * max(x1 - x0, y1 - y0)
-    bar = scale_bar_um(x1 - x0)
+    bar = round_length_um(BAR_SHARE * (x1 - x0))
     left, top, width, height = x0 - margin, -y1 - margin, x1 - x0 + 2.0 * margin, y1 - y0 + 6.0 * margin
     below, font = -y0 + 2.0 * margin, 0.6 * margin
     words = f"{drawing.stem}: {picture.look.words}"
@@ -67,19 +67,6 @@ def preview_svg(drawing: MaskDrawing, tone: Tone) -> str:
     )
 
 
-def scale_bar_um(width_um: float) -> float:
-    """Return a round length of at most a fifth of the width: 1, 2 or 5 times a power of ten [um].
-
-    Examples
-    --------
-    >>> scale_bar_um(6400.0)
-    1000.0
-    """
-    room = _BAR_SHARE * width_um
-    decade = 10.0 ** floor(log10(room))
-    return max(step * decade for step in (1.0, 2.0, 5.0) if step * decade <= room * (1.0 + 1e-12))
-
-
 def bar_words(bar_um: float) -> str:
     """Return the length of a scale bar in words.
 
@@ -88,7 +75,7 @@ def bar_words(bar_um: float) -> str:
     >>> bar_words(2000.0)
     '2 mm'
     """
-    return f"{bar_um / _UM_PER_MM:g} mm" if bar_um >= _UM_PER_MM else f"{bar_um:g} um"
+    return f"{bar_um / UM_PER_MM:g} mm" if bar_um >= UM_PER_MM else f"{bar_um:g} um"
 
 
 class _Picture:

@@ -10,17 +10,17 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from core.errors import ExportError
+from core.fabrication.choices import IslandMode
 from core.masks.drawing import around
 from core.masks.dxf_rules import dxf_problems, order_problems
-from core.masks.found import SAME_PLACE_NM, UM_PER_MM, found_in_dxf, found_in_flat_dxf, found_in_gdsii
+from core.masks.found import SAME_PLACE_NM, found_in_dxf, found_in_flat_dxf, found_in_gdsii
 from core.masks.found_areas import FoundAreas
 from core.masks.gdsii_rules import gdsii_problems
-from core.masks.grid import NM_PER_UM
 from core.masks.layers import ISLAND_LAYER, LAYERS, WORKING_ORDER
-from core.masks.options import IslandMode
 from core.masks.read_dxf import read_dxf
 from core.masks.read_gdsii import read_gdsii
 from core.masks.same_blocks import Allowed, compared_blocks, place_problems
+from core.units import NM_PER_UM, UM_PER_MM
 
 if TYPE_CHECKING:
     from pathlib import Path

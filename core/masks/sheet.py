@@ -9,11 +9,13 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from core.chip.scene import BlockKind
+from core.fabrication.choices import DxfVersion, IslandMode, Tone
 from core.masks.critical import critical_lines
 from core.masks.layers import ISLAND_LAYER, LAYERS, WORKING_ORDER
-from core.masks.options import DxfVersion, IslandMode, MaskFormat, Tone
+from core.masks.options import MaskFormat
 from core.masks.order_facts import TO_FILL_IN
 from core.masks.tones import ON_MASK
+from core.units import UM_PER_MM
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -137,7 +139,7 @@ def _unit_lines(options: MaskOptions) -> list[str]:
 
 
 def _drawing_section(drawing: MaskDrawing, options: MaskOptions) -> Section:
-    x0, y0, x1, y1 = (value / 1000.0 for value in drawing.bounds_um)
+    x0, y0, x1, y1 = (value / UM_PER_MM for value in drawing.bounds_um)
     middle = f"({(x0 + x1) / 2.0:.6f}, {(y0 + y1) / 2.0:.6f}) mm"
     is_centred = drawing.scene.top.kind in {BlockKind.PLATE, BlockKind.CHIP}
     where = f"(0, 0) of the data; the middle of the extents is {middle}" if is_centred else f"the middle, {middle}"

@@ -12,8 +12,8 @@ if TYPE_CHECKING:
 
     from reportlab.pdfgen.canvas import Canvas
 
+    from core.fabrication.choices import Tone
     from core.masks.drawing import MaskDrawing
-    from core.masks.options import Tone
     from core.masks.sheet import Sheet
 
 _POINTS_PER_MM = 72.0 / 25.4

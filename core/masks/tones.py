@@ -5,8 +5,8 @@ from __future__ import annotations
 from dataclasses import dataclass, field
 
 from core.chip.scene import Layer
+from core.fabrication.choices import Tone
 from core.masks.layers import LAYERS
-from core.masks.options import Tone
 
 ON_MASK = (Layer.CHANNELS, Layer.MARKS, Layer.TEXT)
 _CLEAR, _DARK = "#fdfdf4", "#27333b"

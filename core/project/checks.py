@@ -7,6 +7,7 @@ from dataclasses import replace
 from typing import TYPE_CHECKING
 
 from core.chip.chip_findings import chip_findings
+from core.chip.plan import PlateKind
 from core.chip.plate import distinct_steps, values_of
 from core.errors import CoreError, shown
 from core.fabrication.channel_findings import channel_findings
@@ -132,7 +133,7 @@ def _series_findings(project: ChipProject, known: set[tuple[str, str]]) -> Itera
     Limits are one-sided, so that chips between the ends are no worse than those at the ends.
     """
     plan = project.plan
-    if plan.plate == "single chip" or not plan.series:
+    if plan.plate == PlateKind.SINGLE or not plan.series:
         return
     steps = distinct_steps(plan)
     ends = [(min(each), max(each)) for each in zip(*steps, strict=True)]

@@ -49,6 +49,7 @@ def test_values_with_units():
 
 def test_fields_are_called_what_the_screen_calls_them():
     assert screen_words("raise loop_radius_um to 40 um") == "raise 'Loop radius' to 40 µm"
+    assert screen_words("at 300 uL/min") == "at 300 µL/min"
     assert screen_words("nothing to replace in aluminium 40 um2") == "nothing to replace in aluminium 40 um2"
 
 

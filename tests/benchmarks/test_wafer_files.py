@@ -16,13 +16,14 @@ import numpy as np
 import pytest
 
 from core.chip.scene import Block, BlockKind, PlacedBlock, Scene
+from core.fabrication.choices import DxfVersion
 from core.geometry.body import channel_body
 from core.masks.drawing import MaskDrawing
 from core.masks.dxf import dxf_text
 from core.masks.dxf_blocks import dxf_blocks
 from core.masks.gdsii import gdsii_bytes
 from core.masks.gdsii_cells import GdsiiCell, gdsii_cells
-from core.masks.options import DxfVersion, MaskOptions
+from core.masks.options import MaskOptions
 from core.parameters import ChannelParameters
 
 pytestmark = pytest.mark.benchmark

@@ -5,7 +5,7 @@ from __future__ import annotations
 import pytest
 
 from core.errors import DesignValueError
-from core.fields import Field, problems_in, table_of, unknown_field
+from core.fields import Field, table_of, unknown_field
 
 WIDTH = Field(
     name="width_um", label="Width", help="h", group="g", default=200.0, unit="um", minimum=5.0, maximum=3000.0
@@ -60,12 +60,6 @@ def test_refused_values_are_told_with_limit_and_way_out(field, given, limit, way
     assert caught.value.value is given
     assert caught.value.limit == limit
     assert caught.value.way_out == way_out
-
-
-def test_all_problems_of_a_mapping_are_found():
-    problems = problems_in({"width_um": 1, "count": "x", "side": "left", "widht_um": 5}, TABLE)
-    assert [problem.field for problem in problems] == ["width_um", "count", "widht_um"]
-    assert problems_in({}, TABLE) == []
 
 
 def test_an_unknown_field_is_answered_with_the_nearest():

@@ -67,6 +67,28 @@ def test_only_fields_that_mean_something_are_shown(panel, document, plate, shown
     assert panel.series.isHidden() == (plate == "single chip")
 
 
+def test_a_row_that_comes_makes_the_column_as_wide_as_it_needs(panel, qtbot, document, settings):
+    """Nothing runs under the edge: the column never scrolls sideways."""
+    panel.resize(10, 900)
+    rows = (SteppedField(name="loop_radius_um", first=320.0, last=400.0, steps=5),)
+    document.change_plan(replace(document.plan, plate="wafer", series=rows), "x")
+    for unit in ("mm", "um"):
+        settings.set_unit("length", unit)
+        qtbot.waitUntil(lambda: panel.column.width() <= panel.viewport().width())
+        reset = panel.editors["plate"].reset_button
+        assert reset.isVisible()
+        right = reset.mapTo(panel.viewport(), reset.rect().topRight()).x()
+        assert right < panel.viewport().width()
+    assert panel.minimumWidth() < 340, "a series needs no more room than the rows above it"
+
+
+def test_a_button_back_to_the_default_is_drawn_whole(panel, document):
+    document.change_plan_values({"plate": "wafer"})
+    for editor in (panel.editors["plate"], panel.editors["chip_width_um"]):
+        assert editor.reset_button.height() == 24
+        assert editor.reset_button.minimumHeight() <= 24
+
+
 def test_words_on_the_chip(panel, qtbot, document):
     assert panel.label_entry.placeholderText() == "Bench chip"
     typed(qtbot, panel.label_entry, "rinse 4")
@@ -156,6 +178,20 @@ def test_the_table_shows_the_plan(qapp, qtmodeltester):
     assert cell(model, 0, "x_um").data() == "0.12"
     model.show_plan(None, ShownUnits())
     assert model.rowCount() == 0
+
+
+def test_numbers_are_read_short_and_typed_in_full(qtbot, qapp, qtmodeltester):
+    model = PlacesModel()
+    model.show_plan(ChipPlan(channels=(ChipChannel(set_name="Alpha", turn_deg=-7.92805634),)), ShownUnits())
+    qtmodeltester.check(model)
+    turn = cell(model, 0, "turn_deg")
+    assert turn.data() == "-7.928"
+    assert turn.data(Qt.ItemDataRole.EditRole) == "-7.928056"
+    with qtbot.assertNotEmitted(model.place_requested):
+        assert model.setData(turn, "-7.928056"), "left as it was: the value keeps all its digits"
+    with qtbot.waitSignal(model.place_requested) as asked:
+        assert model.setData(turn, "-7.928")
+    assert asked.args == [0, "turn_deg", -7.928]
 
 
 def test_a_typed_place_is_asked_for_in_stored_units(qtbot, qapp, qtmodeltester):

@@ -13,10 +13,12 @@ from PySide6.QtGui import QKeySequence
 from PySide6.QtWidgets import QApplication
 
 from app.actions import ACTIONS
+from app.shown_values import screen_words
 from core.chip.plan import SteppedField
 from core.findings import Severity
 from core.parameters import ChannelParameters
 from core.project import ChipProject, ParameterSet
+from core.project.folds import fold_notes
 
 pytest_plugins = ["tests.app.windows"]
 pytestmark = pytest.mark.qt_log_ignore("propagateSizeHints")
@@ -152,6 +154,71 @@ def test_packed_anew(desk, window, qtbot):
     press(qtbot, window, "pack_chip")
     assert plan_of(window).channels
     assert not any(finding.code == "channels_overlap" for finding in desk.outcome.findings)
+
+
+def test_what_is_too_long_is_folded_to_fit_as_one_step(desk, window, qtbot):
+    window.document.change_plan_values({"chip_width_um": 12500.0, "chip_height_um": 20000.0})
+    steps = window.document.undo_stack.count()
+    press(qtbot, window, "fold_to_fit")
+    short, long = plan_of(window).channels
+    assert (short.rows, long.rows) == (1, 2), "four stages fit in one row, six do not"
+    assert not [f for f in desk.outcome.findings if f.severity is Severity.ERROR]
+    assert window.document.undo_stack.count() == steps + 1
+    assert window.document.undo_stack.undo_text == "Fold to fit"
+    assert window.statusBar().currentMessage() == ""
+
+
+def test_what_fits_in_no_number_of_rows_is_told(desk, window, qtbot):
+    window.document.change_plan_values({"chip_width_um": 12500.0, "chip_height_um": 5500.0})
+    press(qtbot, window, "fold_to_fit")
+    assert "'Beta' fits this chip in no number of rows" in window.statusBar().currentMessage()
+    assert plan_of(window).channels, "the other one is placed"
+    press(qtbot, window, "undo")
+    window.document.change_plan_values({"chip_width_um": 3000.0})
+    steps = window.document.undo_stack.count()
+    press(qtbot, window, "fold_to_fit")
+    assert "'Alpha', 'Beta' fit this chip in no number of rows" in window.statusBar().currentMessage()
+    assert window.document.undo_stack.count() == steps, "nothing fits, nothing is done"
+
+
+def test_what_folding_costs_is_said_under_the_table_when_the_hand_rests(desk, window, qtbot):
+    notes = window.parts.places.notes
+    assert not notes.isVisible()
+    window.parts.chip_view.select(0)
+    press(qtbot, window, "fold_placed")
+    assert window.fold_notes._job is None, "not on the path of the hand"
+    qtbot.waitUntil(lambda: notes.isVisible() and window.fold_notes.is_up_to_date)
+    first = notes.label.text()
+    (said,) = fold_notes(window.document.project)
+    assert first == f"\N{BULLET} S{screen_words(said)[1:]}."
+    window.document.change_operating({"flow_ul_min": 777.0})
+    qtbot.waitUntil(lambda: "777" in notes.label.text())
+    press(qtbot, window, "unfold_placed")
+    qtbot.waitUntil(lambda: not notes.isVisible())
+
+
+def test_notes_take_few_lines_at_any_width(window, qtbot):
+    press(qtbot, window, "show_chip")
+    notes = window.parts.places.notes
+    line = notes.label.fontMetrics().lineSpacing()
+    notes.show_sentences(["Short."])
+    assert line <= notes.height() < 2 * line
+    notes.show_sentences(["Many words that need many lines. " * 60])
+    assert notes.height() == 4 * line
+    assert notes.verticalScrollBar().maximum() > 0
+    notes.show_sentences([])
+    assert not notes.isVisible()
+
+
+@pytest.mark.parametrize("size", [(1280, 720), (1366, 768), (1600, 1000)])
+def test_no_column_of_the_table_is_cut_off(desk, window, qtbot, size):
+    window.resize(*size)
+    table = window.parts.places.table
+    desk._change(0, {"x_um": -123456.789, "turn_deg": -177.123456})
+    QApplication.processEvents()
+    qtbot.waitUntil(lambda: table.horizontalHeader().length() <= table.viewport().width())
+    assert table.columnWidth(0) > 60, "the names can still be told apart"
+    assert table.horizontalScrollBar().maximum() == 0
 
 
 def test_numbers_are_typed_into_the_table(desk, window, qtbot):

@@ -11,7 +11,9 @@ from hypothesis import strategies as st
 from core.chip.bodies import wanted_body
 from core.chip.build import furniture_of
 from core.chip.free_space import Obstacle, free_places
+from core.chip.marks import words_stamp
 from core.chip.plan import ChipChannel, ChipPlan
+from core.chip.scene import Layer
 from tests.core.chip.seen import CAST, SMALL, as_polygon, flattened
 
 ENTRY = ChipChannel(set_name="A", turn_deg=20.0)
@@ -62,3 +64,28 @@ def test_marks_slip_between_channels_only_where_their_gap_is_kept(height):
     channels = shapely.union_all([as_polygon(outline, entry.x_um, entry.y_um, sagitta_um=0.01) for entry in pair])
     assert channels.distance(shapely.union_all(marks)) >= CAST.min_wall_um
     assert furniture.missing or height > 2800.0
+
+
+@pytest.mark.parametrize("width", [7000.0, 9000.0, 12000.0, 20000.0])
+@pytest.mark.parametrize("height", [2200.0, 3000.0, 8000.0])
+@pytest.mark.parametrize("text", [350.0, 800.0])
+def test_words_of_different_things_never_read_as_one(width, height, text):
+    """They stay apart by at least the height of their letters."""
+    plan = ChipPlan(
+        channels=(ChipChannel(set_name="A"),), chip_width_um=width, chip_height_um=height, text_height_um=text,
+        pad_margin_um=50.0, port_diameter_um=300.0,
+    )  # fmt: skip
+    furniture = furniture_of(plan, {"A": SMALL}, CAST, chip_name="G1")
+    named = {each.block.name: each for each in furniture.placed}
+    groups = [
+        shapely.union_all([p for ps in flattened(each.block, each.dx_um, each.dy_um).values() for p in ps])
+        for each in (named[name] for name in ("SCALE_BAR", "TEST_BARS") if name in named)
+    ]
+    if furniture.label_at_um is not None:
+        x, y = furniture.label_at_um
+        letters = flattened(words_stamp(("G1",), height_um=text).block, x, y)
+        groups.append(shapely.union_all(letters[Layer.TEXT]))
+    assert groups
+    for number, one in enumerate(groups):
+        for other in groups[:number]:
+            assert one.distance(other) >= text - 0.01

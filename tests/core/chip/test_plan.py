@@ -20,7 +20,21 @@ from core.chip.plan import (
 )  # fmt: skip
 from core.errors import DesignValueError
 
-ODD = [None, True, "", "x", [], {}, (1,), float("nan"), float("inf"), 1e308, -1e308, "\ud800", object()]
+ODD = [
+    None,
+    True,
+    "",
+    "x",
+    [],
+    {},
+    (1,),
+    float("nan"),
+    float("inf"),
+    1e308,
+    -1e308,
+    "\ud800",
+    pytest.param(object(), id="object"),
+]
 
 
 def test_tables_and_values_name_the_same_fields_and_defaults():

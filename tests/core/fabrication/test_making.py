@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import time
 from dataclasses import replace
 from typing import TYPE_CHECKING
 
@@ -12,8 +11,7 @@ import shapely
 from hypothesis import given
 from hypothesis import strategies as st
 
-from core.errors import DesignValueError
-from core.fabrication.making import as_made, making_of, moved, scale_of, smallest_radius_um
+from core.fabrication.making import making_of, scale_of, smallest_radius_um
 from core.fabrication.process import Process, ProcessKind
 from core.fabrication.shipped import shipped_process
 from core.geometry.shape import build_shape
@@ -152,27 +150,6 @@ def test_parameters_come_back_or_a_finding_says_so(
         assert getattr(making.drawn, name) == getattr(making.made, name) == getattr(channel, name)
 
 
-@given(CHANNELS, KINDS, st.sampled_from(ALLOWANCES))
-def test_a_given_mask_becomes_what_was_foreseen(channel: ChannelParameters, kind: ProcessKind, allowance: str) -> None:
-    process = shipped_process(kind).with_values({"allowance": allowance})
-    making = making_of(channel, process)
-    if not making.findings:
-        made = as_made(making.drawn, process) if making.drawn.channel_width_um < 2999 else making.made
-        for name in (*WIDTHS, *RADII) if channel.stages else WIDTHS[:1]:
-            assert getattr(made, name) == pytest.approx(getattr(making.made, name), abs=1e-9)
-
-
-@given(CHANNELS, st.floats(0, 400))
-def test_walls_moved_in_and_out_again_are_the_same(channel: ChannelParameters, d: float) -> None:
-    # truth: shrinking and growing again returns every area drawn by a pen wide enough
-    try:
-        back = moved(moved(channel, -d), d)
-    except DesignValueError:
-        return  # a width is gone
-    for name, value in channel.as_dict().items():
-        assert getattr(back, name) == (value if isinstance(value, str) else pytest.approx(value, abs=1e-9))
-
-
 def mould(tool_um: float) -> Process:
     return shipped_process(ProcessKind.MILLED_MOULD).with_values({"tool_diameter_um": tool_um, "min_radius_um": 0})
 
@@ -248,16 +225,3 @@ def test_notes_say_who_allows_for_the_shift() -> None:
         note = making_of(ChannelParameters(), process.with_values({"allowance": allowance})).notes[0]
         assert words in note
         assert "40 um outwards" in note
-
-
-@pytest.mark.benchmark
-def test_making_follows_a_slider() -> None:
-    process = shipped_process(ProcessKind.LASER_FILM)
-    channel = ChannelParameters()
-    times = []
-    for _ in range(200):
-        start = time.perf_counter()
-        making_of(channel, process)
-        times.append(time.perf_counter() - start)
-    print(f"making: {1e6 * np.median(times):.0f} us")
-    assert np.median(times) < 2e-4

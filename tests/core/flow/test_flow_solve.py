@@ -266,3 +266,18 @@ def test_importing_the_solve_loads_no_engine():
     code = "import sys, core.flow; print(sorted({'scipy', 'skfem', 'netgen', 'shapely'} & set(sys.modules)))"
     done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
     assert done.stdout.strip() == "[]"
+
+
+def test_linear_algebra_keeps_to_one_thread_while_a_flow_is_solved():
+    """Whatever the environment asks for; afterwards as before."""
+    from threadpoolctl import threadpool_info, threadpool_limits
+
+    def threads():
+        return [each["num_threads"] for each in threadpool_info() if each["user_api"] == "blas"]
+
+    seen = []
+    with threadpool_limits(limits=2, user_api="blas"):
+        before = threads()
+        solve(straight(), flow_m3_s=AT_100, quality="coarse", report=lambda *step: seen.append(threads()), **WATER)
+        assert set(seen[0]) == {1}
+        assert threads() == before

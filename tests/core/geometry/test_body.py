@@ -15,7 +15,7 @@ from scipy.integrate import quad
 from shapely import Polygon, unary_union
 
 from core.errors import GeometryError
-from core.geometry.body import ChannelBody, channel_body, level_turn_deg
+from core.geometry.body import ChannelBody, channel_body
 from core.geometry.contour import Contour
 from core.geometry.shape import build_shape
 from core.parameters import ChannelParameters
@@ -213,16 +213,6 @@ def test_turn_and_place(turn: float, rows: int, pad: float) -> None:
     before, after = (complex(*vector) for vector in moved)
     assert after == pytest.approx(before * np.exp(1j * np.radians(turn)), abs=1e-6)
     assert body.outline.area_um2 == pytest.approx(flat.outline.area_um2, rel=1e-10)
-
-
-@pytest.mark.parametrize("rows", [1, 2, 3])
-@pytest.mark.parametrize("sides", ["alternate", "same"])
-def test_level_turn_puts_both_pads_at_one_height(rows: int, sides: str) -> None:
-    channel = ChannelParameters(stages=7, sides=sides)
-    turn = level_turn_deg(channel, rows=rows, pad_radius_um=600.0)
-    assert -90.0 <= turn <= 90.0
-    body = channel_body(channel, rows=rows, pad_radius_um=600.0, turn_deg=turn)
-    assert body.ends_um[0, 1] == pytest.approx(body.ends_um[1, 1], abs=1e-6)
 
 
 def test_scaled_about_the_origin() -> None:

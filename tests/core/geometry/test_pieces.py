@@ -7,7 +7,7 @@ import pytest
 from shapely import Polygon, unary_union
 
 from core.errors import GeometryError
-from core.geometry.pieces import ChannelPieces, cut_pieces
+from core.geometry.pieces import LONGEST_PIECE_NAME, ChannelPieces, Piece, cut_pieces
 from core.geometry.shape import build_shape
 from core.parameters import ChannelParameters
 from tests.core.geometry.designs import polygon, sensible
@@ -83,3 +83,12 @@ def test_cut_chords_are_vertices_of_their_pieces() -> None:
 def test_impossible_shape_cannot_be_cut() -> None:
     with pytest.raises(GeometryError, match="cannot be cut"):
         cut_pieces(build_shape(ChannelParameters(run_bend_deg=60)))
+
+
+def test_names_of_many_pieces_differ_and_stay_short() -> None:
+    ring = build_shape(ChannelParameters(stages=0)).outline.outer
+    names = [Piece(kind, ring, number=n).name for kind in ("START", "STEP", "END", "BEND") for n in range(800)]
+    assert len(set(names)) == len(names)
+    assert max(map(len, names)) <= LONGEST_PIECE_NAME
+    assert [Piece("STEP", ring, number=n).name for n in (0, 25, 26, 27)] == ["STEP_A", "STEP_Z", "STEP_AA", "STEP_AB"]
+    assert [Piece("START", ring, number=n).name for n in (0, 1, 26)] == ["START", "START_B", "STAR_AA"]

@@ -6,10 +6,10 @@ from typing import TYPE_CHECKING
 
 import ezdxf
 
+from core.fabrication.choices import DxfVersion
 from core.masks.dxf_rules import dxf_problems
 from core.masks.found import found_in_dxf
 from core.masks.found_areas import FoundAreas
-from core.masks.options import DxfVersion
 from core.masks.read_dxf import read_dxf
 from tests.core.masks.judges import dxf_objections
 

@@ -7,9 +7,10 @@ from itertools import pairwise
 import numpy as np
 import pytest
 
+from core.fabrication.choices import DxfVersion
 from core.masks.dxf import dxf_text
 from core.masks.dxf_blocks import DxfRing, dxf_blocks
-from core.masks.options import DxfVersion, MaskOptions
+from core.masks.options import MaskOptions
 from tests.core.masks.samples import SETS, drawing_of
 
 

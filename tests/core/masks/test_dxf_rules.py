@@ -11,7 +11,7 @@ import pytest
 from ezdxf import appsettings
 
 from core.errors import ExportError
-from core.masks.options import DxfVersion
+from core.fabrication.choices import DxfVersion
 from core.masks.read_dxf import read_dxf
 from tests.core.masks.dxf_masks import BOUNDS, SQUARE, Mask
 

@@ -5,8 +5,9 @@ from __future__ import annotations
 import pytest
 
 from core.errors import DesignValueError
+from core.fabrication.choices import DxfVersion, IslandMode
 from core.masks.layers import MaskLayer
-from core.masks.options import DxfVersion, IslandMode, MaskFormat, MaskOptions
+from core.masks.options import MaskFormat, MaskOptions
 
 
 def test_words_become_choices() -> None:

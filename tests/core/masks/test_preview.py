@@ -8,10 +8,11 @@ from xml.etree import ElementTree
 
 import pytest
 
+from core.fabrication.choices import Tone
 from core.masks.bare import bare_drawings
 from core.masks.drawing import MaskDrawing
-from core.masks.options import MaskOptions, Tone
-from core.masks.preview import preview_svg, scale_bar_um
+from core.masks.options import MaskOptions
+from core.masks.preview import preview_svg
 from tests.core.masks.chips import plate, plate_drawing, two_channel_chip
 from tests.core.masks.samples import SETS, drawing_of, shape_of
 
@@ -64,13 +65,6 @@ def test_each_channel_is_drawn_and_the_bar_is_labelled() -> None:
     (bar,) = (rect for rect in root.findall(f"{SVG}rect") if rect.get("id") == "bar")
     assert float(bar.get("width")) == 2000.0
     assert root.find(f"{SVG}text").text == "2 mm"
-
-
-@pytest.mark.parametrize(
-    ("width", "bar"), [(25.0, 5.0), (24.9, 2.0), (10_000.0, 2000.0), (26_000.0, 5000.0), (5.0, 1.0)]
-)
-def test_the_bar_is_round(width: float, bar: float) -> None:
-    assert scale_bar_um(width) == pytest.approx(bar)
 
 
 def clear_share(tone: Tone, words: dict[str, str]) -> float:

@@ -9,13 +9,14 @@ import numpy as np
 import pytest
 
 from core.errors import ExportError
+from core.fabrication.choices import CopyMode
 from core.geometry.body import channel_body
 from core.masks.drawing import MaskDrawing
 from core.masks.dxf import dxf_text
 from core.masks.dxf_blocks import DxfBlock, dxf_blocks
 from core.masks.gdsii import gdsii_bytes
 from core.masks.gdsii_cells import GdsiiCell, gdsii_cells
-from core.masks.options import CopyMode, MaskOptions
+from core.masks.options import MaskOptions
 from core.masks.proof import FileProof, prove_dxf, prove_gdsii
 from tests.core.masks.chips import channel_block, chip_block, plate
 from tests.core.masks.samples import shape_of
