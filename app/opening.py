@@ -9,6 +9,7 @@ from app.look import Look, Scheme
 from app.main_window import MainWindow
 from app.panels.ask import Ask
 from app.settings import Settings, made_application, user_folder
+from app.tidying import Tidier
 from core.project import RecoveryStore
 
 if TYPE_CHECKING:
@@ -29,6 +30,7 @@ def run_window(path: Path | None) -> int:
         Exit status of the window.
     """
     program = made_application()
+    Tidier(program)
     folder = user_folder()
     start_log(folder / "sideloop.log")
     settings = Settings(folder / "settings.ini")

@@ -2,14 +2,16 @@
 
 from __future__ import annotations
 
+import gc
 import importlib.util
 import os
 from typing import TYPE_CHECKING
 
+import pytest
 from hypothesis import HealthCheck, settings
 
 if TYPE_CHECKING:
-    import pytest
+    from collections.abc import Generator
 
 os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")  # no windows flash up, and focus is nobody else's
 
@@ -18,6 +20,18 @@ settings.register_profile("ci", deadline=None, derandomize=True, suppress_health
 settings.register_profile("fast", deadline=None, max_examples=20)
 settings.register_profile("search", deadline=None, max_examples=2000)
 settings.load_profile("fast")
+
+
+@pytest.hookimpl(wrapper=True)
+def pytest_runtest_protocol(item: pytest.Item) -> Generator[None, object, object]:
+    """Let Python's collector run between tests of the window only, as between events in the program: app/tidying.py."""
+    if "qapp" not in getattr(item, "fixturenames", ()):
+        return (yield)
+    gc.disable()
+    try:
+        return (yield)
+    finally:
+        gc.enable()
 
 
 def pytest_addoption(parser: pytest.Parser) -> None:

@@ -120,10 +120,11 @@ class ChipDesk(ChipDrawer):
         """Fold what is longer than the chip into the fewest rows that fit, and pack; tell what fits in no way."""
         task = ChipTask.of(self._document.project)
 
-        def change(plan: ChipPlan) -> tuple[ChipPlan, str]:
-            plan = folded(plan, task.channels, task.process, chip_name=task.chip_name)
+        def change(_plan: ChipPlan) -> tuple[ChipPlan, str]:
+            # not the packed plan, whose chip has grown to hold every channel unfolded
+            plan = folded(task.plan, task.channels, task.process, chip_name=task.chip_name)
             large.extend(too_large(plan, task.channels, task.process))
-            if len(large) == len(plan.channels):
+            if {title_of(entry) for entry in plan.channels} <= set(large):
                 raise _too_large(large)
             return plan, "Fold to fit"
 

@@ -5,6 +5,9 @@ every wall inwards by d gives the same channel with all widths smaller by 2 d an
 Moving every wall outwards by d gives widths larger by 2 d and radii max(r - d, 0). Centre lines never
 move, and lines stay lines and arcs stay arcs. So what is drawn on the mask, and what the process makes
 of it, are parameter sets again, and one way leads from all of them to areas and files.
+
+A mask that exists already is a channel for which nobody allows (``Allowance.NOT_AT_ALL``): ``made`` is then what
+becomes of it.
 """
 
 from __future__ import annotations

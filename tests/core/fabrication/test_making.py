@@ -150,6 +150,19 @@ def test_parameters_come_back_or_a_finding_says_so(
         assert getattr(making.drawn, name) == getattr(making.made, name) == getattr(channel, name)
 
 
+@given(CHANNELS, KINDS)
+def test_a_given_mask_becomes_what_was_foreseen_for_it(channel: ChannelParameters, kind: ProcessKind) -> None:
+    # the other way: a mask that exists is a channel for which nobody allows
+    process = shipped_process(kind).with_values({"allowance": "in the drawing"})
+    making = making_of(channel, process)
+    if making.findings:
+        return
+    there = making_of(making.drawn, process.with_values({"allowance": "not at all"}))
+    assert not there.findings
+    for name in (*WIDTHS, *RADII) if channel.stages else WIDTHS[:1]:
+        assert getattr(there.made, name) == pytest.approx(getattr(making.made, name), abs=1e-6)
+
+
 def mould(tool_um: float) -> Process:
     return shipped_process(ProcessKind.MILLED_MOULD).with_values({"tool_diameter_um": tool_um, "min_radius_um": 0})
 
