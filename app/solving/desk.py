@@ -16,6 +16,7 @@ from app.solving.numbers import write_numbers
 from app.solving.pictures import write_picture
 from app.solving.process import COMMAND, SolveProcess
 from app.solving.protocol import SolveRequest
+from app.solving.waiting import WaitingChild
 from core.flow.channel_places import curve_flows_ul_min, streamline_seeds_um
 from core.geometry.shape import build_shape
 from core.units import unit_symbol
@@ -71,6 +72,7 @@ class SolveDesk(QObject):
         self._points: list[SolvedResult] = []
         self._shown_field: object = None
         self.panel = SolvePanel()
+        self._waiting = WaitingChild(lambda: None if self.process is not None else self.command, near=self.panel)
         self.overlay = FlowOverlay(self)
         parts.verdict.add_part(self.panel)
         parts.drawing.use_overlay(self.overlay)
@@ -114,12 +116,12 @@ class SolveDesk(QObject):
             flows_ul_min=flows_ul_min,
         )
         self._failure, self._began_s = "", time.monotonic()
-        self.process = SolveProcess(request, command=self.command, parent=self)
+        self.process = self._waiting.taken(self.command)
         self.process.progressed.connect(self._on_process_progressed)
         self.process.answered.connect(self._on_process_answered)
         self.process.ended.connect(self._on_process_ended)
         self.panel.show_running(True)
-        self.process.start()
+        self.process.start(request)
 
     def cancel(self) -> None:
         """Stop the solve that runs."""
@@ -127,7 +129,8 @@ class SolveDesk(QObject):
             self.process.cancel()
 
     def end_now(self) -> None:
-        """End the child process before this returns."""
+        """End every child process before this returns."""
+        self._waiting.end_now()
         if self.process is not None:
             self.process.end_now()
 

@@ -8,6 +8,7 @@ import shutil
 import sys
 import threading
 import time
+from importlib import import_module
 from pathlib import Path
 from typing import IO, TYPE_CHECKING, NoReturn
 
@@ -114,13 +115,23 @@ def listen(child: Child, lines: IO[str], folder: str) -> None:
     os._exit(3)
 
 
+def get_ready() -> None:
+    """Import what every solve needs, while the request may still be to come."""
+    for name in ("chemicals", "netgen.geom2d", "scipy.linalg.lapack", "scipy.sparse.linalg", "scipy.spatial", "skfem"):
+        import_module(name)
+
+
 def main() -> NoReturn:
     """Take one request from standard input and answer it on standard output."""
     out = os.fdopen(os.dup(1), "w", encoding="utf-8")
     os.dup2(2, 1)  # whatever a library prints must not come between the lines
     if hasattr(os, "nice"):
         os.nice(_KINDER_BY)
-    request = SolveRequest.from_line(sys.stdin.readline())
+    get_ready()
+    line = sys.stdin.readline()
+    if not line:  # woken, and never asked
+        os._exit(0)
+    request = SolveRequest.from_line(line)
     child = Child(request, out)
     threading.Thread(target=listen, args=(child, sys.stdin, request.folder), daemon=True).start()
     child.run()

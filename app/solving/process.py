@@ -59,6 +59,11 @@ class SolveAnswer:
 class SolveProcess(QObject):
     """One flow solve in a child process.
 
+    Parameters
+    ----------
+    command : sequence of str
+        What the child runs.
+
     Signals
     -------
     progressed(int, int, str)
@@ -73,13 +78,11 @@ class SolveProcess(QObject):
     answered = Signal(object)
     ended = Signal(object, str)
 
-    def __init__(
-        self, request: SolveRequest, *, command: Sequence[str] = COMMAND, parent: QObject | None = None
-    ) -> None:
+    def __init__(self, *, command: Sequence[str] = COMMAND, parent: QObject | None = None) -> None:
         super().__init__(parent)
         self._folder = _new_folder()
-        self._request = replace(request, folder=self._folder)
-        self._command = list(command)
+        self._request: SolveRequest | None = None
+        self._command = tuple(command)
         self._closing: tuple[Ending, str] | None = None
         self._is_cancelled = self._has_ended = False
         self._process = QProcess(self)
@@ -100,9 +103,20 @@ class SolveProcess(QObject):
         """Number of the child process; 0 when there is none."""
         return int(self._process.processId())
 
-    def start(self) -> None:
-        """Start the child and hand it the request."""
-        self._process.start(self._command[0], self._command[1:])
+    @property
+    def command(self) -> tuple[str, ...]:
+        """What the child runs."""
+        return self._command
+
+    def wake(self) -> None:
+        """Start the child, which gets ready and waits for its request."""
+        self._process.start(self._command[0], list(self._command[1:]))
+
+    def start(self, request: SolveRequest) -> None:
+        """Hand the child its request; it is started if it does not wait already."""
+        if self._process.state() == QProcess.ProcessState.NotRunning:
+            self.wake()
+        self._request = replace(request, folder=self._folder)
         self._process.write(f"{self._request.as_line()}\n".encode())
 
     def cancel(self) -> None:
@@ -145,6 +159,7 @@ class SolveProcess(QObject):
             self._closing = (Ending.FAILED, str(message["text"]))
 
     def _answer(self, message: Mapping[str, object]) -> SolveAnswer:
+        assert self._request is not None  # nothing is answered before it is asked
         fields: dict[str, FlowField] = {}
         if message["fields"]:
             with contextlib.suppress(OSError, ValueError, KeyError):  # a spoilt file costs the picture alone

@@ -12,7 +12,7 @@ from pathlib import Path
 
 import numpy as np
 import pytest
-from PySide6.QtCore import QPoint, Qt
+from PySide6.QtCore import QEvent, QPoint, Qt
 from PySide6.QtGui import QImage
 from PySide6.QtWidgets import QApplication
 
@@ -297,3 +297,29 @@ def test_results_of_what_is_made_are_kept_in_the_file(window, solving, qtbot, tm
     window.document.rename_set(0, "Another name")
     window.document.save(tmp_path / "chip.sideloop")
     assert len(read_project(tmp_path / "chip.sideloop").solved) == len(window.document.solved.results) > 0
+
+
+def test_a_child_wakes_when_the_pointer_comes_near_and_is_asked(window, solving, qtbot):
+    QApplication.sendEvent(solving.panel, QEvent(QEvent.Type.Enter))
+    waiting = solving._waiting.process_id
+    assert waiting
+    solving.solve_here()
+    assert solving.process.process_id == waiting
+    qtbot.waitUntil(lambda: solving.process is None, timeout=10_000)
+    assert is_gone(waiting)
+
+
+def test_a_child_that_waits_in_vain_ends_with_the_window(window, solving):
+    QApplication.sendEvent(solving.panel, QEvent(QEvent.Type.Enter))
+    waiting = solving._waiting.process_id
+    assert waiting
+    window.close()
+    assert is_gone(waiting)
+
+
+def test_a_waiting_child_of_another_command_is_not_asked(window, solving, qtbot):
+    QApplication.sendEvent(solving.panel, QEvent(QEvent.Type.Enter))
+    waiting = solving._waiting.process_id
+    begun(qtbot, solving, "deaf")
+    assert solving.process.process_id != waiting
+    assert is_gone(waiting)

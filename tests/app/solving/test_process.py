@@ -35,7 +35,7 @@ def make(qtbot, qapp):
     made = []
 
     def with_child(manner, **settings):
-        process = SolveProcess(REQUEST, command=settings.get("command", command(manner)))
+        process = SolveProcess(command=settings.get("command", command(manner)))
         process.said, process.endings = [], []
         process.answered.connect(process.said.append)
         process.ended.connect(lambda *ending: process.endings.append(ending))
@@ -50,7 +50,7 @@ def make(qtbot, qapp):
 
 def run(qtbot, process):
     with qtbot.waitSignal(process.ended, timeout=10_000):
-        process.start()
+        process.start(REQUEST)
     return process.endings[0]
 
 
@@ -72,7 +72,7 @@ def test_the_coarse_answer_comes_first_then_the_better_one(make, qtbot):
 def test_cancel_ends_within_a_second(make, qtbot, manner):
     process = make(manner)
     with qtbot.waitSignal(process.answered, timeout=10_000):
-        process.start()
+        process.start(REQUEST)
     child = process.process_id
     began = time.monotonic()
     with qtbot.waitSignal(process.ended, timeout=5_000):
@@ -102,7 +102,7 @@ def test_a_child_that_cannot_start_is_told(make, qtbot):
 def test_end_now_waits_for_the_end(make, qtbot):
     process = make("deaf")
     with qtbot.waitSignal(process.answered, timeout=10_000):
-        process.start()
+        process.start(REQUEST)
     child = process.process_id
     process.end_now()
     assert process.endings == [(Ending.CANCELLED, "")]
