@@ -6,6 +6,8 @@ for physics; flows and pressures are SI unless the name says otherwise.
 
 from __future__ import annotations
 
+from math import floor, log10
+
 from core.errors import DesignValueError, did_you_mean
 
 M_PER_UM = 1e-6
@@ -71,3 +73,15 @@ def convert(value: float, *, quantity: str, from_unit: str, to_unit: str) -> flo
 def unit_symbol(unit: str) -> str:
     """Return how a unit is written on the screen."""
     return _SYMBOLS.get(unit, unit)
+
+
+def round_length_um(most_um: float) -> float:
+    """Return the longest of 1, 2 or 5 times a power of ten that is not above a length [um], as scale bars have it.
+
+    Examples
+    --------
+    >>> round_length_um(10000.0), round_length_um(4999.0), round_length_um(0.3)
+    (10000.0, 2000.0, 0.2)
+    """
+    power = 10.0 ** floor(log10(most_um) + 1e-9)
+    return max(step * power for step in (1.0, 2.0, 5.0) if step * power <= most_um * (1.0 + 1e-9))

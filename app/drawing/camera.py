@@ -7,7 +7,6 @@ pixel where it is, so that an animated zoom stays under the pointer all the way.
 from __future__ import annotations
 
 from dataclasses import dataclass
-from math import floor, log10
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QPointF, QRectF
@@ -19,8 +18,6 @@ if TYPE_CHECKING:
 # one pixel may show from 2 mm down to 20 nm
 COARSEST_UM_PER_PX = 2000.0
 FINEST_UM_PER_PX = 0.02
-
-_ROUND_STEPS = (1.0, 2.0, 5.0)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -95,9 +92,3 @@ class Camera:
         """Return the painter's transform from micrometres to pixels."""
         scale = 1.0 / self.um_per_px
         return QTransform(scale, 0.0, 0.0, -scale, -self.left_um * scale, self.top_um * scale)
-
-
-def round_length_um(longest_um: float) -> float:
-    """Return the largest of 1, 2, 5, 10, 20, ... (and 0.5, 0.2, ...) that is not longer [um]."""
-    decade = 10.0 ** floor(log10(longest_um) + 1e-9)
-    return max(step * decade for step in _ROUND_STEPS if step * decade <= longest_um * (1.0 + 1e-9))

@@ -8,7 +8,6 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import QLineF, QPointF, QRectF, Qt
 from PySide6.QtGui import QBrush, QColor, QPainter, QPainterPath
 
-from app.drawing.camera import round_length_um
 from app.drawing.dimensions import length_text
 from app.drawing.signs import (
     draw_arrow_head,
@@ -22,6 +21,7 @@ from app.drawing.signs import (
     text_size,
 )
 from app.look import SPACING, font
+from core.units import round_length_um
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence

@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from functools import lru_cache
-from math import ceil, floor, log10
+from math import ceil
 from typing import TYPE_CHECKING
 
 from core.chip.figures import Box, polygon, rectangle
@@ -137,18 +137,6 @@ def corner_mark(*, arm_um: float, unit_um: float, across: int, up: int, layer: L
 def _box_of(x_um: float, y_um: float) -> Box:
     """Return the box between the origin and a point."""
     return min(0.0, x_um), min(0.0, y_um), max(0.0, x_um), max(0.0, y_um)
-
-
-def round_length_um(most_um: float) -> float:
-    """Return the longest of 1, 2 or 5 times a power of ten that is not above a length [um].
-
-    Examples
-    --------
-    >>> round_length_um(10000.0), round_length_um(4999.0)
-    (10000.0, 2000.0)
-    """
-    power = 10.0 ** floor(log10(most_um) + 1e-12)
-    return max(step * power for step in (1.0, 2.0, 5.0) if step * power <= most_um * (1.0 + 1e-12))
 
 
 @lru_cache(maxsize=64)

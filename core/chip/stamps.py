@@ -12,11 +12,11 @@ from core.chip.marks import (
     alignment_mark,
     mark_unit_um,
     measuring_bars,
-    round_length_um,
     scale_bar,
     words_stamp,
 )
 from core.fabrication.making import making_of
+from core.units import round_length_um
 
 if TYPE_CHECKING:
     from collections.abc import Iterable

@@ -7,13 +7,12 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from core.chip.marks import round_length_um
 from core.chip.scene import Layer
 from core.geometry.contour import arc_data
 from core.masks.drawing import own_outlines
 from core.masks.preview import BAR_SHARE, MARGIN, bar_words
 from core.masks.tones import look_of
-from core.units import NM_PER_UM
+from core.units import NM_PER_UM, round_length_um
 
 if TYPE_CHECKING:
     from reportlab.pdfgen.canvas import Canvas

@@ -5,12 +5,11 @@ from __future__ import annotations
 from math import ceil, log10
 from typing import TYPE_CHECKING
 
-from core.chip.marks import round_length_um
 from core.chip.scene import Layer
 from core.geometry.contour import arc_data
 from core.masks.drawing import own_outlines
 from core.masks.tones import look_of
-from core.units import NM_PER_UM, UM_PER_MM
+from core.units import NM_PER_UM, UM_PER_MM, round_length_um
 
 if TYPE_CHECKING:
     from core.chip.scene import Block

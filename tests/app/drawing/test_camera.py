@@ -10,7 +10,8 @@ from hypothesis import given
 from hypothesis import strategies as st
 from PySide6.QtCore import QPointF, QRectF
 
-from app.drawing.camera import COARSEST_UM_PER_PX, FINEST_UM_PER_PX, Camera, round_length_um
+from app.drawing.camera import COARSEST_UM_PER_PX, FINEST_UM_PER_PX, Camera
+from core.units import round_length_um
 
 PLACES = st.floats(-1e5, 1e5)
 PIXELS = st.floats(0.0, 4000.0)

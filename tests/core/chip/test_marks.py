@@ -14,13 +14,13 @@ from core.chip.marks import (
     corner_mark,
     mark_unit_um,
     measuring_bars,
-    round_length_um,
     scale_bar,
     words_stamp,
 )  # fmt: skip
 from core.chip.scene import Layer
 from core.fabrication.process import ProcessKind
 from core.fabrication.shipped import shipped_process
+from core.units import round_length_um
 from tests.core.chip.seen import assert_clean, flattened
 
 
