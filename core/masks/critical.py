@@ -22,6 +22,7 @@ if TYPE_CHECKING:
 # What a published price list of a mask shop holds, by size [um]; the shop's own word counts.
 TOLERANCES_UM = ((10.0, 0.5), (50.0, 1.0), (127.0, 1.3), (250.0, 1.9))
 _LARGEST_TOLERANCE_UM = 2.5
+CUT_TOLERANCE_UM = 100.0  # what cutting services promise (common practice, no source)
 
 
 def critical_dimensions(drawing: MaskDrawing) -> tuple[CriticalDimension, ...]:
@@ -47,7 +48,7 @@ def critical_dimensions(drawing: MaskDrawing) -> tuple[CriticalDimension, ...]:
 
 
 def usual_tolerance_um(value_um: float) -> float:
-    """Return the tolerance usually promised for a dimension of that size, to either side [um].
+    """Return the tolerance usually promised for a dimension of that size on a mask, to either side [um].
 
     Examples
     --------
@@ -80,9 +81,8 @@ def critical_lines(drawings: Sequence[MaskDrawing], facts: SheetFacts, options: 
 
 def _words(critical: CriticalDimension, options: MaskOptions) -> str:
     tolerance = critical.tolerance_um
-    given = f"+-{tolerance:g} um" if tolerance is not None else (
-        f"+-{usual_tolerance_um(critical.value_um):g} um unless the shop promises otherwise"
-    )  # fmt: skip
+    usual = CUT_TOLERANCE_UM if options.tone is Tone.CUT else usual_tolerance_um(critical.value_um)
+    given = f"+-{tolerance:g} um" if tolerance is not None else f"+-{usual:g} um unless the shop promises otherwise"
     return (
         f"{critical.what}, {critical.value_um:.6g} um as drawn, at x {critical.x_um / UM_PER_MM:.6f} mm, "
         f"y {critical.y_um / UM_PER_MM:.6f} mm; {_tone_of(critical, options)}; tolerance {given}."

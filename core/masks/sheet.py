@@ -29,9 +29,9 @@ if TYPE_CHECKING:
 _CONFIRM = (
     "Units, layers, tone and orientation as said here, and the dimension to verify.",
     "The smallest feature and gap that the process can hold; values of the process are starting points.",
-    "Whether figures may share an edge. If not, order the DXF with islands as loops.",
 )
-_CAUTIONS = (
+_CONFIRM_PIECES = "Whether figures may share an edge. If not, order the DXF with islands as loops."
+_CAUTIONS_OF_ANY_PROCESS = (
     "Work with resists, developers, solvents, etchants, lasers and plasma only where trained and equipped for it; "
     "follow the rules of the place where the work is done.",
     "A channel under pressure can burst or lose its tubing: wear eye protection, prove with liquid before gas.",
@@ -83,8 +83,11 @@ def order_sheet(
         Section(heading="Scale and allowance", lines=tuple(_scale_lines(drawings[0].scene.scale, facts))),
         Section(heading="Process", lines=_process_lines(facts)),
         *([Section(heading="Notes", lines=facts.notes)] if facts.notes else []),
-        Section(heading="Please confirm with the shop before ordering", lines=_CONFIRM),
-        Section(heading="Cautions", lines=(*facts.cautions, *_CAUTIONS)),
+        Section(
+            heading="Please confirm with the shop before ordering",
+            lines=_CONFIRM if options.tone is Tone.CUT else (*_CONFIRM, _CONFIRM_PIECES),
+        ),
+        Section(heading="Cautions", lines=facts.cautions or _CAUTIONS_OF_ANY_PROCESS),
     ]
     return Sheet(title=f"Mask order for chip {plain(facts.chip_title)}", sections=tuple(sections))
 
@@ -144,8 +147,7 @@ def _drawing_section(drawing: MaskDrawing, options: MaskOptions) -> Section:
     is_centred = drawing.scene.top.kind in {BlockKind.PLATE, BlockKind.CHIP}
     where = f"(0, 0) of the data; the middle of the extents is {middle}" if is_centred else f"the middle, {middle}"
     lines = [
-        f"One top cell in GDSII: {drawing.stem}. In DXF everything stands in the model space.",
-        *_layer_lines(drawing),
+        *_layer_lines(drawing, options),
         *(_operation_lines(drawing) if options.tone is Tone.CUT else _mask_lines(drawing, options)),
         f"Extents: x {x0:.6f} to {x1:.6f} mm, y {y0:.6f} to {y1:.6f} mm.",
         f"To verify: overall length along x {x1 - x0:.6f} mm, height along y {y1 - y0:.6f} mm.",
@@ -155,12 +157,15 @@ def _drawing_section(drawing: MaskDrawing, options: MaskOptions) -> Section:
     return Section(heading=f"Mask {drawing.stem}", lines=tuple(lines))
 
 
-def _layer_lines(drawing: MaskDrawing) -> list[str]:
-    return [
-        f"Layer {LAYERS[layer].dxf_name} (GDSII layer {LAYERS[layer].gdsii_number}, data type 0): "
-        f"{LAYERS[layer].meaning}."
-        for layer in drawing.layers
-    ]
+def _layer_lines(drawing: MaskDrawing, options: MaskOptions) -> list[str]:
+    has_gdsii, has_dxf = (kind in options.formats for kind in (MaskFormat.GDSII, MaskFormat.DXF))
+    lines = [f"One top cell in GDSII: {drawing.stem}."] if has_gdsii else []
+    if has_dxf:
+        lines.append("In DXF everything stands in the model space.")
+    for layer in drawing.layers:
+        number = f" (GDSII layer {LAYERS[layer].gdsii_number}, data type 0)" if has_gdsii else ""
+        lines.append(f"Layer {LAYERS[layer].dxf_name}{number}: {LAYERS[layer].meaning}.")
+    return lines
 
 
 def _mask_lines(drawing: MaskDrawing, options: MaskOptions) -> list[str]:
