@@ -205,7 +205,7 @@ def test_any_parameter_set_gives_sound_numbers(values):
 @settings(max_examples=200, deadline=None)
 @given(values=ANY_CHANNEL, reynolds=st.floats(1e-4, 0.5))
 def test_no_channel_rectifies_in_creeping_flow(values, reynolds):
-    """Re below 0.5: any rigid channel has Di = 1 but for a term in Re^3, whose factor stays small in the oddest shape."""
+    """Re below 0.5: any rigid channel has Di = 1 but for a term in Re^3, small in the oddest shape."""
     assert abs(_at_reynolds(ChannelParameters(**values), [reynolds]).rectification[0]) < 1e-2 * reynolds**3
 
 
