@@ -127,7 +127,6 @@ def test_sixteen_stages_against_four(say):
         ("first answer of the default channel", 4, [FLOW_UL_MIN], "coarse", 1),
         ("10 stages, both directions", 10, [FLOW_UL_MIN], "coarse", 1),
         ("10 stages, both directions", 10, [FLOW_UL_MIN], "normal", 1),
-        ("4 stages, curve of 8 flows", 4, [FLOW_UL_MIN * k / 6 for k in range(1, 9)], "normal", 1),
         ("4 stages, curve of 8 flows", 4, [FLOW_UL_MIN * k / 6 for k in range(1, 9)], "normal", 2),
     ],
 )

@@ -4,13 +4,12 @@ Truth: what a result must be by its meaning, at any flow: finite and positive dr
 between none and all of the flow, a diodicity that creeping flow holds at 1, no drop below what the
 shortest straight path through the channel takes.
 
-The suite solves some; SIDELOOP_RANDOM_CHANNELS=500 in the environment asks for so many, in one go.
+The suite solves some; a thorough run (tests/thorough.py) 500, in one go.
 """
 
 from __future__ import annotations
 
 import math
-import os
 import tempfile
 import time
 from pathlib import Path
@@ -23,8 +22,9 @@ from core.flow import FlowStopped
 from core.flow.channel import solve_channel
 from tests.core.flow.processes import children
 from tests.core.flow.random_channels import WATER, trial
+from tests.thorough import cases
 
-CHANNELS = int(os.environ.get("SIDELOOP_RANDOM_CHANNELS", "25"))
+CHANNELS = cases(500, share=25)
 LIMIT_S = 60.0  # of processor time, which a busy machine stretches least; fifty times what most take
 
 

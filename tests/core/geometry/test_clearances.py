@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import os
 from dataclasses import replace
 from typing import TYPE_CHECKING
 
@@ -17,6 +16,7 @@ from core.geometry.contour import Contour, Outline, Placement
 from core.geometry.shape import build_shape
 from core.parameters import ChannelParameters
 from tests.core.geometry.designs import polygon, round_numbers, sensible
+from tests.thorough import cases
 
 if TYPE_CHECKING:
     from core.geometry.shape import ChannelShape
@@ -25,8 +25,7 @@ Rings = list[list[list[int]]]
 GRID_PER_UM = 1e6
 SAGITTA_UM = 1e-4
 NM = 1e-3
-# How many random channels; 500 take three or four minutes: SIDELOOP_CHANNELS=500
-CHANNELS = int(os.environ.get("SIDELOOP_CHANNELS", "60"))
+CHANNELS = cases(500, share=60)  # 500 take three or four minutes
 
 
 def rings_of(outline: Outline) -> Rings:

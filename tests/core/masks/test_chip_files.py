@@ -20,6 +20,7 @@ from core.parameters import ChannelParameters
 from tests.core.masks.chips import plate, two_channel_chip
 from tests.core.masks.samples import random_shapes
 from tests.core.masks.truth import check_files
+from tests.thorough import cases
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
@@ -28,7 +29,7 @@ if TYPE_CHECKING:
     from core.chip.scene import Scene
     from core.masks.report import MaskSetReport
 
-IN_EACH_PART = 3
+IN_EACH_PART = cases(50, share=10)  # of four parts
 FACTS = SheetFacts(chip_title="Bench 7", date="2031-05-17")
 # wide enough for every shipped process once its walls are moved
 WIDE = {
@@ -124,7 +125,6 @@ def random_scenes(count: int, *, seed: int) -> Iterator[tuple[Scene, MaskOptions
 @pytest.mark.slow
 @pytest.mark.parametrize("part", range(4))
 def test_random_chips(tmp_path: Path, part: int) -> None:
-    # two hundred were checked when this was written, fifty in each part
     for number, (scene, options) in enumerate(random_scenes(IN_EACH_PART, seed=4000 + part)):
         report = written(scene, tmp_path / str(number), options)
         assert check_files(report, scene, options) == 2
