@@ -97,7 +97,7 @@ def solve_verb(arguments: argparse.Namespace) -> Answer:
             quality=arguments.quality,
             report=report,
             check_steady=arguments.quality == "fine",
-            processes=2,  # forward and reverse side by side, where that pays
+            processes=2 if len(flows) > 1 else 1,  # forward and reverse side by side, where that pays
         )
     points = [_with_notes(point.as_dict(), notes) for point in found.points]
     if arguments.json:

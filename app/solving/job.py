@@ -22,7 +22,7 @@ if TYPE_CHECKING:
     from core.flow.channel_result import ChannelFlow
 
 _LEAST_PAUSE_S = 0.05  # between two lines of progress
-_PROCESSES = 2  # forward and reverse side by side, where that pays
+_PROCESSES = 2  # forward and reverse side by side along a curve; for one flow starting another takes longer
 _KINDER_BY = 5  # of the machine's priority: the window comes first
 
 
@@ -70,7 +70,7 @@ class Child:
             report=self._report,
             should_stop=self._stop.is_set,
             steady_for=request.qualities[1:],
-            processes=_PROCESSES,
+            processes=_PROCESSES if len(request.flows_ul_min) > 1 else 1,
         )
         for quality, found in zip(request.qualities, answers, strict=True):
             self._tell(

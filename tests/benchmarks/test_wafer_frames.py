@@ -5,8 +5,8 @@ ten channels of ten stages, ports, marks and lettering; each with all chips alik
 
 Each frame is the whole widget painted into a pixmap of the window's size: plate, chips, channels, legend, names.
 Zooming goes through the same steps as under the hand: eight frames of gliding for each notch of the wheel and two of
-rest. Aim: 30 frames a second or better, 33 ms a frame. Asserted is the 95th percentile of processor time, since the
-machine may be busy; the time on the clock is printed beside it.
+rest. Aim: 30 frames a second or better, 33 ms a frame. Times on the clock and of the processor are printed; asserted is
+their 95th percentile as a part of the named baseline: one frame of the whole plate with every wall painted anew.
 """
 
 from __future__ import annotations
@@ -19,6 +19,7 @@ from PySide6.QtCore import QPoint, QPointF
 from PySide6.QtGui import QPixmap
 
 from app.chip_work import ChipTask, chip_outcome
+from app.drawing import chip_painter
 from app.drawing.chip_shown import ShownChip
 from app.drawing.chip_view import ChipView
 from core.chip.plan import ChipChannel, ChipPlan, SteppedField
@@ -28,7 +29,7 @@ from tests.app.drawing.chip_scenes import plate_scene
 
 pytestmark = [pytest.mark.benchmark, pytest.mark.gui]
 
-FRAME_MS = 1000.0 / 30.0
+LARGEST_PART = 0.5  # of the baseline
 ACROSS = 10  # chips along x and along y
 GLIDE, REST, NOTCHES = 8, 2, 26
 
@@ -59,15 +60,25 @@ class Watch:
         for _ in range(REST):
             self.paint()
 
-    def tell(self, what, capsys):
+    def every_wall_ms(self, monkeypatch):
+        """Return the processor time of one frame of the whole plate without any kept picture, the median of three."""
+        with monkeypatch.context() as patch:
+            patch.setattr(chip_painter, "LARGEST_IMAGE_PX", 0.0)  # every block is too large for a picture
+            for _ in range(3):
+                self.paint()
+        taken, self.cpu_ms, self.clock_ms = float(np.median(self.cpu_ms)), [], []
+        return taken
+
+    def tell(self, what, baseline_ms, capsys):
         cpu, clock = np.array(self.cpu_ms), np.array(self.clock_ms)
         with capsys.disabled():
             print(
                 f"\n{what}, {len(cpu)} frames: processor median {np.median(cpu):.1f} ms, 95th percentile "
                 f"{np.percentile(cpu, 95):.1f} ms, longest {cpu.max():.1f} ms; clock median {np.median(clock):.1f} ms, "
-                f"95th percentile {np.percentile(clock, 95):.1f} ms ({1000.0 / np.percentile(clock, 95):.0f} a second)"
+                f"95th percentile {np.percentile(clock, 95):.1f} ms ({1000.0 / np.percentile(clock, 95):.0f} / s); "
+                f"{np.percentile(cpu, 95) / baseline_ms:.2f} of painting every wall, {baseline_ms:.0f} ms"
             )
-        assert np.percentile(cpu, 95) < FRAME_MS
+        assert np.percentile(cpu, 95) < LARGEST_PART * baseline_ms
         self.cpu_ms, self.clock_ms = [], []
 
 
@@ -98,7 +109,7 @@ def plate_as_built(*, is_stepped):
 
 @pytest.mark.parametrize("is_stepped", [False, True], ids=["all alike", "every chip another"])
 @pytest.mark.parametrize("make", [plate_by_hand, plate_as_built])
-def test_opening_moving_and_zooming(qtbot, capsys, make, is_stepped):
+def test_opening_moving_and_zooming(qtbot, capsys, monkeypatch, make, is_stepped):
     begun = time.process_time()
     shown = make(is_stepped=is_stepped)
     made_s = time.process_time() - begun
@@ -116,17 +127,18 @@ def test_opening_moving_and_zooming(qtbot, capsys, make, is_stepped):
     opened_ms = 1000.0 * (time.perf_counter() - begun)
     with capsys.disabled():
         print(f"\n{what}: made beside the window in {made_s:.2f} s, first picture {opened_ms:.0f} ms later")
+    baseline_ms = watch.every_wall_ms(monkeypatch)
     for _ in range(20):
         watch.paint()
-    watch.tell(f"{what}: opened", capsys)
+    watch.tell(f"{what}: opened", baseline_ms, capsys)
     at = QPointF(700.0, 420.0)
     for factor in (1.25, 1.0 / 1.25):
         for _ in range(NOTCHES):
             watch.zoom(factor, at)
-        watch.tell(f"{what}: zoomed {'in' if factor > 1.0 else 'out'}", capsys)
+        watch.tell(f"{what}: zoomed {'in' if factor > 1.0 else 'out'}", baseline_ms, capsys)
     for closer in (1.7, 3.0, 4.0, 5.0):
         view.zoom(closer, at, animated=False)
         for _ in range(40):
             view.pan(-11.3, 7.1)
             watch.paint()
-    watch.tell(f"{what}: moved", capsys)
+    watch.tell(f"{what}: moved", baseline_ms, capsys)
